@@ -1,0 +1,265 @@
+package energy
+
+// A Ledger is the account of one run, as it is written to ledger.json. Its keys, their
+// order and their meaning are fixed by the schema's number; keys of parts that are not
+// built yet are null. All numbers are in the consistent units of the study.
+type Ledger struct {
+	Schema       string              `json:"schema"`
+	Title        Text                `json:"title"`
+	Units        UnitLabels          `json:"units"`
+	Model        ModelSummary        `json:"model"`
+	Study        *StudyFile          `json:"study"`
+	Sources      []SourceFile        `json:"source"`
+	Fields       FieldsUsed          `json:"fields"`
+	Materials    []MaterialUsed      `json:"materials"`
+	Total        Account             `json:"total"`
+	Repeated     *Repeated           `json:"repeated"`
+	Regions      []RegionAccount     `json:"regions"`
+	Hotspots     []Hotspot           `json:"hotspots"`
+	PastLimit    PastLimit           `json:"past_limit"`
+	Excluded     []Exclusion         `json:"excluded"`
+	Findings     []Finding           `json:"findings"`
+	Balance      *NotBuilt           `json:"balance"`
+	Requirements []RequirementResult `json:"requirements"`
+	Steps        *NotBuilt           `json:"steps"`
+	Cases        *NotBuilt           `json:"cases"`
+	Envelope     *NotBuilt           `json:"envelope"`
+	Caution      string              `json:"caution"`
+	Run          Run                 `json:"run"`
+
+	// AllPastLimit lists every cell past its limit in the order of PastLimit.Worst,
+	// when Options.ListAllPastLimit asked for it.
+	AllPastLimit []RankedCell `json:"-"`
+}
+
+// LedgerSchema names the form of a Ledger.
+const LedgerSchema = "strainledger/ledger/v1"
+
+// Caution stands on every report.
+const Caution = "A screening aid, not a design approval: the numbers describe the model that was given, " +
+	"and local codes and a licensed engineer decide."
+
+// NotBuilt is the type of keys whose subject is not built yet: always null.
+type NotBuilt struct{}
+
+// UnitLabels names the units of the ledger's numbers; null where the study does not
+// state them.
+type UnitLabels struct {
+	Length        Text `json:"length"`
+	Stress        Text `json:"stress"`
+	Energy        Text `json:"energy"`
+	EnergyDensity Text `json:"energy_density"`
+	Mass          Text `json:"mass"`
+}
+
+// ModelSummary says how the model was read.
+type ModelSummary struct {
+	Idealisation string `json:"idealisation"`
+	Thickness    any    `json:"thickness"` // number, name of a cell array, or null
+	Axis         Text   `json:"axis"`
+	Points       string `json:"points"`
+	EnergyFrom   string `json:"energy_from"`
+	Criterion    string `json:"criterion"`
+}
+
+// StudyFile identifies the study that the run followed.
+type StudyFile struct {
+	Path   string `json:"path"`
+	SHA256 Text   `json:"sha256"`
+}
+
+// SourceFile identifies one file of the model.
+type SourceFile struct {
+	Path   string `json:"path"`
+	SHA256 Text   `json:"sha256"`
+	Bytes  int64  `json:"bytes"`
+	Points int64  `json:"points"`
+	Cells  int64  `json:"cells"`
+	Time   Number `json:"time"`
+}
+
+// FieldsUsed says which arrays were taken for what; nil where a field is not used.
+type FieldsUsed struct {
+	Stress                  *FieldUsed `json:"stress"`
+	Strain                  *FieldUsed `json:"strain"`
+	ThermalStrain           *FieldUsed `json:"thermal_strain"`
+	PlasticStrain           *FieldUsed `json:"plastic_strain"`
+	EquivalentPlasticStrain *FieldUsed `json:"equivalent_plastic_strain"`
+	Displacement            *FieldUsed `json:"displacement"`
+	Temperature             *FieldUsed `json:"temperature"`
+	NodalForce              *FieldUsed `json:"nodal_force"`
+	ElementID               *FieldUsed `json:"element_id"`
+}
+
+// FieldUsed is one array's part in the account. Order, Shear and Kind are empty where
+// they have no meaning.
+type FieldUsed struct {
+	Array     string `json:"array"` // several scalar arrays: their names separated by blanks
+	On        string `json:"on"`    // cell | point | integration
+	Order     Text   `json:"order"`
+	Shear     Text   `json:"shear"`
+	Kind      Text   `json:"kind,omitempty"`
+	Sign      Text   `json:"sign"`
+	DecidedBy string `json:"decided_by"` // study | audit | file | default
+	Why       string `json:"why"`
+}
+
+// MaterialUsed gives the values that were used for one material.
+type MaterialUsed struct {
+	Name                         string `json:"name"`
+	Law                          string `json:"law"`
+	YoungsModulus                Number `json:"youngs_modulus"`
+	PoissonsRatio                Number `json:"poissons_ratio"`
+	ProportionalLimit            Number `json:"proportional_limit"`
+	ProportionalLimitCompression Number `json:"proportional_limit_compression"`
+	Density                      Number `json:"density"`
+	ThermalExpansion             Number `json:"thermal_expansion"`
+	ReferenceTemperature         Number `json:"reference_temperature"`
+	Source                       Text   `json:"source"`
+}
+
+// A Vector is a place or a direction in the model's axes: x, y, z.
+type Vector [3]float64
+
+// An Account is what one region, or the whole model, stores. Cells counts the cells
+// that entered the sums.
+type Account struct {
+	Cells                int64   `json:"cells"`
+	Volume               Number  `json:"volume"`
+	Mass                 Number  `json:"mass"`
+	Energy               Number  `json:"energy"`
+	EnergyShare          Number  `json:"energy_share"`
+	EnergyVolumetric     Number  `json:"energy_volumetric"`
+	EnergyDistortional   Number  `json:"energy_distortional"`
+	MeanDensity          Number  `json:"mean_density"`
+	MaxDensity           Number  `json:"max_density"`
+	MaxDensityCell       Number  `json:"max_density_cell"`
+	MaxDensitySource     Number  `json:"max_density_source"`
+	MaxDensityAt         *Vector `json:"max_density_at"`
+	PeakDensity          Number  `json:"peak_density"`
+	PeakDensityAt        *Vector `json:"peak_density_at"`
+	MaxEquivalentStress  Number  `json:"max_equivalent_stress"`
+	MaxUtilisation       Number  `json:"max_utilisation"`
+	MaxUtilisationCell   Number  `json:"max_utilisation_cell"`
+	MaxUtilisationSource Number  `json:"max_utilisation_source"`
+	MaxUtilisationAt     *Vector `json:"max_utilisation_at"`
+	CellsPastLimit       Number  `json:"cells_past_limit"`
+	VolumePastLimit      Number  `json:"volume_past_limit"`
+	EnergyPastLimit      Number  `json:"energy_past_limit"`
+	VolumeWithoutLimit   Number  `json:"volume_without_limit"`
+	CellsYielded         Number  `json:"cells_yielded"`
+	CurveEnergy          Number  `json:"curve_energy"`
+	ErrorEstimate        Number  `json:"error_estimate"`
+	EnergyError          Number  `json:"energy_error"`
+
+	Concentration *NotBuilt `json:"concentration"`
+}
+
+// RegionAccount is the account of one region.
+type RegionAccount struct {
+	Name      string `json:"name"`
+	Material  Text   `json:"material"`
+	Criterion string `json:"criterion"`
+	Account
+}
+
+// Repeated holds the totals of the whole of which the mesh is one of several equal
+// parts.
+type Repeated struct {
+	Repeats int    `json:"repeats"`
+	Volume  Number `json:"volume"`
+	Mass    Number `json:"mass"`
+	Energy  Number `json:"energy"`
+}
+
+// A RankedCell is one cell in a list. Cell counts from 0 in its own source file,
+// ghosts included; At is its volume centroid.
+type RankedCell struct {
+	Cell             int64   `json:"cell"`
+	Source           int     `json:"source"`
+	ElementID        Number  `json:"element_id"`
+	Region           string  `json:"region"`
+	At               *Vector `json:"at"`
+	Density          Number  `json:"density"`
+	EquivalentStress Number  `json:"equivalent_stress"`
+	Utilisation      Number  `json:"utilisation"`
+}
+
+// A Hotspot is a place where energy gathers. The keys of its surroundings (energy,
+// energy share, volume, cells, prominence) are null while hotspots are single cells.
+type Hotspot struct {
+	Rank             int     `json:"rank"`
+	Region           string  `json:"region"`
+	Cell             int64   `json:"cell"`
+	Source           int     `json:"source"`
+	ElementID        Number  `json:"element_id"`
+	At               *Vector `json:"at"`
+	Density          Number  `json:"density"`
+	PeakDensity      Number  `json:"peak_density"`
+	Energy           Number  `json:"energy"`
+	EnergyShare      Number  `json:"energy_share"`
+	Volume           Number  `json:"volume"`
+	Cells            Number  `json:"cells"`
+	Prominence       Number  `json:"prominence"`
+	EquivalentStress Number  `json:"equivalent_stress"`
+	Utilisation      Number  `json:"utilisation"`
+	PastLimit        *bool   `json:"past_limit"` // nil where the region has no limit
+	Singular         Text    `json:"singular"`
+}
+
+// PastLimit lists the cells whose utilisation is above 1. Cells, Volume and Energy are
+// null unless every region has a limit.
+type PastLimit struct {
+	Criterion   string       `json:"criterion"`
+	Cells       Number       `json:"cells"`
+	Volume      Number       `json:"volume"`
+	Energy      Number       `json:"energy"`
+	EnergyShare Number       `json:"energy_share"`
+	Worst       []RankedCell `json:"worst"` // by utilisation, falling
+}
+
+// An Exclusion counts cells that are in no account. Measure is their length, area or
+// volume by dimension; null where they have none that can be told.
+type Exclusion struct {
+	Reason    string `json:"reason"` // ghost | not-finite | degenerate | other-dimension | unsupported | no-region
+	Dimension int    `json:"dimension"`
+	Cells     int64  `json:"cells"`
+	Measure   Number `json:"measure"`
+}
+
+// A Finding is something that the reader of the numbers has to know.
+type Finding struct {
+	Code     string `json:"code"`
+	Severity string `json:"severity"` // note | warning | error
+	Message  string `json:"message"`
+	Cells    Number `json:"cells"`
+	Accepted Text   `json:"accepted"` // the study's reason for living with it
+}
+
+// The severities of findings.
+const (
+	Note    = "note"
+	Warning = "warning"
+	Error   = "error"
+)
+
+// RequirementResult is one requirement of the study with its outcome. Met is false
+// also where the value is not available; Why then says so.
+type RequirementResult struct {
+	Name     string `json:"name"`
+	Quantity string `json:"quantity"`
+	Region   Text   `json:"region"`
+	AtMost   Number `json:"at_most"`
+	AtLeast  Number `json:"at_least"`
+	Value    Number `json:"value"`
+	Met      bool   `json:"met"`
+	Why      Text   `json:"why"`
+}
+
+// Run holds what differs from run to run: no other part of a ledger does.
+type Run struct {
+	Version string `json:"version"`
+	Started string `json:"started"` // RFC 3339, UTC
+	Seconds Number `json:"seconds"`
+	Workers int    `json:"workers"`
+}

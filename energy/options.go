@@ -1,0 +1,165 @@
+package energy
+
+import "strainledger/mesh"
+
+// An Idealisation says what the cells of the mesh stand for.
+type Idealisation string
+
+// The idealisations. Plane and axisymmetric meshes lie in x-y.
+const (
+	Solid        Idealisation = "solid"
+	PlaneStress  Idealisation = "plane-stress"
+	PlaneStrain  Idealisation = "plane-strain"
+	Axisymmetric Idealisation = "axisymmetric"
+)
+
+// A Source of energy says from which fields the density is computed.
+type EnergySource string
+
+// The sources of energy; the empty one is the first of these whose inputs exist.
+const (
+	FromStressStrain EnergySource = "stress-strain"
+	FromStress       EnergySource = "stress"
+	FromStrain       EnergySource = "strain"
+	FromDisplacement EnergySource = "displacement"
+)
+
+// A Criterion turns a stress tensor into an equivalent stress and a utilisation.
+type Criterion string
+
+// The criteria.
+const (
+	VonMises         Criterion = "von-mises"
+	Tresca           Criterion = "tresca"
+	MaxPrincipal     Criterion = "max-principal"
+	DistortionEnergy Criterion = "distortion-energy"
+	TotalEnergy      Criterion = "total-energy"
+)
+
+// Options says how a model is tallied. The zero value of a field is its default.
+type Options struct {
+	Title        string
+	Length       string // units of the files' numbers, "" where not stated: mm m cm in ft
+	Stress       string // MPa Pa kPa GPa psi ksi
+	Mass         string // kg g t lb
+	Idealisation Idealisation
+
+	Thickness      float64 // plane models; 0: not stated
+	ThicknessArray string  // name of a cell array with the thickness instead
+	AxisX          bool    // axisymmetric: the axis of symmetry is x, not y
+	Deformed       bool    // the files' points are in the deformed position
+	Repeats        int     // the mesh stands this often in the whole; 0: not stated
+
+	From      EnergySource
+	Fields    Fields
+	Materials []Material
+	Regions   []Region
+	Limit     LimitOptions
+	Hotspots  HotspotOptions
+
+	Requirements []Requirement
+	Acceptances  []Acceptance
+
+	Workers          int  // 0: all processors
+	ChunkCells       int  // cells in a chunk; 0: the walk's default
+	ListAllPastLimit bool // keep every cell past its limit for Ledger.AllPastLimit
+}
+
+// Fields holds what the study states of each field.
+type Fields struct {
+	Stress                  Field
+	Strain                  Field
+	ThermalStrain           Field
+	PlasticStrain           Field
+	EquivalentPlasticStrain Field
+	Displacement            Field
+	Temperature             Field
+	NodalForce              Field
+	ElementID               Field
+}
+
+// A Field is what the study states of one field; the zero value states nothing, and
+// the field is looked for in the file.
+type Field struct {
+	Off         bool     // not used and not looked for
+	Arrays      []string // one array, or several that hold one component each
+	On          mesh.Location
+	Integration bool   // values at the integration points of Rule
+	Rule        string // name of the integration rule
+	Order       mesh.Order
+	Shear       string // tensor | engineering | mandel; "" not stated
+	Kind        string // strain: total | elastic; "" not stated
+	Compression bool   // stress: compression is positive
+}
+
+// IsStated reports whether the study names the field's array.
+func (f *Field) IsStated() bool { return len(f.Arrays) > 0 }
+
+// A Material is one entry of the study's table of materials. Optional numbers are NaN
+// where they are not given; see NewMaterial.
+type Material struct {
+	Name                         string
+	YoungsModulus                float64
+	PoissonsRatio                float64
+	ProportionalLimit            float64
+	ProportionalLimitCompression float64
+	Source                       string // where the limit comes from
+	Density                      float64
+	ThermalExpansion             float64
+	ReferenceTemperature         float64
+}
+
+// NewMaterial returns a material of which nothing but the name is given.
+func NewMaterial(name string) Material {
+	none := float64(None)
+	return Material{
+		Name: name, YoungsModulus: none, PoissonsRatio: none, ProportionalLimit: none,
+		ProportionalLimitCompression: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
+	}
+}
+
+// A Region selects cells and gives them a material. One of Array, Block, Box and Rest
+// is set.
+type Region struct {
+	Name     string
+	Array    string    // cell array, with
+	Values   []float64 // the values that select
+	Block    string    // block name; slash path, * matches within one path element
+	Box      *Box
+	Rest     bool
+	Material string // "" none
+
+	Thickness float64   // 0: the model's
+	Criterion Criterion // "": the study's
+	Optional  bool      // may be without cells
+}
+
+// A Box is a range of space, bounds included.
+type Box struct{ Low, High Vector }
+
+// LimitOptions says how cells are judged against their material's limit.
+type LimitOptions struct {
+	Criterion Criterion // "": von Mises
+	List      int       // cells named in the ledger; 0: 100
+}
+
+// HotspotOptions says which hotspots are listed.
+type HotspotOptions struct {
+	Count int    // 0: 20
+	By    string // utilisation | density | energy; "": utilisation where every region has a limit, else density
+}
+
+// A Requirement is a bound on one number of an account.
+type Requirement struct {
+	Name     string
+	Quantity string
+	Region   string // "": the whole model
+	AtMost   Number
+	AtLeast  Number
+}
+
+// An Acceptance names a finding of severity error that the study lives with.
+type Acceptance struct {
+	Code   string
+	Reason string
+}
