@@ -70,6 +70,10 @@ type Piece struct {
 	PointCount int64
 	Arrays     []Array // point and cell arrays in file order
 	RunCells   int     // cells that are best read in one go; 0: no preference
+
+	// RationalWeights names the point array that weighs the control points of
+	// Bézier cells; "" when there is none.
+	RationalWeights string
 }
 
 // Find returns the description of a point or cell array, or nil.
@@ -136,7 +140,7 @@ type Want struct {
 	CellValues  []string // cell arrays as numbers, in the order of Chunk.Values
 	Labels      []string // cell arrays as whole numbers, in the order of Chunk.Labels
 	PointValues []string // point arrays, in the order of Chunk.PointValues
-	TypesOnly   bool     // types and ghost marks alone: no nodes, no points, no values
+	NoNodes     bool     // types, ghost marks and cell arrays, but neither nodes nor points
 }
 
 // Ghost and blanking bits of Chunk.Hidden, VTK's vtkGhostType for cells.
@@ -157,7 +161,7 @@ type Chunk struct {
 	Count  int
 
 	Types  []CellType
-	Shapes []*Shape // what each type with its node count is
+	Shapes []*Shape // what each type with its node count is; nil with Want.NoNodes
 	Start  []int32  // Count+1 positions in Nodes
 	Nodes  []int32  // positions in Points; checked
 	Hidden []uint8  // ghost and blanking bits; nil when the file has none
