@@ -121,7 +121,7 @@ func (p *part) exclude(reason exclusionReason, cell *mesh.Cell) {
 	e := &p.excluded[reason]
 	e.cells[dimension]++
 	measure := math.NaN()
-	if cell.Shape.HasMeasure() {
+	if cell.Shape.Supported {
 		measure = cell.Measure()
 	}
 	if math.IsNaN(measure) || math.IsInf(measure, 0) {

@@ -190,6 +190,16 @@ func hasFinding(ledger *Ledger, code string) bool {
 	return slices.ContainsFunc(ledger.Findings, func(f Finding) bool { return f.Code == code })
 }
 
+// near compares places up to the rounding of an integral.
+func near(got, want Vector) bool {
+	for i := range got {
+		if math.Abs(got[i]-want[i]) > 1e-14*math.Max(1, math.Abs(want[i])) {
+			return false
+		}
+	}
+	return true
+}
+
 // uniform repeats a tuple.
 func uniform(count int, tuple ...float64) [][]float64 {
 	list := make([][]float64, count)
@@ -323,7 +333,7 @@ func TestAxisymmetricRing(t *testing.T) {
 		if !within(float64(total.MaxDensity), 0.0040384615, 1e-7) || !within(float64(total.Energy), 0.004038461538461538*volume, 1e-10) {
 			t.Errorf("on %ss: density %.9g, want 0.0040384615; energy %.9g", on, total.MaxDensity, total.Energy)
 		}
-		if at := *total.MaxDensityAt; !within(at[0], (8000-1000)*2/(3*300.), 1e-12) || at[1] != 2.5 {
+		if at := *total.MaxDensityAt; !within(at[0], (8000-1000)*2/(3*300.), 1e-12) || !within(at[1], 2.5, 1e-14) {
 			t.Errorf("on %ss: centroid %v, want the ring's: r = ⅔(r2³ - r1³)/(r2² - r1²)", on, at)
 		}
 		// w 0.1 everywhere: U 471.238898.
@@ -601,7 +611,7 @@ func TestExcludedCells(t *testing.T) {
 	points, cells := row(6)
 	points = append(points, [3]float64{0, 5, 0})
 	cells = append(cells,
-		memoryCell{mesh.Line, []int32{0, 24}}, memoryCell{mesh.Quad, []int32{0, 1, 2, 3}}, memoryCell{mesh.Vertex, []int32{0}},
+		memoryCell{mesh.Line, []int32{0, 28}}, memoryCell{mesh.Quad, []int32{0, 1, 2, 3}}, memoryCell{mesh.Vertex, []int32{0}},
 		memoryCell{mesh.Tetrahedron, []int32{0, 1, 2, 3}})
 	stress, strain := uniform(10, 1, 0, 0, 0, 0, 0), uniform(10, 2, 0, 0, 0, 0, 0)
 	stress[2] = []float64{1, 0, math.NaN(), 0, 0, 0}
@@ -615,8 +625,13 @@ func TestExcludedCells(t *testing.T) {
 		{"ghost", 3, 2, 2}, {"other-dimension", 0, 1, 0}, {"other-dimension", 1, 1, 5}, {"other-dimension", 2, 1, 1},
 		{"degenerate", 3, 1, 0}, {"not-finite", 3, 3, 3},
 	}
-	if !slices.Equal(ledger.Excluded, want) {
-		t.Errorf("excluded %+v, want %+v", ledger.Excluded, want)
+	for i, got := range ledger.Excluded {
+		// Measures are integrals, rounded at the last digits.
+		isNear := math.Abs(float64(got.Measure-want[i].Measure)) < 1e-14
+		if got.Measure = want[i].Measure; len(ledger.Excluded) != len(want) || got != want[i] || !isNear {
+			t.Errorf("excluded %+v, want %+v", ledger.Excluded, want)
+			break
+		}
 	}
 	if ledger.Total.Cells != 1 || ledger.Total.Energy != 1 {
 		t.Errorf("total %d cells, energy %v, want 1 and 1", ledger.Total.Cells, ledger.Total.Energy)
@@ -686,7 +701,7 @@ func TestPastLimit(t *testing.T) {
 	if total.CellsPastLimit != 3 || total.VolumePastLimit != 3 || !within(float64(total.EnergyPastLimit), (2*300*300+500*500)/(2*210000.), 1e-12) {
 		t.Errorf("past limit %v cells, volume %v, energy %v", total.CellsPastLimit, total.VolumePastLimit, total.EnergyPastLimit)
 	}
-	if total.MaxUtilisation != 2 || total.MaxUtilisationCell != 2 || *total.MaxUtilisationAt != (Vector{2.5, 0.5, 0.5}) {
+	if total.MaxUtilisation != 2 || total.MaxUtilisationCell != 2 || !near(*total.MaxUtilisationAt, Vector{2.5, 0.5, 0.5}) {
 		t.Errorf("max utilisation %v in cell %v at %v", total.MaxUtilisation, total.MaxUtilisationCell, total.MaxUtilisationAt)
 	}
 	order := func(list []RankedCell) (cells []int64) {

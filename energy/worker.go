@@ -27,6 +27,7 @@ type worker struct {
 	// The places of the current cell: its nodes, or one place for cell data.
 	stress, strain []mesh.SymmetricTensor
 	elements       []float64
+	rational       []float64 // room for the shape functions of Bézier cells
 }
 
 func newWorker(p *plan) *worker {
@@ -70,7 +71,7 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 		return ghostCell, nil
 	case w.cell.Shape.Dimension != w.dimension:
 		return otherDimension, nil
-	case !w.cell.Shape.HasMeasure():
+	case !w.cell.Shape.Supported:
 		return unsupportedCell, nil
 	case w.region[i] < 0:
 		return noRegion, nil
@@ -175,10 +176,9 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	if !shape.Interpolates() {
 		return unsupportedCell
 	}
-	count := shape.NodeCount
-	for len(w.stress) < count {
-		w.stress = append(w.stress, mesh.SymmetricTensor{})
-		w.strain = append(w.strain, mesh.SymmetricTensor{})
+	if count := shape.NodeCount; len(w.stress) < count {
+		w.stress, w.strain = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
+		w.rational = make([]float64, count)
 	}
 	w.isYielded[i] = false
 	w.peak[i] = math.Inf(-1)
@@ -228,9 +228,12 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 		w.cell.PlaneElements(rule, elements)
 		factor = w.thickness(chunk, i, r)
 	}
-	var energy, volumetric, total float64
+	if orientation == mesh.Mirrored {
+		factor = -factor
+	}
+	var energy, volumetric float64
 	for q, element := range elements {
-		values := rule.Values[q*shape.NodeCount : (q+1)*shape.NodeCount]
+		values := w.cell.Values(rule, q, w.rational)
 		var stress, strain mesh.SymmetricTensor
 		for k, value := range values {
 			s, e := &w.stress[k], &w.strain[k]
@@ -241,12 +244,6 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 		}
 		energy += float64(Density(&stress, &strain) * element)
 		volumetric += float64(VolumetricDensity(&stress, &strain) * element)
-		total += element
-	}
-	// A wedge of the other lawful node order, or a mirrored cell, has the negative
-	// of its volume here.
-	if orientation != mesh.Tangled && total < 0 {
-		factor = -factor
 	}
 	w.energy[i] = energy * factor
 	w.volumetric[i] = 0
