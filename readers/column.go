@@ -1,0 +1,252 @@
+package readers
+
+import (
+	"fmt"
+	"unsafe"
+
+	"strainledger/mesh"
+)
+
+// A form is the way in which the bytes of an array are kept in its file.
+type form uint8
+
+const (
+	plainForm form = iota + 1 // one run of bytes
+	blockForm                 // compressed blocks
+	textForm                  // numbers in words
+	emptyForm                 // no values
+)
+
+// A column is one array of a file: what it holds and where it stands. It is shared
+// by all workers.
+type column struct {
+	mesh.Array
+	number    number
+	bigEndian bool
+	file      *file
+	start     int64 // where its values begin in the file
+	payload
+	slot int // position among the kept buffers of a cursor
+}
+
+// A payload is where the values of an array are and how they are kept.
+type payload struct {
+	form   form
+	length int64   // bytes that are there, decoded; of text unknown
+	stored stored  // plainForm
+	blocks *blocks // blockForm
+	text   *index  // textForm
+}
+
+// width returns the bytes of one tuple.
+func (a *column) width() int64 { return a.number.size() * int64(a.Components) }
+
+// fail puts the array's name and place to an error.
+func (a *column) fail(err error) error {
+	if place, ok := err.(*Error); ok {
+		if place.Array == "" {
+			place.Array = a.Name
+		}
+		return err
+	}
+	return &Error{Path: a.file.path, Offset: a.start, Array: a.Name, Err: err, file: a.file}
+}
+
+// need checks that the array holds as many tuples as its place demands, before
+// anything is read from it or allocated for it.
+func (a *column) need(tuples int64, what string) error {
+	if a.width() > 0 && tuples > (1<<62)/a.width() {
+		return a.fail(malformed("found %d %s, need fewer", tuples, what))
+	}
+	bytes := tuples * a.width()
+	values := tuples * int64(a.Components)
+	switch {
+	case tuples == 0 || a.number.size() == 0:
+	case a.form == textForm:
+		// a value and the blank behind it take two characters
+		if most := (a.text.end - a.text.start + 1) / 2; values > most {
+			return a.fail(truncated("%d %s with %d components need %d values, found room for %d",
+				tuples, what, a.Components, values, most))
+		}
+	case bytes > a.length:
+		return a.fail(truncated("%d %s with %d components need %d bytes, found %d", tuples, what, a.Components, bytes, a.length))
+	}
+	a.Tuples = tuples
+	return nil
+}
+
+// A slot is what one worker keeps of a column: the bytes that it decoded last.
+type slot struct {
+	owner     *column
+	low, high int64 // range of the column's bytes in memory
+	buffer    []uint64
+	data      []byte // the buffer as bytes; data[0] is byte low
+	words     words  // text: where reading goes on
+	next      int64  // text: number of the word that comes next
+	swapped   []byte
+	floats    []float64
+	labels    []int64
+}
+
+// room makes a scratch buffer of n bytes from a kept one. What it held is lost.
+func room(buffer *[]byte, n int) []byte {
+	if cap(*buffer) < n {
+		*buffer = make([]byte, n+n/4)
+	}
+	return (*buffer)[:n]
+}
+
+// reserve gives the slot room for n bytes and keeps the first kept ones.
+func (s *slot) reserve(n int64, kept int64) {
+	words := (n + 7) / 8
+	if int64(len(s.buffer)) < words {
+		buffer := make([]uint64, words+words/4)
+		copy(buffer, s.buffer[:(kept+7)/8])
+		s.buffer = buffer
+	}
+	s.data = unsafe.Slice((*byte)(unsafe.Pointer(unsafe.SliceData(s.buffer))), 8*len(s.buffer))[:n]
+}
+
+// bytes returns the bytes [low, high) of the array, little-endian, valid until the
+// worker's next call for the same array. Blocks that the range shares with the one
+// before are not decoded again.
+func (a *column) bytes(c *cursor, low, high int64) ([]byte, error) {
+	if low == high {
+		return nil, nil
+	}
+	s := &c.slots[a.slot]
+	if s.owner != a {
+		s.owner, s.low, s.high, s.words.file = a, 0, 0, nil
+	}
+	if low < s.low || high > s.high {
+		if err := a.load(c, s, low, high); err != nil {
+			s.owner = nil
+			return nil, a.fail(err)
+		}
+	}
+	data := s.data[low-s.low : high-s.low]
+	if a.bigEndian && a.form == blockForm { // a block may end inside a number, so what is kept stays as it is
+		s.swapped = append(s.swapped[:0], data...)
+		data = s.swapped
+		swap(data, a.number.size())
+	}
+	return data, nil
+}
+
+// load brings the bytes [low, high) into memory, together with what comes with them.
+func (a *column) load(c *cursor, s *slot, low, high int64) error {
+	switch a.form {
+	case plainForm:
+		s.reserve(high-low, 0)
+		s.low, s.high = low, high
+		if err := a.stored.read(c, s.data, low); err != nil {
+			return err
+		}
+		if a.bigEndian {
+			swap(s.data, a.number.size())
+		}
+		return nil
+	case blockForm:
+		return a.unpackBlocks(c, s, low, high)
+	case textForm:
+		return a.parse(c, s, low, high)
+	}
+	return truncated("found no values, need %d bytes", high)
+}
+
+// unpackBlocks decodes the blocks that cover [low, high) and are not yet in memory.
+func (a *column) unpackBlocks(c *cursor, s *slot, low, high int64) error {
+	size := a.blocks.size
+	if high > a.length {
+		return truncated("%d bytes needed, found %d", high, a.length)
+	}
+	first, behind := low/size, (high+size-1)/size
+	start := first * size
+	end := min(behind*size, a.length)
+	kept := int64(0)
+	if start >= s.low && start < s.high {
+		kept = s.high - start
+		copy(s.data, s.data[start-s.low:s.high-s.low])
+	}
+	s.reserve(end-start, kept)
+	s.low, s.high = start, end
+	return a.blocks.decode(c, s.data[kept:], first+(kept+size-1)/size, behind)
+}
+
+// parse reads the words that hold [low, high).
+func (a *column) parse(c *cursor, s *slot, low, high int64) error {
+	size := a.number.size()
+	first := low / size
+	if s.words.file == nil || first < s.next || first > s.next+pageSize {
+		page, before, found, err := a.text.page(&c.hand, room(&c.page, pageSize+1), first)
+		if err != nil {
+			return err
+		}
+		if !found {
+			return a.file.fail(a.text.end, truncated("%d values needed, found %d", high/size, before))
+		}
+		s.words.hand = &c.hand
+		if err := s.words.seek(a.text, page, before, first); err != nil {
+			return err
+		}
+	} else if err := s.words.skip(first - s.next); err != nil {
+		return err
+	}
+	s.reserve(high-low, 0)
+	s.low, s.high = low, high
+	s.next = high / size
+	return s.words.numbers(a.number, s.data)
+}
+
+// values returns the tuples [low, high) as float64, valid until the worker's next
+// call for the same array. Little-endian doubles are not copied.
+func (a *column) values(c *cursor, low, high int64) ([]float64, error) {
+	data, err := a.bytes(c, low*a.width(), high*a.width())
+	if err != nil {
+		return nil, err
+	}
+	if a.number == float64Number && littleHost && isAligned(data) {
+		return floatView(data), nil
+	}
+	s := &c.slots[a.slot]
+	count := int((high - low) * int64(a.Components))
+	if cap(s.floats) < count {
+		s.floats = make([]float64, count)
+	}
+	s.floats = s.floats[:count]
+	a.number.widen(s.floats, data)
+	return s.floats, nil
+}
+
+// valuesTo writes the tuples [low, high) as float64.
+func (a *column) valuesTo(c *cursor, low, high int64, to []float64) error {
+	to = to[:(high-low)*int64(a.Components)]
+	if a.form == plainForm && a.number == float64Number && littleHost && !a.bigEndian {
+		return a.stored.read(c, byteView(to), low*a.width()) // straight into place
+	}
+	data, err := a.bytes(c, low*a.width(), high*a.width())
+	if err == nil {
+		a.number.widen(to, data)
+	}
+	return err
+}
+
+// labels returns the tuples [low, high), of one component, as whole numbers.
+func (a *column) labels(c *cursor, low, high int64) ([]int64, error) {
+	data, err := a.bytes(c, low*a.width(), high*a.width())
+	if err != nil {
+		return nil, err
+	}
+	s := &c.slots[a.slot]
+	if count := int(high - low); cap(s.labels) < count {
+		s.labels = make([]int64, count)
+	}
+	s.labels = s.labels[:high-low]
+	a.number.label(s.labels, data)
+	return s.labels, nil
+}
+
+// describe says what the array is, for messages.
+func (a *column) describe() string {
+	return fmt.Sprintf("%s with %d components", a.number, a.Components)
+}

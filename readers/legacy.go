@@ -1,0 +1,501 @@
+package readers
+
+import (
+	"math"
+	"strconv"
+	"strings"
+
+	"strainledger/mesh"
+)
+
+// A legacyFile is a file of VTK's legacy format while its header is read. After the
+// title it is a stream of words; in binary files the values between them are
+// big-endian and begin behind the end of the line.
+type legacyFile struct {
+	file     *file
+	window   *window
+	cursor   *cursor
+	limits   Limits
+	isBinary bool
+	version  int // 100 × major + minor
+	kind     string
+	piece    *piece
+	fields   []*column
+	ends     bool // no more words
+}
+
+// readLegacy reads a legacy file as one block.
+func (o *opener) readLegacy(f *file, name string) error {
+	l := &legacyFile{
+		file: f, window: newWindow(&o.cursor.hand, f), cursor: o.cursor, limits: o.limits,
+		piece: &piece{file: f},
+	}
+	if err := l.read(); err != nil {
+		return err
+	}
+	source := mesh.Source{Path: f.path, Bytes: f.size, Time: math.NaN()}
+	for _, a := range l.fields {
+		o.model.Fields = append(o.model.Fields, a.Array)
+		if err := o.takeTime(a, &source); err != nil {
+			return err
+		}
+	}
+	if err := o.addPiece(l.piece, &source, o.block(name)); err != nil {
+		return err
+	}
+	o.model.Sources = append(o.model.Sources, source)
+	return nil
+}
+
+// read reads the whole header.
+func (l *legacyFile) read() error {
+	if err := l.begin(); err != nil {
+		return err
+	}
+	keyword, err := l.keyword()
+	if err != nil {
+		return err
+	}
+	if keyword != "DATASET" {
+		return l.window.fail(malformed("found %.40q, need DATASET", keyword))
+	}
+	if l.kind, err = l.keyword(); err != nil {
+		return err
+	}
+	if l.kind != "UNSTRUCTURED_GRID" {
+		return l.window.fail(unsupported("found data set of kind %.40q", l.kind))
+	}
+	if err := l.geometry(); err != nil {
+		return err
+	}
+	return l.check()
+}
+
+// begin reads the three lines before the words.
+func (l *legacyFile) begin() error {
+	line, err := l.line()
+	if err != nil {
+		return err
+	}
+	version, ok := strings.CutPrefix(line, "# vtk DataFile Version ")
+	if !ok {
+		return l.file.fail(0, malformed("found %.40q, need \"# vtk DataFile Version\" and a number", line))
+	}
+	l.version = versionNumber(strings.TrimSpace(version), 300)
+	if _, err := l.line(); err != nil {
+		return err
+	}
+	coding, err := l.keyword()
+	if err != nil {
+		return err
+	}
+	switch coding {
+	case "ASCII":
+		l.file.text = l.file.size
+	case "BINARY":
+		l.isBinary = true
+		l.file.text = l.window.offset()
+	default:
+		return l.window.fail(malformed("found %.40q, need ASCII or BINARY", coding))
+	}
+	return nil
+}
+
+// geometry reads the sections of the file one by one.
+func (l *legacyFile) geometry() error {
+	for {
+		keyword, err := l.keyword()
+		if err != nil || l.ends {
+			return err
+		}
+		switch keyword {
+		case "POINTS":
+			err = l.points()
+		case "CELLS":
+			err = l.cells()
+		case "CELL_TYPES":
+			err = l.cellTypes()
+		case "FIELD":
+			err = l.field(mesh.OnField, -1)
+		case "METADATA":
+			err = l.metadata(nil)
+		case "POINT_DATA", "CELL_DATA":
+			return l.attributes(keyword)
+		default:
+			err = l.window.fail(malformed("found %.40q, need POINTS, CELLS, CELL_TYPES, FIELD, POINT_DATA or CELL_DATA", keyword))
+		}
+		if err != nil {
+			return err
+		}
+	}
+}
+
+// check compares the parts with each other.
+func (l *legacyFile) check() error {
+	p := l.piece
+	if len(p.sections) == 0 {
+		return nil
+	}
+	s := &p.sections[0]
+	if s.types == nil && p.cellCount > 0 {
+		return l.file.fail(l.file.size, truncated("found %d cells and no CELL_TYPES", p.cellCount))
+	}
+	if s.types != nil && s.types.Tuples != p.cellCount {
+		return s.types.fail(malformed("found types of %d cells, need %d", s.types.Tuples, p.cellCount))
+	}
+	if s.connectivity == nil && s.list == nil && p.cellCount > 0 {
+		return l.file.fail(l.file.size, truncated("found types of %d cells and no CELLS", p.cellCount))
+	}
+	return nil
+}
+
+// points reads POINTS n type.
+func (l *legacyFile) points() error {
+	count, err := l.count("points")
+	if err != nil {
+		return err
+	}
+	if count > l.limits.Points {
+		return l.window.fail(overLimit("found %d points; need at most the limit of %d", count, l.limits.Points))
+	}
+	l.piece.pointCount = count
+	l.piece.points, err = l.array("POINTS", mesh.OnPoint, 3, count)
+	return err
+}
+
+// section returns the one run of cells of an unstructured grid.
+func (l *legacyFile) section() *section {
+	if len(l.piece.sections) == 0 {
+		l.piece.sections = []section{{}}
+	}
+	return &l.piece.sections[0]
+}
+
+// cells reads CELLS in the layout of the file's version: before 5 a list with the
+// node count before each cell's nodes, from 5 on two arrays.
+func (l *legacyFile) cells() error {
+	first, err := l.count("cells")
+	if err != nil {
+		return err
+	}
+	size, err := l.count("entries")
+	if err != nil {
+		return err
+	}
+	s := l.section()
+	if l.version >= 500 {
+		return l.cellArrays(s, first, size)
+	}
+	if first > size {
+		return l.window.fail(malformed("found %d cells in %d entries, need an entry for each cell and each node", first, size))
+	}
+	s.count, l.piece.cellCount = first, first
+	a, err := l.values("CELLS", mesh.OnCell, int32Number, 1, size)
+	s.list = &cellList{column: a, cells: first}
+	return err
+}
+
+// cellArrays reads OFFSETS and CONNECTIVITY.
+func (l *legacyFile) cellArrays(s *section, offsets, entries int64) error {
+	if offsets == 0 {
+		return nil
+	}
+	s.count, l.piece.cellCount = offsets-1, offsets-1
+	s.isLed = true
+	for _, part := range []struct {
+		name  string
+		count int64
+		to    **column
+	}{{"OFFSETS", offsets, &s.offsets}, {"CONNECTIVITY", entries, &s.connectivity}} {
+		keyword, err := l.keyword()
+		if err != nil {
+			return err
+		}
+		if keyword != part.name {
+			return l.window.fail(malformed("found %.40q, need %s", keyword, part.name))
+		}
+		if *part.to, err = l.array(part.name, mesh.OnCell, 1, part.count); err != nil {
+			return err
+		}
+		if !(*part.to).number.isInteger() {
+			return (*part.to).fail(malformed("found values of type %s, need whole numbers", (*part.to).number))
+		}
+	}
+	return nil
+}
+
+func (l *legacyFile) cellTypes() error {
+	count, err := l.count("cell types")
+	if err != nil {
+		return err
+	}
+	l.section().types, err = l.values("CELL_TYPES", mesh.OnCell, int32Number, 1, count)
+	return err
+}
+
+// attributes reads the sections of point and cell data.
+func (l *legacyFile) attributes(keyword string) error {
+	on := mesh.OnPoint
+	tuples := l.piece.pointCount
+	for {
+		var err error
+		switch keyword {
+		case "POINT_DATA", "CELL_DATA":
+			on, tuples = mesh.OnPoint, l.piece.pointCount
+			if keyword == "CELL_DATA" {
+				on, tuples = mesh.OnCell, l.piece.cellCount
+			}
+			var count int64
+			if count, err = l.count("tuples"); err == nil && count != tuples {
+				err = l.window.fail(malformed("found %s of %d %ss, need %d", keyword, count, on, tuples))
+			}
+		case "SCALARS":
+			err = l.scalars(on, tuples)
+		case "VECTORS", "NORMALS":
+			err = l.named(on, 3, tuples)
+		case "TENSORS":
+			err = l.named(on, 9, tuples)
+		case "TENSORS6":
+			err = l.named(on, 6, tuples)
+		case "GLOBAL_IDS", "PEDIGREE_IDS", "EDGE_FLAGS":
+			err = l.named(on, 1, tuples)
+		case "TEXTURE_COORDINATES", "COLOR_SCALARS":
+			err = l.sized(keyword, on, tuples)
+		case "LOOKUP_TABLE":
+			err = l.table()
+		case "FIELD":
+			err = l.field(on, tuples)
+		case "METADATA":
+			err = l.metadata(nil)
+		default:
+			err = l.window.fail(malformed("found %.40q, need a keyword of point or cell data", keyword))
+		}
+		if err != nil {
+			return err
+		}
+		if keyword, err = l.keyword(); err != nil || l.ends {
+			return err
+		}
+	}
+}
+
+// keep takes an array into the piece; of one name the first counts.
+func (l *legacyFile) keep(a *column) {
+	p := l.piece
+	for _, other := range p.arrays {
+		if other.On == a.On && other.Name == a.Name {
+			return
+		}
+	}
+	isLevel := a.Name == "vtkGhostLevels" && l.version < 400
+	if a.On == mesh.OnCell && a.Components == 1 && a.number.isInteger() && (isLevel || a.Name == "vtkGhostType") {
+		p.ghosts, p.isLevel = a, isLevel
+	}
+	if a.On == mesh.OnCell && a.Name == "HigherOrderDegrees" && a.Components == 3 {
+		p.degrees = a
+	}
+	p.arrays = append(p.arrays, a)
+}
+
+// scalars reads SCALARS name type [components], which may be followed by the name
+// of a table.
+func (l *legacyFile) scalars(on mesh.Location, tuples int64) error {
+	name, err := l.name()
+	if err != nil {
+		return err
+	}
+	n, err := l.numberType()
+	if err != nil {
+		return err
+	}
+	components := int64(1)
+	next, err := l.peek()
+	if err != nil {
+		return err
+	}
+	if count, ok := digits(next); ok && l.sameLine() {
+		components = count
+		if _, err := l.word(); err != nil {
+			return err
+		}
+	}
+	if next, err = l.peek(); err != nil {
+		return err
+	}
+	if strings.EqualFold(next, "LOOKUP_TABLE") {
+		for range 2 {
+			if _, err := l.word(); err != nil {
+				return err
+			}
+		}
+	}
+	return l.kept(name, on, n, components, tuples)
+}
+
+// named reads a keyword's name and type.
+func (l *legacyFile) named(on mesh.Location, components, tuples int64) error {
+	name, err := l.name()
+	if err != nil {
+		return err
+	}
+	n, err := l.numberType()
+	if err != nil {
+		return err
+	}
+	return l.kept(name, on, n, components, tuples)
+}
+
+// sized reads the keywords that state their component count.
+func (l *legacyFile) sized(keyword string, on mesh.Location, tuples int64) error {
+	name, err := l.name()
+	if err != nil {
+		return err
+	}
+	components, err := l.count("components")
+	if err != nil {
+		return err
+	}
+	n := legacyNumber{uint8Number, false}
+	if keyword == "TEXTURE_COORDINATES" {
+		if n, err = l.numberType(); err != nil {
+			return err
+		}
+	} else if !l.isBinary {
+		n.number = float32Number // 0 to 1
+	}
+	return l.kept(name, on, n, components, tuples)
+}
+
+func (l *legacyFile) kept(name string, on mesh.Location, n legacyNumber, components, tuples int64) error {
+	a, err := l.typed(name, on, n, components, tuples)
+	if err != nil {
+		return err
+	}
+	l.keep(a)
+	return l.trailing(a)
+}
+
+// table passes over LOOKUP_TABLE name size.
+func (l *legacyFile) table() error {
+	name, err := l.name()
+	if err != nil {
+		return err
+	}
+	rows, err := l.count("rows")
+	if err != nil {
+		return err
+	}
+	n := float32Number
+	if l.isBinary {
+		n = uint8Number
+	}
+	_, err = l.values(name, mesh.OnField, n, 4, rows)
+	return err
+}
+
+// field reads FIELD name count and its arrays; with tuples below 0 they may have any
+// number of tuples.
+func (l *legacyFile) field(on mesh.Location, tuples int64) error {
+	if _, err := l.word(); err != nil {
+		return err
+	}
+	arrays, err := l.count("arrays")
+	if err != nil {
+		return err
+	}
+	for range arrays {
+		name, err := l.name()
+		if err != nil {
+			return err
+		}
+		if name == "NULL_ARRAY" {
+			continue
+		}
+		components, err := l.count("components")
+		if err != nil {
+			return err
+		}
+		count, err := l.count("tuples")
+		if err != nil {
+			return err
+		}
+		if tuples >= 0 && count != tuples {
+			return l.window.fail(malformed("array %.40q: found %d tuples, need %d", name, count, tuples))
+		}
+		n, err := l.numberType()
+		if err != nil {
+			return err
+		}
+		a, err := l.typed(name, on, n, components, count)
+		if err != nil {
+			return err
+		}
+		if on == mesh.OnField {
+			l.fields = append(l.fields, a)
+		} else {
+			l.keep(a)
+		}
+		if err := l.trailing(a); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// trailing reads the METADATA that may follow an array.
+func (l *legacyFile) trailing(a *column) error {
+	next, err := l.peek()
+	if err != nil || !strings.EqualFold(next, "METADATA") {
+		return err
+	}
+	if _, err := l.word(); err != nil {
+		return err
+	}
+	return l.metadata(a)
+}
+
+// metadata reads to the next blank line and takes the names of components.
+func (l *legacyFile) metadata(a *column) error {
+	if _, err := l.line(); err != nil {
+		return err
+	}
+	for {
+		line, err := l.line()
+		if err != nil || strings.TrimSpace(line) == "" {
+			return err
+		}
+		if !strings.HasPrefix(line, "COMPONENT_NAMES") || a == nil {
+			continue
+		}
+		for range a.Components {
+			if line, err = l.line(); err != nil || strings.TrimSpace(line) == "" {
+				return err
+			}
+			a.ComponentNames = append(a.ComponentNames, decodePercent(strings.TrimSpace(line)))
+		}
+	}
+}
+
+// decodePercent resolves %XX; a percent sign without two hex digits stays.
+func decodePercent(text string) string {
+	if !strings.Contains(text, "%") {
+		return text
+	}
+	var plain strings.Builder
+	for i := 0; i < len(text); i++ {
+		if text[i] == '%' && i+2 < len(text) {
+			if value, err := strconv.ParseUint(text[i+1:i+3], 16, 8); err == nil {
+				plain.WriteByte(byte(value))
+				i += 2
+				continue
+			}
+		}
+		plain.WriteByte(text[i])
+	}
+	return plain.String()
+}
+
+func digits(word string) (int64, bool) {
+	value, err := strconv.ParseInt(word, 10, 64)
+	return value, err == nil && value >= 0
+}

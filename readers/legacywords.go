@@ -1,0 +1,312 @@
+package readers
+
+import (
+	"bytes"
+	"strconv"
+	"strings"
+
+	"strainledger/mesh"
+)
+
+// word returns the next word; at the end of the file "" and ends is set.
+func (l *legacyFile) word() (string, error) {
+	word, err := l.peek()
+	l.ends = err == nil && word == ""
+	l.window.at += len(word)
+	return word, err
+}
+
+// peek returns the next word without passing it.
+func (l *legacyFile) peek() (string, error) {
+	if _, found, err := l.window.blanks(); err != nil || !found {
+		return "", err
+	}
+	w := l.window
+	for searched := 0; ; {
+		text := w.buffer[w.at:]
+		for searched < len(text) && text[searched] > ' ' {
+			searched++
+		}
+		if searched < len(text) {
+			return string(text[:searched]), nil
+		}
+		if int64(searched) > l.limits.Text {
+			return "", w.fail(overLimit("found a word of more than %d bytes; need fewer than the limit for texts", searched))
+		}
+		if more, err := w.more(); err != nil || !more {
+			return string(text), err
+		}
+	}
+}
+
+// keyword returns the next word in capitals.
+func (l *legacyFile) keyword() (string, error) {
+	word, err := l.word()
+	return strings.ToUpper(word), err
+}
+
+// name returns the next word as the name of an array.
+func (l *legacyFile) name() (string, error) {
+	word, err := l.word()
+	if err == nil && l.ends {
+		err = l.window.fail(truncated("found no name of an array"))
+	}
+	return decodePercent(word), err
+}
+
+// count returns the next word as a count.
+func (l *legacyFile) count(what string) (int64, error) {
+	word, err := l.word()
+	if err != nil {
+		return 0, err
+	}
+	value, err := strconv.ParseInt(word, 10, 64)
+	switch {
+	case l.ends:
+		return 0, l.window.fail(truncated("found no number of %s", what))
+	case err != nil || value < 0:
+		return 0, l.window.fail(malformed("found %.40q, need a number of %s", word, what))
+	}
+	return value, nil
+}
+
+// line returns the rest of the line and moves behind it.
+func (l *legacyFile) line() (string, error) {
+	w := l.window
+	if _, err := w.rest(); err != nil {
+		return "", err
+	}
+	for searched := 0; ; {
+		text := w.buffer[w.at:]
+		if i := bytes.IndexByte(text[searched:], '\n'); i >= 0 {
+			line := string(text[:searched+i])
+			w.at += searched + i + 1
+			return strings.TrimSuffix(line, "\r"), nil
+		}
+		if int64(len(text)) > l.limits.Text {
+			return "", w.fail(overLimit("found a line of more than %d bytes; need fewer than the limit for texts", len(text)))
+		}
+		searched = len(text)
+		if more, err := w.more(); err != nil {
+			return "", err
+		} else if !more {
+			w.at += len(text)
+			return string(text), nil
+		}
+	}
+}
+
+// sameLine reports whether the next word stands in the line of the one before. The
+// blanks between them are still in memory when peek has just been called.
+func (l *legacyFile) sameLine() bool {
+	w := l.window
+	for i := w.at - 1; i >= 0 && w.buffer[i] <= ' '; i-- {
+		if w.buffer[i] == '\n' {
+			return false
+		}
+	}
+	return true
+}
+
+// A legacyNumber is a number type of the legacy format. Long has 8 bytes or, from
+// some systems, 4.
+type legacyNumber struct {
+	number number
+	isLong bool
+}
+
+var legacyNumbers = map[string]legacyNumber{
+	"bit": {bitNumber, false}, "char": {int8Number, false}, "signed_char": {int8Number, false},
+	"unsigned_char": {uint8Number, false}, "short": {int16Number, false}, "unsigned_short": {uint16Number, false},
+	"int": {int32Number, false}, "unsigned_int": {uint32Number, false},
+	"long": {int64Number, true}, "unsigned_long": {uint64Number, true},
+	"vtktypeint64": {int64Number, false}, "vtktypeuint64": {uint64Number, false},
+	"vtkidtype": {int32Number, false}, "float": {float32Number, false}, "double": {float64Number, false},
+	"string": {stringNumber, false}, "utf8_string": {stringNumber, false},
+}
+
+// numberType returns the next word as a number type.
+func (l *legacyFile) numberType() (legacyNumber, error) {
+	word, err := l.word()
+	if err != nil {
+		return legacyNumber{}, err
+	}
+	n, ok := legacyNumbers[strings.ToLower(word)]
+	if !ok {
+		return n, l.window.fail(unsupported("found the number type %.40q, need one of the legacy format (int, float, double ...)", word))
+	}
+	return n, nil
+}
+
+// array reads a type and passes over so many values of it.
+func (l *legacyFile) array(name string, on mesh.Location, components, tuples int64) (*column, error) {
+	n, err := l.numberType()
+	if err != nil {
+		return nil, err
+	}
+	a, err := l.typed(name, on, n, components, tuples)
+	if err != nil {
+		return nil, err
+	}
+	return a, l.trailing(a)
+}
+
+// typed passes over the values of an array. Where long may have two sizes, that is
+// taken which makes a word follow the values.
+func (l *legacyFile) typed(name string, on mesh.Location, n legacyNumber, components, tuples int64) (*column, error) {
+	start := l.window.offset()
+	a, err := l.values(name, on, n.number, components, tuples)
+	if !n.isLong || !l.isBinary || tuples == 0 {
+		return a, err
+	}
+	if err == nil && l.wordFollows() {
+		return a, nil
+	}
+	if err := l.window.jump(start); err != nil {
+		return nil, err
+	}
+	short := int32Number
+	if n.number == uint64Number {
+		short = uint32Number
+	}
+	if b, shortErr := l.values(name, on, short, components, tuples); shortErr == nil && (err != nil || l.wordFollows()) {
+		return b, nil
+	}
+	if err != nil {
+		return nil, err
+	}
+	return a, l.window.jump(a.start + a.length)
+}
+
+// wordFollows reports whether a keyword or the end of the file comes next.
+func (l *legacyFile) wordFollows() bool {
+	word, err := l.peek()
+	if err != nil {
+		return false
+	}
+	for _, c := range []byte(word) {
+		if c > '~' {
+			return false
+		}
+	}
+	return len(word) < 256 && (word == "" || word[0] >= 'A' && word[0] <= 'z')
+}
+
+// values passes over values and returns where they are.
+func (l *legacyFile) values(name string, on mesh.Location, n number, components, tuples int64) (*column, error) {
+	if components < 1 || components > 1<<31 || tuples > (1<<60)/components {
+		return nil, l.window.fail(malformed("array %.40q: found %d tuples with %d components, need fewer", name, tuples, components))
+	}
+	a := &column{
+		Array: mesh.Array{Name: name, On: on, Type: n.String(), Components: int(components), Tuples: tuples},
+		file:  l.file, number: n, start: l.window.offset(), payload: payload{form: emptyForm},
+	}
+	count := tuples * components
+	if count == 0 {
+		return a, nil
+	}
+	switch {
+	case n == stringNumber && l.isBinary:
+		return a, l.binaryStrings(a, count)
+	case n == stringNumber:
+		return a, l.textStrings(a, count)
+	case l.isBinary:
+		return a, l.binaryValues(a, count)
+	}
+	return a, l.textValues(a, count)
+}
+
+// binaryValues passes over a run of bytes behind the end of the line.
+func (l *legacyFile) binaryValues(a *column, count int64) error {
+	if _, err := l.line(); err != nil {
+		return err
+	}
+	bytes := count * a.number.size()
+	if a.number == bitNumber {
+		bytes = (count + 7) / 8
+	}
+	a.start = l.window.offset()
+	if found := l.file.size - a.start; bytes > found {
+		return a.fail(truncated("%d tuples with %d components need %d bytes, found %d", a.Tuples, a.Components, bytes, found))
+	}
+	if a.number != bitNumber {
+		a.payload = payload{form: plainForm, length: bytes, stored: stored{file: l.file, start: a.start}}
+		a.bigEndian = true
+	}
+	return l.window.jump(a.start + bytes)
+}
+
+// textValues passes over words and keeps the index that counting them makes.
+func (l *legacyFile) textValues(a *column, count int64) error {
+	if room := (l.file.size - a.start + 1) / 2; count > room {
+		return a.fail(truncated("%d tuples with %d components need %d values, found room for %d", a.Tuples, a.Components, count, room))
+	}
+	text := newIndex(l.file, a.start, l.file.size, true)
+	c := l.cursor
+	page, before, found, err := text.page(&c.hand, room(&c.page, pageSize+1), count-1)
+	if err != nil {
+		return a.fail(err)
+	}
+	if !found {
+		return a.fail(truncated("%d tuples with %d components need %d values, found %d", a.Tuples, a.Components, count, before))
+	}
+	words := &words{hand: &c.hand}
+	if err := words.seek(text, page, before, count-1); err != nil {
+		return a.fail(err)
+	}
+	if err := words.skip(1); err != nil {
+		return a.fail(err)
+	}
+	text.end = words.offset
+	if a.number != bitNumber {
+		a.payload = payload{form: textForm, text: text}
+	}
+	return l.window.jump(words.offset)
+}
+
+// textStrings passes over one line for each string.
+func (l *legacyFile) textStrings(a *column, count int64) error {
+	if _, err := l.line(); err != nil {
+		return err
+	}
+	if found := l.file.size - l.window.offset(); count > found+1 {
+		return a.fail(truncated("%d strings needed, found %d bytes", count, found))
+	}
+	for range count {
+		if _, err := l.line(); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// binaryStrings passes over strings, each behind its length in 1, 2, 4 or 8 bytes,
+// which the top two bits of the first byte tell.
+func (l *legacyFile) binaryStrings(a *column, count int64) error {
+	if _, err := l.line(); err != nil {
+		return err
+	}
+	offset := l.window.offset()
+	if found := l.file.size - offset; count > found {
+		return a.fail(truncated("%d strings needed, found %d bytes", count, found))
+	}
+	for i := range count {
+		var head [8]byte
+		if err := l.cursor.hand.readAt(l.file, head[:1], offset); err != nil {
+			return a.fail(err)
+		}
+		size := int64(8) >> (head[0] >> 6)
+		head[0] = 0
+		if err := l.cursor.hand.readAt(l.file, head[8-size:], offset); err != nil {
+			return a.fail(err)
+		}
+		head[8-size] &= 0x3f
+		length := word(head[:], 8, true)
+		offset += size
+		if found := l.file.size - offset; length > uint64(found) {
+			return a.fail(truncated("string %d of %d has %d bytes by its length, found %d", i, count, length, found))
+		}
+		offset += int64(length)
+	}
+	return l.window.jump(offset)
+}

@@ -1,0 +1,447 @@
+package readers
+
+import (
+	"bytes"
+	"math"
+	"strconv"
+	"strings"
+
+	"strainledger/mesh"
+)
+
+// An xmlFile is the header of one file of VTK's XML family.
+type xmlFile struct {
+	file       *file
+	root       *element // VTKFile
+	data       *element // the element of the data set
+	kind       string   // of data set: the root's type
+	version    int      // 100 × major + minor
+	bigEndian  bool
+	wordSize   int64 // bytes of the length words before the arrays
+	compressor compressor
+	limits     Limits
+	cursor     *cursor // for what is read while the header is looked at
+
+	hasAppended    bool
+	appended       int64 // offset of the first byte of the appended arrays
+	appendedBase64 bool
+	step           string // TimeStep of the arrays that are taken; "" takes all
+}
+
+// readXML reads the header: all elements with their attributes, no values.
+func readXML(f *file, c *cursor, limits Limits) (*xmlFile, error) {
+	x := &xmlFile{file: f, cursor: c, limits: limits}
+	f.text = f.size
+	m := &markup{window: newWindow(&c.hand, f), limits: limits}
+	if _, err := m.window.rest(); err != nil {
+		return nil, err
+	}
+	var stack []*element
+	for {
+		t, err := m.next()
+		if err != nil {
+			return nil, err
+		}
+		if t == nil {
+			break
+		}
+		e := t.element
+		if len(stack) > 0 && stack[len(stack)-1].end == 0 {
+			stack[len(stack)-1].end = e.offset
+		}
+		if t.isEnd {
+			if len(stack) == 0 || stack[len(stack)-1].name != e.name {
+				return nil, m.window.fail(malformed("found </%.40s>, need the end of another element", e.name))
+			}
+			if stack = stack[:len(stack)-1]; len(stack) == 0 {
+				break
+			}
+			continue
+		}
+		if len(stack) == 0 {
+			if err := x.begin(e); err != nil {
+				return nil, placedAt(f, e, err)
+			}
+		} else {
+			if e.name == "AppendedData" && len(stack) == 1 {
+				return x, x.append(e, m.window)
+			}
+			parent := stack[len(stack)-1]
+			parent.children = append(parent.children, e)
+		}
+		if t.isEmpty {
+			e.end = e.start
+			continue
+		}
+		if stack = append(stack, e); len(stack) > limits.Nesting {
+			return nil, placedAt(f, e, overLimit("found elements nested %d deep; need at most the limit of %d", len(stack), limits.Nesting))
+		}
+		if isArray(e) && e.attribute("format") == "binary" && !has(e, "offset") {
+			if err := x.skip(e, m.window); err != nil {
+				return nil, placedAt(f, e, err)
+			}
+		}
+	}
+	if len(stack) > 0 {
+		return nil, m.window.fail(truncated("element %s has no end", stack[len(stack)-1].name))
+	}
+	if x.root == nil {
+		return nil, f.fail(0, malformed("found no element, need VTKFile"))
+	}
+	return x, nil
+}
+
+func isArray(e *element) bool { return e.name == "DataArray" || e.name == "Array" }
+
+func has(e *element, name string) bool {
+	_, ok := e.get(name)
+	return ok
+}
+
+// placedAt puts the place of an element to an error that has none.
+func placedAt(f *file, e *element, err error) error {
+	if _, ok := err.(*Error); ok || err == nil {
+		return err
+	}
+	return f.fail(e.offset, err)
+}
+
+// begin takes what the root element says.
+func (x *xmlFile) begin(e *element) error {
+	if e.name != "VTKFile" {
+		return malformed("found the element %.40q, need VTKFile", e.name)
+	}
+	x.root = e
+	x.kind = e.attribute("type")
+	if x.kind == "" {
+		return malformed("element VTKFile: found no attribute type, need the kind of data set")
+	}
+	switch order := e.attribute("byte_order"); order {
+	case "", "LittleEndian":
+	case "BigEndian":
+		x.bigEndian = true
+	default:
+		return attributeError(e, "byte_order", order, "LittleEndian or BigEndian")
+	}
+	switch words := e.attribute("header_type"); words {
+	case "", "UInt32":
+		x.wordSize = 4
+	case "UInt64":
+		x.wordSize = 8
+	default:
+		return attributeError(e, "header_type", words, "UInt32 or UInt64")
+	}
+	x.version = versionNumber(e.attribute("version"), 100)
+	var err error
+	x.compressor, err = compressorNamed(e.attribute("compressor"))
+	return err
+}
+
+// versionNumber returns 100 × major + minor, or the given number for what is none.
+func versionNumber(text string, unknown int) int {
+	major, minor, _ := strings.Cut(text, ".")
+	m, err := strconv.Atoi(major)
+	if err != nil || m < 0 || m > 1000 {
+		return unknown
+	}
+	n, err := strconv.Atoi(minor)
+	if err != nil || n < 0 || n > 99 {
+		n = 0
+	}
+	return 100*m + n
+}
+
+// append takes the place of the appended arrays: behind the underscore, which is the
+// first byte that is no white space.
+func (x *xmlFile) append(e *element, w *window) error {
+	switch encoding := e.attribute("encoding"); encoding {
+	case "", "base64":
+		x.appendedBase64 = true
+	case "raw":
+	default:
+		return placedAt(x.file, e, attributeError(e, "encoding", encoding, "raw or base64"))
+	}
+	c, found, err := w.blanks()
+	if err != nil {
+		return err
+	}
+	x.hasAppended = true
+	x.appended = w.offset()
+	x.file.text = x.appended
+	if found && c == '_' {
+		x.appended++
+	}
+	return nil
+}
+
+// skip jumps over values in base64, whose length their own first bytes tell, so that
+// they need not be looked at. Where no tag follows there, the text is searched for
+// one: somebody has wrapped it into lines.
+func (x *xmlFile) skip(e *element, w *window) error {
+	if _, _, err := w.blanks(); err != nil {
+		return err
+	}
+	start := w.offset()
+	p, length, err := x.binary(start, x.file.size, true, nil)
+	if err == nil && p.form == blockForm {
+		if err = p.blocks.load(x.cursor); err == nil {
+			length += encodedLength(p.blocks.ends[p.blocks.count])
+		}
+	}
+	if err == nil && length <= x.file.size-start {
+		if err := w.jump(start + length); err != nil {
+			return err
+		}
+		c, found, err := w.blanks()
+		if err != nil {
+			return err
+		}
+		if found && c == '<' {
+			e.payload = p
+			return nil
+		}
+	}
+	if err := w.jump(start); err != nil {
+		return err
+	}
+	if found, err := w.find('<'); err != nil || !found {
+		return placedAt(x.file, e, truncated("values of the array have no end"))
+	}
+	end := w.offset()
+	e.payload, _, err = x.binary(start, end, true, newIndex(x.file, start, end, false))
+	if place, ok := err.(*Error); ok && place.Array == "" {
+		place.Array = e.attribute("Name")
+	}
+	return err
+}
+
+// binary takes apart the length words of an array in binary form that begins at
+// start and ends before stop. It also returns the length in characters, of compressed
+// blocks that of their table alone.
+func (x *xmlFile) binary(start, stop int64, isBase64 bool, wrapped *index) (*payload, int64, error) {
+	run := stored{file: x.file, start: start, isBase64: isBase64, wrapped: wrapped}
+	available := stop - start
+	if isBase64 {
+		available = available / 4 * 3
+	}
+	words := make([]byte, 3*x.wordSize)
+	if err := run.read(x.cursor, words[:x.wordSize], 0); err != nil {
+		return nil, 0, err
+	}
+	first := word(words, x.wordSize, x.bigEndian)
+	if x.compressor == 0 {
+		return x.plain(run, first, available)
+	}
+	if first == 0 {
+		return &payload{form: emptyForm}, encodedLength(3 * x.wordSize), nil
+	}
+	if err := run.read(x.cursor, words, 0); err != nil {
+		return nil, 0, err
+	}
+	if first > uint64(available/x.wordSize) {
+		return nil, 0, x.file.fail(start, truncated("%d compressed blocks need a table of as many words, found %d bytes", first, available))
+	}
+	b := &blocks{
+		compressor: x.compressor, wordSize: x.wordSize, bigEndian: x.bigEndian, count: int64(first),
+		size:  int64(word(words[x.wordSize:], x.wordSize, x.bigEndian)),
+		last:  int64(word(words[2*x.wordSize:], x.wordSize, x.bigEndian)),
+		table: run, body: run,
+	}
+	if b.last == 0 {
+		b.last = b.size
+	}
+	head := (3 + b.count) * x.wordSize
+	b.table.shift = 3 * x.wordSize
+	b.room = available - head
+	length := head
+	if isBase64 {
+		length = encodedLength(head)
+		b.body.before = length
+	} else {
+		b.body.shift = head
+	}
+	if err := b.check(x.limits); err != nil {
+		return nil, 0, x.file.fail(start, err)
+	}
+	return &payload{form: blockForm, length: b.total(), blocks: b}, length, nil
+}
+
+// plain takes apart an array that is not compressed. Its length word stands in one
+// run of base64 with the values, or in one of its own, which its padding tells.
+func (x *xmlFile) plain(run stored, bytes uint64, available int64) (*payload, int64, error) {
+	if bytes > math.MaxInt64 || int64(bytes) > available-x.wordSize+2 {
+		return nil, 0, x.file.fail(run.start, truncated("%d bytes of values by the length word, found at most %d to the end", bytes, max(0, available-x.wordSize)))
+	}
+	p := &payload{form: plainForm, length: int64(bytes), stored: run}
+	p.stored.shift = x.wordSize
+	if !run.isBase64 {
+		return p, x.wordSize + p.length, nil
+	}
+	alone := encodedLength(x.wordSize)
+	if p.length > 0 {
+		text, err := run.characters(x.cursor, 0, int(alone))
+		if err != nil {
+			return nil, 0, err
+		}
+		padding := x.wordSize%3 ^ 3 // one for 8 bytes, two for 4
+		if text[alone-1] == '=' && (padding == 1 || text[alone-2] == '=') {
+			p.stored.before, p.stored.shift = alone, 0
+			return p, alone + encodedLength(p.length), nil
+		}
+	}
+	return p, encodedLength(x.wordSize + p.length), nil
+}
+
+// column returns the description of an array element.
+func (x *xmlFile) column(e *element, on mesh.Location) (*column, error) {
+	a := &column{
+		Array: mesh.Array{Name: e.attribute("Name"), On: on, Components: 1},
+		file:  x.file, start: e.start,
+	}
+	err := x.fill(a, e)
+	if err != nil {
+		if place, ok := err.(*Error); ok {
+			if place.Array == "" {
+				place.Array = a.Name
+			}
+			return nil, err
+		}
+		return nil, &Error{Path: x.file.path, Offset: e.offset, Array: a.Name, Err: err, file: x.file}
+	}
+	return a, nil
+}
+
+func (x *xmlFile) fill(a *column, e *element) error {
+	a.Type = e.attribute("type")
+	if a.number = numberNamed(a.Type); a.number == 0 {
+		return unsupported("found the number type %.40q, need Int8 to UInt64, Float32, Float64, Bit or String", a.Type)
+	}
+	if text, ok := e.get("NumberOfComponents"); ok {
+		components, err := strconv.ParseInt(strings.TrimSpace(text), 10, 32)
+		if err != nil || components < 0 {
+			return attributeError(e, "NumberOfComponents", text, "a whole number")
+		}
+		a.Components = max(1, int(components))
+	}
+	a.ComponentNames = componentNames(e, a.Components)
+	if a.number == bitNumber || a.number == stringNumber {
+		a.form = emptyForm
+		return nil
+	}
+	return x.place(a, e)
+}
+
+// place finds the values of an array.
+func (x *xmlFile) place(a *column, e *element) error {
+	text, isAppended := e.get("offset")
+	switch {
+	case isAppended || e.attribute("format") == "appended":
+		offset, err := strconv.ParseInt(strings.TrimSpace(text), 10, 64)
+		if err != nil || offset < 0 {
+			return attributeError(e, "offset", text, "bytes from the start of the appended data")
+		}
+		if !x.hasAppended {
+			return malformed("values are appended, found no element AppendedData")
+		}
+		if offset > x.file.size-x.appended {
+			return truncated("values begin at byte %d of the appended data, found %d bytes", offset, x.file.size-x.appended)
+		}
+		p, _, err := x.binary(x.appended+offset, x.file.size, x.appendedBase64, nil)
+		if err != nil {
+			return err
+		}
+		a.payload, a.bigEndian, a.start = *p, x.bigEndian, x.appended+offset
+	case e.payload != nil:
+		a.payload, a.bigEndian = *e.payload, x.bigEndian
+	case e.start == e.end:
+		a.form = emptyForm
+	default:
+		a.payload = payload{form: textForm, text: newIndex(x.file, e.start, e.end, true)}
+	}
+	return nil
+}
+
+// componentNames returns the names of components, nil when there are none.
+func componentNames(e *element, components int) []string {
+	var names []string
+	for _, attribute := range e.attributes {
+		digits, ok := strings.CutPrefix(attribute.name, "ComponentName")
+		i, err := strconv.Atoi(digits)
+		if !ok || err != nil || i < 0 || i >= components || i > 1000 {
+			continue
+		}
+		for len(names) <= i {
+			names = append(names, "")
+		}
+		names[i] = attribute.value
+	}
+	for names != nil && len(names) < min(components, 1000) {
+		names = append(names, "")
+	}
+	return names
+}
+
+// count returns an attribute that counts something.
+func count(e *element, name string) (int64, error) {
+	text, ok := e.get(name)
+	if !ok {
+		return 0, malformed("element %s: found no attribute %s, need a count", e.name, name)
+	}
+	value, err := strconv.ParseInt(strings.TrimSpace(text), 10, 64)
+	if err != nil || value < 0 {
+		return 0, attributeError(e, name, text, "a count")
+	}
+	return value, nil
+}
+
+// isSelected reports whether the array belongs to the state that is read.
+func (x *xmlFile) isSelected(e *element) bool {
+	steps, ok := e.get("TimeStep")
+	if !ok || x.step == "" {
+		return true
+	}
+	for _, step := range strings.Fields(steps) {
+		if step == x.step {
+			return true
+		}
+	}
+	return false
+}
+
+// columns returns the arrays of an element that hold so many tuples each, those of
+// one name once.
+func (x *xmlFile) columns(e *element, on mesh.Location, tuples int64) ([]*column, error) {
+	var columns []*column
+	if e == nil {
+		return nil, nil
+	}
+	seen := map[string]bool{}
+	for i, child := range e.children {
+		if !isArray(child) || !x.isSelected(child) {
+			continue
+		}
+		a, err := x.column(child, on)
+		if err != nil {
+			return nil, err
+		}
+		if !has(child, "Name") {
+			a.Name = "array " + strconv.Itoa(i)
+		}
+		if seen[a.Name] {
+			continue
+		}
+		seen[a.Name] = true
+		if err := a.need(tuples, on.String()+"s"); err != nil {
+			return nil, err
+		}
+		columns = append(columns, a)
+	}
+	return columns, nil
+}
+
+// looksXML reports whether a file begins as XML does.
+func looksXML(head []byte) bool {
+	head = bytes.TrimPrefix(head, []byte("\xef\xbb\xbf"))
+	head = bytes.TrimLeft(head, " \t\r\n")
+	return len(head) > 0 && head[0] == '<'
+}
