@@ -17,6 +17,7 @@ func TestFaults(t *testing.T) {
 			[]string{"this is not TOML: expected '=' after key; mend the line, texts stand in quotes"}},
 		"not TOML after letters beyond ASCII": {"title = \"größer\" §x",
 			[]string{"this is not TOML: expected newline but got U+0078 'x'; mend the line, texts stand in quotes"}},
+		"text that ends in the middle of a character": {"x = \"a§ಲ", []string{"this is not TOML: unterminated basic string; mend the line, texts stand in quotes"}},
 		"number that TOML cannot hold": {"[model]\nrepeats = §99999999999999999999",
 			[]string{"this is not TOML: decimal number is too large to fit in a 64-bit signed integer; mend the line, texts stand in quotes"}},
 		"not UTF-8": {"title = \"§\xff\"", []string{"not UTF-8; save the study file as UTF-8 text"}},
@@ -106,6 +107,11 @@ func TestFaults(t *testing.T) {
 			[]string{`model.axis has no meaning in a solid model; remove it or write idealisation = "axisymmetric"`}},
 		"what goes with a wrong idealisation is not judged": {"[model]\n§idealisation = \"shell\"\nthickness = 3\naxis = \"x\"\n[[region]]\nname = \"a\"\nselect.rest = true\nthickness = 3",
 			[]string{`model.idealisation is "shell"; write "solid", "plane-stress", "plane-strain" or "axisymmetric"`}},
+
+		"nor with a misspelt one": {"[model]\n§idealization = \"plane-stress\"\nthickness = 3",
+			[]string{`unknown key "idealization" in [model]; the nearest known key is "idealisation"`}},
+		"nor are names of misspelt lists": {"[[§materials]]\nname = \"S\"\n[[region]]\nname = \"a\"\nselect.rest = true\nmaterial = \"S\"",
+			[]string{`unknown key "materials"; the nearest known key is "material"`}},
 
 		"order": {"[fields]\nstress = { §order = \"xx yy qq\" }",
 			[]string{`fields.stress.order: component order "xx yy qq": "qq" is no component (want xx yy zz xy yz xz, or rr zz tt rz)`}},

@@ -81,7 +81,7 @@ func (f *Flags) addModel(root *node) {
 // addMaterial adds a material to the tree's list, in place of one with its name.
 func addMaterial(root, material *node) {
 	list := listIn(root, "material", material.place)
-	if name := material.child("name"); name != nil && name.place.flag != "" {
+	if name := material.child("name"); name != nil {
 		for i, item := range list.items {
 			if stated := item.child("name"); stated != nil && stated.text == name.text && stated.place.flag == "" {
 				list.items[i] = material

@@ -212,15 +212,20 @@ var keys = slices.Concat([]key{
 		{path: "review.checked_by", form: aText},
 	})
 
-// fieldKeys returns the keys of a field: not used, an array's name, or a table.
+// fieldKeys returns the keys of a field: not used, an array's name, or a table. Only
+// fields that may be given at integration points have a rule for them.
 func fieldKeys(field string, locations ...string) []key {
 	path := "fields." + field
-	return []key{
+	rows := []key{
 		{path: path, form: anOff | aName | aTable},
 		{path: path + ".array", form: aName},
-		{path: path + ".on", form: aName, values: locations, after: []string{"integration"}},
-		{path: path + ".rule", form: aName, later: true},
+		{path: path + ".on", form: aName, values: locations},
 	}
+	if slices.Contains(locations, "integration") {
+		rows[2].after = []string{"integration"}
+		rows = append(rows, key{path: path + ".rule", form: aName, later: true})
+	}
+	return rows
 }
 
 // tensorKeys returns the keys of a tensor's field.

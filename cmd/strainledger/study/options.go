@@ -55,8 +55,8 @@ func (r *reading) model() {
 	r.to.Deformed = model.textOf("points") == "deformed"
 	r.to.Repeats = int(model.numberOf(0, "repeats"))
 	r.to.From = energy.EnergySource(r.root.textOf("energy", "from"))
-	if stated := model.child("idealisation"); stated != nil && stated.faulty {
-		return // what goes with it cannot be judged
+	if !r.isIdealisationSound() {
+		return
 	}
 	if axis := model.get("axis"); axis != nil && r.to.Idealisation != energy.Axisymmetric {
 		r.faults.add(axis.place, `model.axis has no meaning in a %s model; remove it or write idealisation = "axisymmetric"`, r.to.Idealisation)
@@ -68,6 +68,13 @@ func (r *reading) model() {
 	}
 }
 
+// isIdealisationSound reports whether what goes with the idealisation can be judged:
+// it is stated as it should be, or not at all.
+func (r *reading) isIdealisationSound() bool {
+	model := r.root.get("model")
+	return model.get("idealisation") != nil || !model.has("idealisation")
+}
+
 // isPlane reports whether cells have a thickness.
 func (r *reading) isPlane() bool {
 	return r.to.Idealisation == energy.PlaneStress || r.to.Idealisation == energy.PlaneStrain
@@ -75,7 +82,7 @@ func (r *reading) isPlane() bool {
 
 // refuseThickness reports a thickness that the idealisation has no use for.
 func (r *reading) refuseThickness(stated *node, name string) {
-	if stated != nil && !r.isPlane() {
+	if stated != nil && r.isIdealisationSound() && !r.isPlane() {
 		r.faults.add(stated.place, `%s has no meaning in a %s model; remove it or write idealisation = "plane-stress" or "plane-strain"`,
 			name, r.to.Idealisation)
 	}
@@ -236,6 +243,7 @@ func (r *reading) refuseUnknown(stated *node, path, list string) {
 	names := r.namesOf(list)
 	switch {
 	case stated == nil || slices.Contains(names, stated.text):
+	case len(names) == 0 && r.root.has(list): // refused already
 	case len(names) == 0:
 		r.faults.add(stated.place, "%s is %s, but the study has no %s; add [[%s]]", path, quote(stated.text), list, list)
 	default:
@@ -258,9 +266,7 @@ func (r *reading) regions() {
 			region.Optional = optional.truth
 		}
 		r.refuseUnknown(stated.get("material"), "region.material", "material")
-		if r.root.get("model").child("idealisation") == nil || r.root.get("model", "idealisation") != nil {
-			r.refuseThickness(stated.get("thickness"), "region.thickness")
-		}
+		r.refuseThickness(stated.get("thickness"), "region.thickness")
 		r.selection(stated.get("select"), &region)
 		if region.Rest && rest != nil {
 			r.faults.add(stated.get("select").place, "the region on line %d takes the rest already; select by array, block or box", rest.place.line)

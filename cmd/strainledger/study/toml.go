@@ -79,8 +79,12 @@ type builder struct {
 	lineStarts []int
 }
 
-// placeOf returns line and column of an offset, the column in characters.
+// placeOf returns line and column of an offset, the column in characters. The parser
+// may point into the middle of one.
 func (b *builder) placeOf(offset int) place {
+	for offset > 0 && offset < len(b.data) && !utf8.RuneStart(b.data[offset]) {
+		offset--
+	}
 	low, high := 0, len(b.lineStarts)
 	for high-low > 1 {
 		if middle := (low + high) / 2; b.lineStarts[middle] <= offset {
