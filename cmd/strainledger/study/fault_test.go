@@ -168,6 +168,9 @@ func TestFaults(t *testing.T) {
 			[]string{`require.quantity is "enrgy", which is no number of an account; the nearest is "energy"`}},
 		"quantity that is a place": {"[[require]]\n§quantity = \"max_density_at\"\nat_most = 1",
 			[]string{`require.quantity is "max_density_at", which is no number of an account; the nearest is "max_density"`}},
+		"quantity of no hotspot": {"[[require]]\n§quantity = \"hotspot.0.density\"\nat_most = 1\n[[require]]\n§quantity = \"hotspot.1.colour\"\nat_most = 1",
+			[]string{`require.quantity is "hotspot.0.density", which is no number of a hotspot; write hotspot.RANK.KEY, such as "hotspot.1.density"`,
+				`require.quantity is "hotspot.1.colour", which is no number of a hotspot; write hotspot.RANK.KEY, such as "hotspot.1.density"`}},
 		"requirement without a bound": {"[[§require]]\nquantity = \"energy\"", []string{"[[require]] without a bound; add at_most or at_least"}},
 		"requirement that nothing meets": {"[[require]]\nquantity = \"energy\"\nat_most = 1\n§at_least = 2",
 			[]string{"require.at_least is 2 and at_most is 1, which nothing can meet; exchange them"}},
@@ -211,7 +214,7 @@ func TestNotBuiltYet(t *testing.T) {
 			wantNotBuilt(t, "[[region]]\nname = \"a\"\nselect.rest = true\n§criterion = \""+criterion+"\"")
 		})
 	}
-	for _, quantity := range []string{"hotspot.1.density", "balance.gap", "change.energy"} {
+	for _, quantity := range []string{"balance.gap", "change.energy"} {
 		t.Run(quantity, func(t *testing.T) { wantNotBuilt(t, "[[require]]\nat_most = 1\n§quantity = \""+quantity+"\"") })
 	}
 }

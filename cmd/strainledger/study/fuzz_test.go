@@ -92,7 +92,7 @@ func wantSound(t *testing.T, o *energy.Options) {
 		}
 	}
 	for _, requirement := range o.Requirements {
-		if requirement.Name == "" || !slices.Contains(accountNumbers(), requirement.Quantity) ||
+		if requirement.Name == "" || energy.CheckQuantity(requirement.Quantity) != nil ||
 			!requirement.AtMost.Exists() && !requirement.AtLeast.Exists() ||
 			len(regions) > 0 && requirement.Region != "" && !slices.Contains(regions, requirement.Region) {
 			t.Fatalf("requirement %+v", requirement)

@@ -11,7 +11,7 @@ import (
 )
 
 // laterQuantities are the beginnings of quantities that are not built yet.
-var laterQuantities = []string{"hotspot.", "balance.", "change."}
+var laterQuantities = []string{"balance.", "change."}
 
 // requirement reads one entry of [[require]]. One without a name is called by what
 // it demands.
@@ -42,21 +42,23 @@ func (r *reading) requirement(stated *node) energy.Requirement {
 	return requirement
 }
 
-// refuseQuantity reports a quantity that is no number of an account.
+// refuseQuantity reports a quantity that no ledger has.
 func (r *reading) refuseQuantity(stated *node) {
-	known := accountNumbers()
 	isLater := func(start string) bool { return strings.HasPrefix(stated.text, start) }
-	switch {
-	case slices.Contains(known, stated.text):
+	switch err := energy.CheckQuantity(stated.text); {
+	case err == nil:
 	case slices.ContainsFunc(laterQuantities, isLater):
 		r.faults.add(stated.place, "require.quantity %s is not built yet; use a number of an account such as \"energy\"", quote(stated.text))
+	case strings.HasPrefix(stated.text, "hotspot."):
+		r.faults.add(stated.place, "require.quantity is %s, which is no number of a hotspot; write hotspot.RANK.KEY, such as \"hotspot.1.density\"", quote(stated.text))
 	default:
 		r.faults.add(stated.place, "require.quantity is %s, which is no number of an account; the nearest is %q", quote(stated.text),
-			nearest(stated.text, known))
+			nearest(stated.text, accountNumbers()))
 	}
 }
 
-// accountNumbers returns the keys of an account that hold a number, in its order.
+// accountNumbers returns the keys of an account that hold a number, in its order, for
+// the one that was most likely meant.
 func accountNumbers() []string {
 	var known []string
 	account := reflect.TypeFor[energy.Account]()

@@ -82,6 +82,10 @@ at_most = 120.0
 quantity = "max_utilisation"
 at_least = 0.25
 at_most = 1
+[[require]]
+name = "first hotspot"
+quantity = "hotspot.1.density"
+at_most = 0.5
 [[accept]]
 code = "large-strain"
 reason = "rubber pad, not judged"
@@ -127,6 +131,7 @@ func wholeOptions() energy.Options {
 		Requirements: []energy.Requirement{
 			{Name: "web stores little", Quantity: "energy", Region: "web", AtMost: 120, AtLeast: energy.None},
 			{Name: "max_utilisation >= 0.25 and <= 1", Quantity: "max_utilisation", AtMost: 1, AtLeast: 0.25},
+			{Name: "first hotspot", Quantity: "hotspot.1.density", AtMost: 0.5, AtLeast: energy.None},
 		},
 		Acceptances: []energy.Acceptance{{Code: "large-strain", Reason: "rubber pad, not judged"}},
 		Review:      energy.Review{Document: "MB-7", Revision: "C", PreparedBy: "A. N."},
@@ -162,7 +167,7 @@ func TestReadWhole(t *testing.T) {
 	want := &Study{
 		Path: path,
 		// sha256sum of the text above
-		SHA256:  "9db03fee7ade0273ae378e6e6d5c21050c53897ad2ab5777668aac33243b80a3",
+		SHA256:  "6bc21258ab87c7333a886041f2c1812833b194a8cac576be0458b1fb3acff42e",
 		Options: wholeOptions(),
 		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
 		Time:    Time{Value: &time},
