@@ -103,11 +103,7 @@ func (c *memoryCursor) PointValues(_ context.Context, piece int, name string, lo
 
 func (c *memoryCursor) Cells(_ context.Context, span mesh.Span, want *mesh.Want, to *mesh.Chunk) error {
 	piece := &c.mesh.pieces[span.Piece]
-	described := &c.model.Pieces[span.Piece]
-	*to = mesh.Chunk{
-		Piece: span.Piece, Source: described.Source, Block: described.Block, First: described.FirstCell + span.Low, Count: int(span.High - span.Low),
-		Start: []int32{0},
-	}
+	*to = mesh.Chunk{Count: int(span.High - span.Low), Start: []int32{0}}
 	if piece.hidden != nil {
 		to.Hidden = piece.hidden[span.Low:span.High]
 	}

@@ -122,8 +122,9 @@ type Cursor interface {
 	// PointValues writes the tuples [low, high) of a point array, widened to
 	// float64, to the slice.
 	PointValues(ctx context.Context, piece int, name string, low, high int64, to []float64) error
-	// Cells fills the chunk with the cells of the span. The chunk's slices belong
-	// to the cursor and are valid until its next call of Cells. Node numbers have
+	// Cells fills the chunk with the cells of the span, but for where they stand
+	// (Piece, Source, Block, First) and their points, which the walk adds. The chunk's
+	// slices belong to the cursor and are valid until its next call of Cells. Node numbers have
 	// been checked against the piece's point count, cell sizes against the shape.
 	Cells(ctx context.Context, span Span, want *Want, to *Chunk) error
 	Close() error

@@ -227,6 +227,8 @@ func (w *Walk) visit(ctx context.Context, run Span, want *Want, worker int, visi
 		if err := w.cursors[worker].Cells(ctx, span, want, chunk); err != nil {
 			return err
 		}
+		piece := &w.model.Pieces[run.Piece]
+		chunk.Piece, chunk.Source, chunk.Block, chunk.First = run.Piece, piece.Source, piece.Block, piece.FirstCell+low
 		if !want.NoNodes {
 			w.batch.attach(chunk, run.Piece)
 		}
