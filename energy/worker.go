@@ -13,6 +13,9 @@ type worker struct {
 	part *part
 	cell mesh.Cell
 
+	isPerCell bool    // everything that the density needs is cell data
+	smallest  float64 // measure up to which a cell is degenerate
+
 	region      []int32 // -1: in no account
 	measure     []float64
 	energy      []float64
@@ -31,7 +34,10 @@ type worker struct {
 }
 
 func newWorker(p *plan) *worker {
-	return &worker{plan: p, part: newPart(p)}
+	return &worker{
+		plan: p, part: newPart(p), isPerCell: p.inputs.isPerCell(),
+		smallest: 1e-12 * math.Pow(p.bounds.Diagonal(), float64(p.dimension)),
+	}
 }
 
 // visit takes one chunk.
@@ -81,7 +87,7 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 	if err != nil || reason != notExcluded {
 		return reason, err
 	}
-	if w.inputs.isPerCell() {
+	if w.isPerCell {
 		reason = w.evaluateCell(chunk, i, r)
 	} else {
 		reason = w.evaluateNodes(chunk, i, r, orientation)
@@ -124,9 +130,9 @@ func (w *worker) measureCell(chunk *mesh.Chunk, i int, r *region) (mesh.Orientat
 	}
 	w.measure[i] = measure
 	switch {
-	case math.IsNaN(measure) || math.IsInf(measure, 0):
+	case !isFinite(measure):
 		return 0, notFinite, nil
-	case math.Abs(flat) <= 1e-12*math.Pow(w.bounds.Diagonal(), float64(w.dimension)):
+	case math.Abs(flat) <= w.smallest:
 		return 0, degenerateCell, nil
 	}
 	return orientation, notExcluded, nil
@@ -421,7 +427,7 @@ func (w *worker) centroidOf(chunk *mesh.Chunk, i int) Vector {
 
 // peakPlace returns where the peak density of cell i was seen.
 func (w *worker) peakPlace(chunk *mesh.Chunk, i int) Vector {
-	if w.inputs.isPerCell() {
+	if w.isPerCell {
 		return w.centroidOf(chunk, i)
 	}
 	node := chunk.Nodes[int(chunk.Start[i])+int(w.peakNode[i])]
