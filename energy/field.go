@@ -55,7 +55,8 @@ type inputs struct {
 	stress, strain, thermalStrain, plasticStrain tensorInput
 	equivalentPlasticStrain, temperature         scalarInput
 	thickness                                    scalarInput
-	elementID                                    int // column of Chunk.Labels, or -1
+	displacement                                 vectorInput // where the energy comes from it
+	elementID                                    int         // column of Chunk.Labels, or -1
 
 	strainIsElastic bool
 	used            FieldsUsed
@@ -118,7 +119,7 @@ func findInputs(model *mesh.Model, options *Options, found *findings) (*inputs, 
 	if err := f.findTensors(source, on); err != nil {
 		return nil, "", err
 	}
-	if err := f.findOthers(on); err != nil {
+	if err := f.findOthers(source, on); err != nil {
 		return nil, "", err
 	}
 	return f.in, source, nil
@@ -175,9 +176,6 @@ func (f *fieldFinder) has(field *Field, on mesh.Location, roles ...role) bool {
 func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
 	stress, strain := &f.options.Fields.Stress, &f.options.Fields.Strain
 	from := f.options.From
-	if from == FromDisplacement {
-		return "", 0, studyError("[energy] from = \"displacement\" is not built yet")
-	}
 	if stress.IsStated() && strain.IsStated() && (from == "" || from == FromStressStrain) {
 		return FromStressStrain, 0, nil // also at two locations, because the study says so
 	}
@@ -193,7 +191,20 @@ func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
 			}
 		}
 	}
+	if (from == "" || from == FromDisplacement) && f.hasDisplacement() {
+		return FromDisplacement, mesh.OnPoint, nil
+	}
 	return "", 0, f.nothingFound(from)
+}
+
+// hasDisplacement reports whether a displacement is stated by the study or can be
+// found.
+func (f *fieldFinder) hasDisplacement() bool {
+	field := &f.options.Fields.Displacement
+	if field.Off || field.IsStated() {
+		return !field.Off
+	}
+	return len(f.candidates(mesh.OnPoint, isVector, displacementRole)) > 0
 }
 
 // nothingFound says which fields are missing and what the file has instead.
@@ -204,15 +215,14 @@ func (f *fieldFinder) nothingFound(from EnergySource) error {
 	}
 	needed := "a stress or strain array"
 	switch from {
+	case FromDisplacement:
+		return inputError("found no displacement on points; the file has %s; name it in [fields] displacement", orNoArrays(have))
 	case FromStressStrain:
 		needed = "a stress and a strain array at one location"
 	case FromStress:
 		needed = "a stress array"
 	case FromStrain:
 		needed = "a strain array"
-	}
-	if len(have) == 0 {
-		have = []string{"no arrays"}
 	}
 	components := "6 or 9 components"
 	switch f.options.Idealisation {
@@ -222,7 +232,15 @@ func (f *fieldFinder) nothingFound(from EnergySource) error {
 		components = "4, 6 or 9 components, the hoop term among them"
 	}
 	return inputError("found no %s with %s; the file has %s; name the arrays in [fields]",
-		strings.TrimPrefix(needed, "a "), components, strings.Join(have, ", "))
+		strings.TrimPrefix(needed, "a "), components, orNoArrays(have))
+}
+
+// orNoArrays lists arrays for a message.
+func orNoArrays(have []string) string {
+	if len(have) == 0 {
+		return "no arrays"
+	}
+	return strings.Join(have, ", ")
 }
 
 // describe names an array for a message.
@@ -318,12 +336,12 @@ func plain(key string) string { return strings.ReplaceAll(key, "_", " ") }
 // findTensors resolves stress, strain and what is subtracted from the strain.
 func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
 	fields, in := &f.options.Fields, f.in
-	if source != FromStrain {
+	if source == FromStressStrain || source == FromStress {
 		if err := f.tensor("stress", &fields.Stress, on, &in.stress, &in.used.Stress, stressRole); err != nil {
 			return err
 		}
 	}
-	if source != FromStress {
+	if source == FromStressStrain || source == FromStrain {
 		for _, roles := range strainRoles {
 			if err := f.tensor("strain", &fields.Strain, on, &in.strain, &in.used.Strain, roles...); err != nil {
 				return err
@@ -334,13 +352,22 @@ func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
 		}
 		f.decideKind()
 	}
-	if in.strain.exists() && !in.strainIsElastic {
-		if err := f.tensor("thermal_strain", &fields.ThermalStrain, in.strain.on, &in.thermalStrain, &in.used.ThermalStrain, thermalStrainRole); err != nil {
+	// An elastic strain without zz gets it in plane strain from what is subtracted.
+	needsThermal := !in.strainIsElastic || f.options.Idealisation == PlaneStrain && !in.strain.layout.Has(2)
+	if in.strain.exists() && needsThermal || source == FromDisplacement {
+		where := in.strain.on
+		if source == FromDisplacement {
+			where = f.locationOf(f.isTensor, thermalStrainRole)
+		}
+		if err := f.tensor("thermal_strain", &fields.ThermalStrain, where, &in.thermalStrain, &in.used.ThermalStrain, thermalStrainRole); err != nil {
 			return err
 		}
 	}
 	// The plastic strain also tells which cells have yielded.
-	if on == 0 {
+	switch {
+	case source == FromDisplacement:
+		on = f.locationOf(f.isTensor, plasticStrainRole)
+	case on == 0:
 		on = in.strain.on
 	}
 	if err := f.tensor("plastic_strain", &fields.PlasticStrain, on, &in.plasticStrain, &in.used.PlasticStrain, plasticStrainRole); err != nil {
@@ -350,6 +377,17 @@ func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
 		f.findings.add("mixed-locations", 0, "stress is on %ss and strain on %ss, as the study names them: their product mixes averages of different kinds", in.stress.on, in.strain.on)
 	}
 	return f.checkComponents(source)
+}
+
+// locationOf returns the first location at which a field can be found, cells where it
+// cannot.
+func (f *fieldFinder) locationOf(fits func(int) bool, roles ...role) mesh.Location {
+	for _, on := range locations {
+		if len(f.candidates(on, fits, roles...)) > 0 {
+			return on
+		}
+	}
+	return mesh.OnCell
 }
 
 // decideKind settles whether the strain is the total or the elastic one.
@@ -533,26 +571,19 @@ func (f *fieldFinder) checkComponents(source EnergySource) error {
 }
 
 // findOthers resolves the fields of single numbers and the displacement.
-func (f *fieldFinder) findOthers(on mesh.Location) error {
+func (f *fieldFinder) findOthers(source EnergySource, on mesh.Location) error {
 	fields, in := &f.options.Fields, f.in
 	if err := f.scalar("equivalent_plastic_strain", &fields.EquivalentPlasticStrain, on, &in.equivalentPlasticStrain, &in.used.EquivalentPlasticStrain, equivalentPlasticStrainRole); err != nil {
 		return err
 	}
 	// An array of thermal strain wins over temperature with expansion.
-	if in.strain.exists() && !in.strainIsElastic && !in.thermalStrain.exists() {
+	if (in.strain.exists() && !in.strainIsElastic || source == FromDisplacement) && !in.thermalStrain.exists() {
 		if err := f.findTemperature(); err != nil {
 			return err
 		}
 	}
-	displacement, why, err := f.choose("displacement", &fields.Displacement, mesh.OnPoint, isVector, displacementRole)
-	if err != nil {
-		if fields.Displacement.IsStated() {
-			return err
-		}
-		displacement = nil // not used, so that several candidates do no harm
-	}
-	if displacement != nil {
-		in.used.Displacement = &FieldUsed{Array: displacement.Name, On: displacement.On.String(), DecidedBy: decidedBy(&fields.Displacement), Why: why + "; the energy does not use it"}
+	if err := f.findDisplacement(source); err != nil {
+		return err
 	}
 	if f.options.ThicknessArray != "" {
 		thickness := &Field{Arrays: []string{f.options.ThicknessArray}, On: mesh.OnCell}
@@ -563,6 +594,29 @@ func (f *fieldFinder) findOthers(on mesh.Location) error {
 		in.thickness = scalarInput{mesh.OnCell, f.column(mesh.OnCell, array.Name)}
 	}
 	return f.findElementID()
+}
+
+// findDisplacement resolves the displacement: needed where the energy comes from it,
+// else only named.
+func (f *fieldFinder) findDisplacement(source EnergySource) error {
+	field := &f.options.Fields.Displacement
+	array, why, err := f.choose("displacement", field, mesh.OnPoint, isVector, displacementRole)
+	if err != nil && source != FromDisplacement && !field.IsStated() {
+		return nil // not used, so that several candidates do no harm
+	}
+	if err != nil || array == nil {
+		return err
+	}
+	f.in.used.Displacement = &FieldUsed{Array: array.Name, On: array.On.String(), DecidedBy: decidedBy(field), Why: why}
+	if source != FromDisplacement {
+		f.in.used.Displacement.Why += "; the energy does not use it"
+		return nil
+	}
+	if array.On != mesh.OnPoint || !isVector(array.Components) {
+		return inputError("[fields] displacement: array %s is no vector on points", describe(*array))
+	}
+	f.in.displacement = vectorInput{true, f.column(mesh.OnPoint, array.Name), array.Components}
+	return nil
 }
 
 // findTemperature resolves the temperature, on cells or on points.

@@ -38,6 +38,9 @@ func NewIsotropicLaw(youngsModulus, poissonsRatio float64) (*Law, error) {
 	}, nil
 }
 
+// IsIsotropic reports whether there is a law, and an isotropic one.
+func (l *Law) IsIsotropic() bool { return l != nil }
+
 // Strain returns the elastic strain ε = S:σ of a stress.
 func (l *Law) Strain(stress *mesh.SymmetricTensor) mesh.SymmetricTensor {
 	trace := stress.Trace()

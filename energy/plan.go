@@ -107,7 +107,7 @@ func (p *plan) checkRegions() error {
 		if r.law == nil && p.from != FromStressStrain {
 			return studyError("region %q: energy from %s alone needs a material with youngs_modulus and poissons_ratio", r.name, p.from)
 		}
-		if r.law == nil && p.options.Idealisation == PlaneStrain && !p.inputs.stress.layout.Has(2) {
+		if r.law == nil && p.options.Idealisation == PlaneStrain && p.inputs.stress.exists() && !p.inputs.stress.layout.Has(2) {
 			return inputError("region %q: the stress has no zz component, which in plane strain comes from the material's law; give the region a material with youngs_modulus and poissons_ratio", r.name)
 		}
 		if p.options.Idealisation == PlaneStress && r.thickness == 0 && p.options.ThicknessArray == "" {
@@ -186,7 +186,7 @@ func (p *plan) noteSettings() {
 			p.findings.add("limit-without-source", 0, "the proportional limit of material %q is given without its source", m.Name)
 		}
 	}
-	if p.inputs.isPerCell() {
+	if p.from != FromDisplacement && p.inputs.isPerCell() {
 		p.findings.add("one-value-per-cell", 0, "stress and strain are one value per cell: energy that varies within cells (bending) is not in the sum, which is a lower estimate for the solution")
 	}
 }

@@ -29,6 +29,8 @@ type worker struct {
 
 	// The places of the current cell: its nodes, or one place for cell data.
 	stress, strain []mesh.SymmetricTensor
+	displacement   []Vector
+	gradients      [][3]float64
 	elements       []float64
 	rational       []float64 // room for the shape functions of Bézier cells
 }
@@ -87,9 +89,12 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 	if err != nil || reason != notExcluded {
 		return reason, err
 	}
-	if w.isPerCell {
+	switch {
+	case w.from == FromDisplacement:
+		reason = w.evaluateGradients(chunk, i, r, orientation)
+	case w.isPerCell:
 		reason = w.evaluateCell(chunk, i, r)
-	} else {
+	default:
 		reason = w.evaluateNodes(chunk, i, r, orientation)
 	}
 	if reason == notExcluded {
@@ -156,7 +161,7 @@ func (w *worker) evaluateCell(chunk *mesh.Chunk, i int, r *region) exclusionReas
 	density := Density(&stress, &strain)
 	w.energy[i] = density * w.measure[i]
 	w.volumetric[i] = 0
-	if r.law != nil {
+	if r.law.IsIsotropic() {
 		w.volumetric[i] = VolumetricDensity(&stress, &strain) * w.measure[i]
 	}
 	w.density[i], w.peak[i], w.peakNode[i] = density, density, 0
@@ -182,10 +187,7 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	if !shape.Interpolates() {
 		return unsupportedCell
 	}
-	if count := shape.NodeCount; len(w.stress) < count {
-		w.stress, w.strain = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
-		w.rational = make([]float64, count)
-	}
+	w.growNodes(shape.NodeCount)
 	w.isYielded[i] = false
 	w.peak[i] = math.Inf(-1)
 	largest := math.Inf(-1)
@@ -213,18 +215,30 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	return notExcluded
 }
 
-// integrate computes ∫ ½ σ:ε dV and its volumetric share from the nodal tensors.
-func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) {
-	shape := w.cell.Shape
-	rule := shape.ProductRule()
-	if w.options.Idealisation == Axisymmetric {
-		rule = shape.RingProductRule()
+// growNodes makes room for the nodes of a cell.
+func (w *worker) growNodes(count int) {
+	if len(w.stress) >= count {
+		return
 	}
+	w.stress, w.strain = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
+	w.displacement, w.gradients, w.rational = make([]Vector, count), make([][3]float64, count), make([]float64, count)
+}
+
+// productRule returns the rule that integrates the product of two interpolated fields.
+func (w *worker) productRule() *mesh.Tabulation {
+	if w.options.Idealisation == Axisymmetric {
+		return w.cell.Shape.RingProductRule()
+	}
+	return w.cell.Shape.ProductRule()
+}
+
+// elementsOf returns the measure that belongs to each point of the rule, and the
+// factor (thickness, sign of a mirrored cell) that is common to all.
+func (w *worker) elementsOf(rule *mesh.Tabulation, chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) (elements []float64, factor float64) {
 	if len(w.elements) < len(rule.Weights) {
 		w.elements = make([]float64, len(rule.Weights))
 	}
-	elements := w.elements[:len(rule.Weights)]
-	factor := 1.0
+	elements, factor = w.elements[:len(rule.Weights)], 1
 	switch w.options.Idealisation {
 	case Solid:
 		w.cell.VolumeElements(rule, elements)
@@ -237,6 +251,13 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 	if orientation == mesh.Mirrored {
 		factor = -factor
 	}
+	return elements, factor
+}
+
+// integrate computes ∫ ½ σ:ε dV and its volumetric share from the nodal tensors.
+func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) {
+	rule := w.productRule()
+	elements, factor := w.elementsOf(rule, chunk, i, r, orientation)
 	var energy, volumetric float64
 	for q, element := range elements {
 		values := w.cell.Values(rule, q, w.rational)
@@ -253,7 +274,7 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 	}
 	w.energy[i] = energy * factor
 	w.volumetric[i] = 0
-	if r.law != nil {
+	if r.law.IsIsotropic() {
 		w.volumetric[i] = volumetric * factor
 	}
 }
@@ -263,50 +284,60 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 // strain.
 func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, strain *mesh.SymmetricTensor) (isYielded bool) {
 	in := w.inputs
-	var plastic mesh.SymmetricTensor
-	if in.plasticStrain.exists() {
-		plastic = in.plasticStrain.at(chunk, cell, node)
-		isYielded = plastic != mesh.SymmetricTensor{}
-	}
-	if in.equivalentPlasticStrain.exists() && in.equivalentPlasticStrain.at(chunk, cell, node) != 0 {
-		isYielded = true
-	}
+	inelastic, isYielded := w.inelasticAt(chunk, cell, node, r)
 	if in.strain.exists() {
 		*strain = in.strain.at(chunk, cell, node)
-		w.subtractInelastic(chunk, cell, node, r, &plastic, strain)
+		switch {
+		case !in.strainIsElastic:
+			for i := range strain {
+				strain[i] -= inelastic[i]
+			}
+		case w.options.Idealisation == PlaneStrain && !in.strain.layout.Has(2):
+			strain[2] = -inelastic[2] // the total is 0
+		}
 	}
 	if in.stress.exists() {
 		*stress = in.stress.at(chunk, cell, node)
 	}
 	w.complete(r, stress, strain)
+	w.noteNonZero(stress, strain)
+	return isYielded
+}
+
+// noteNonZero remembers that there was a value which is not zero.
+func (w *worker) noteNonZero(stress, strain *mesh.SymmetricTensor) {
 	if !w.part.hasStress {
 		w.part.hasStress = *stress != mesh.SymmetricTensor{}
 	}
 	if !w.part.hasStrain {
 		w.part.hasStrain = *strain != mesh.SymmetricTensor{}
 	}
-	return isYielded
 }
 
-// subtractInelastic turns the strain array's value into the elastic strain: the total
-// minus the thermal minus the plastic one. An elastic strain that lacks zz gets its zz
-// this way in plane strain, where the total is 0.
-func (w *worker) subtractInelastic(chunk *mesh.Chunk, cell int, node int32, r *region, plastic, strain *mesh.SymmetricTensor) {
+// inelasticAt returns the thermal and plastic strain at one place, and whether there
+// is any plastic strain. An array of thermal strain wins over temperature.
+func (w *worker) inelasticAt(chunk *mesh.Chunk, cell int, node int32, r *region) (inelastic mesh.SymmetricTensor, isYielded bool) {
 	in := w.inputs
-	var thermal mesh.SymmetricTensor
+	if in.plasticStrain.exists() {
+		inelastic = in.plasticStrain.at(chunk, cell, node)
+		isYielded = inelastic != mesh.SymmetricTensor{}
+	}
+	if in.equivalentPlasticStrain.exists() && in.equivalentPlasticStrain.at(chunk, cell, node) != 0 {
+		isYielded = true
+	}
 	switch {
 	case in.thermalStrain.exists():
-		thermal = in.thermalStrain.at(chunk, cell, node)
+		thermal := in.thermalStrain.at(chunk, cell, node)
+		for i := range thermal {
+			inelastic[i] += thermal[i]
+		}
 	case in.temperature.exists() && r.material != nil && !math.IsNaN(r.material.ThermalExpansion):
 		rise := in.temperature.at(chunk, cell, node) - r.material.ReferenceTemperature
-		expansion := r.material.ThermalExpansion * rise
-		thermal = mesh.SymmetricTensor{expansion, expansion, expansion}
-	}
-	for i := range strain {
-		if !in.strainIsElastic || i == 2 && w.options.Idealisation == PlaneStrain && !in.strain.layout.Has(2) {
-			strain[i] -= thermal[i] + plastic[i]
+		for i := range 3 {
+			inelastic[i] += float64(r.material.ThermalExpansion * rise)
 		}
 	}
+	return inelastic, isYielded
 }
 
 // complete fills in what the file lacks, by the law: the other tensor where there is
@@ -327,13 +358,7 @@ func (w *worker) complete(r *region, stress, strain *mesh.SymmetricTensor) {
 		}
 		*strain = r.law.Strain(stress)
 	case FromStrain:
-		if w.options.Idealisation == PlaneStress {
-			strain[2] = r.law.PlaneStressStrainZZ(strain)
-		}
-		*stress = r.law.Stress(strain)
-		if w.options.Idealisation == PlaneStress {
-			stress[2] = 0 // but for rounding
-		}
+		*stress = w.stressOf(r, strain)
 	}
 }
 
@@ -381,7 +406,7 @@ func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 		if a.maxDensity.takes(w.density[i], p) {
 			a.maxDensity = best{true, w.density[i], p, w.centroidOf(chunk, i)}
 		}
-		if at := (place{p.source, p.cell, w.peakNode[i]}); a.peak.takes(w.peak[i], at) {
+		if at := (place{p.source, p.cell, w.peakNode[i]}); !math.IsNaN(w.peak[i]) && a.peak.takes(w.peak[i], at) {
 			a.peak = best{true, w.peak[i], at, w.peakPlace(chunk, i)}
 		}
 		w.rank(chunk, i, p, a)
