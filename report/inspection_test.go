@@ -88,3 +88,21 @@ func TestInspectionJSONKeepsWhatDoublesCannot(t *testing.T) {
 		}
 	}
 }
+
+func TestRangeIsOverAllComponents(t *testing.T) {
+	none := energy.None
+	for _, test := range []struct {
+		lows, highs     []energy.Number
+		lowest, highest string
+	}{
+		{nil, nil, "–", "–"},
+		{[]energy.Number{none}, []energy.Number{none}, "–", "–"},
+		{[]energy.Number{2, none, -3, 1}, []energy.Number{4, none, 5, 3}, "-3", "5"},
+		{[]energy.Number{none, 0}, []energy.Number{none, -0.5}, "0", "-0.5"},
+	} {
+		lowest, highest := rangeOf(&energy.InspectedArray{Min: test.lows, Max: test.highs})
+		if brief(lowest) != test.lowest || brief(highest) != test.highest {
+			t.Errorf("%v and %v span %s to %s, want %s to %s", test.lows, test.highs, brief(lowest), brief(highest), test.lowest, test.highest)
+		}
+	}
+}

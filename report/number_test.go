@@ -49,6 +49,7 @@ func TestNumbersForPeople(t *testing.T) {
 		{inShares, -0.00001, ">-0.01"},
 		{inShares, 0.00005, "0.01"},
 		{inShares, 1.00001, "100.00"},
+		{inShares, 999.99, "99999.00"},
 		{inShares, 12345.678, "1.2346e6"},
 		{inShares, -12345.678, "-1.2346e6"},
 

@@ -239,3 +239,26 @@ func noReturns(ledger *energy.Ledger) *energy.Ledger {
 	ledger.Regions[0].Name = strings.ReplaceAll(ledger.Regions[0].Name, "\r", "")
 	return ledger
 }
+
+func TestPaintKeepsThePadding(t *testing.T) {
+	page := textPage{colour: true}
+	for _, test := range []struct{ text, code, want string }{
+		{"1.09  ", red, red + "1.09" + normal + "  "},
+		{"  ", red, "  "},
+		{"1.09", "", "1.09"},
+	} {
+		if got := page.paint(test.text, test.code); got != test.want {
+			t.Errorf("%q is painted %q, want %q", test.text, got, test.want)
+		}
+	}
+}
+
+func TestOnlyWhatIsPastTheLimitIsMarked(t *testing.T) {
+	for utilisation, want := range map[energy.Number]tone{
+		0.5: plainTone, 1: plainTone, 1.0000001: errorTone, energy.None: plainTone,
+	} {
+		if got := utilisationTone(utilisation); got != want {
+			t.Errorf("the tone of %v is %d, want %d", utilisation, got, want)
+		}
+	}
+}
