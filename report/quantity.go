@@ -1,7 +1,3 @@
-// Package report lays out what package energy found: the ledger as JSON, CSV and JUnit
-// XML for scripts, and as text and Markdown for people. It computes nothing but
-// the ratios and counts that a sentence needs. Everything that people read comes from
-// one [Summary], so that no two forms can disagree.
 package report
 
 import (
@@ -94,11 +90,6 @@ var quantities = []quantity{
 	{"why", "why", inWords, "Reason where the requirement is not met for another cause than its bound."},
 
 	{"points", "points", inCounts, "Points of the file."},
-	{"tuples", "tuples", inCounts, "Tuples of the array."},
-	{"components", "components", inCounts, "Components of each tuple."},
-	{"finite", "finite", inCounts, "Tuples whose components are all finite."},
-	{"bytes", "bytes", inCounts, "Size of the file."},
-	{"time", "time", inWords, "Time of the state, as the file gives it."},
 	{"youngs_modulus", "Young's modulus", inStress, "Young's modulus of the material."},
 	{"poissons_ratio", "Poisson's ratio", inRatios, "Poisson's ratio of the material."},
 	{"proportional_limit", "proportional limit", inStress, "Stress up to which the material is taken to be linear."},

@@ -1,6 +1,11 @@
+// Package report lays out what package energy found: the ledger as JSON, CSV and JUnit
+// XML for scripts, and as text and Markdown for people. It computes nothing but
+// the ratios and counts that a sentence needs. Everything that people read comes from
+// one [Summary], so that no two forms can disagree.
 package report
 
 import (
+	"cmp"
 	"fmt"
 	"path/filepath"
 
@@ -62,7 +67,7 @@ func Summarise(ledger *energy.Ledger) *Summary {
 	summary := &Summary{
 		Title:   titleOf(ledger),
 		Verdict: verdictWords(ledger),
-		Caution: ledger.Caution,
+		Caution: cmp.Or(ledger.Caution, energy.Caution),
 		program: programOf(ledger),
 		verdict: verdictSection(ledger),
 	}

@@ -40,6 +40,13 @@ func TestVerdictCountsWhatStands(t *testing.T) {
 	}
 }
 
+func TestTheCautionStandsOnEveryReport(t *testing.T) {
+	text := textOf(t, &energy.Ledger{}, TextOptions{})
+	if !strings.HasSuffix(text, "\n\nA screening aid, not a design approval: the numbers describe the model that was given, and local\ncodes and a licensed engineer decide.\n") {
+		t.Errorf("no caution at the end of\n%s", text)
+	}
+}
+
 func TestNoFormCallsThePartGood(t *testing.T) {
 	praise := regexp.MustCompile(`(?i)\b(pass|passed|passes|safe|ok|okay|fail|failed)\b`)
 	for name, ledger := range ledgers {
