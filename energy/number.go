@@ -50,3 +50,12 @@ func (t Text) MarshalJSON() ([]byte, error) {
 	}
 	return json.Marshal(string(t))
 }
+
+// String returns the number as it is written in a file, "null" for none.
+func (n Number) String() string {
+	text, err := n.MarshalJSON()
+	if err != nil {
+		return strconv.FormatFloat(float64(n), 'g', -1, 64)
+	}
+	return string(text)
+}

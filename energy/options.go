@@ -59,6 +59,7 @@ type Options struct {
 
 	Requirements []Requirement
 	Acceptances  []Acceptance
+	Review       Review
 
 	Workers          int  // 0: all processors
 	ChunkCells       int  // cells in a chunk; 0: the walk's default
@@ -162,4 +163,12 @@ type Requirement struct {
 type Acceptance struct {
 	Code   string
 	Reason string
+}
+
+// A Review holds what a study says of its own review; it is printed as given.
+type Review struct {
+	Document   string
+	Revision   string
+	PreparedBy string
+	CheckedBy  string
 }

@@ -70,6 +70,10 @@ type Piece struct {
 	PointCount int64
 	Arrays     []Array // point and cell arrays in file order
 	RunCells   int     // cells that are best read in one go; 0: no preference
+
+	// RationalWeights names the point array that weighs the control points of
+	// Bézier cells; "" when there is none.
+	RationalWeights string
 }
 
 // Find returns the description of a point or cell array, or nil.
@@ -118,8 +122,9 @@ type Cursor interface {
 	// PointValues writes the tuples [low, high) of a point array, widened to
 	// float64, to the slice.
 	PointValues(ctx context.Context, piece int, name string, low, high int64, to []float64) error
-	// Cells fills the chunk with the cells of the span. The chunk's slices belong
-	// to the cursor and are valid until its next call of Cells. Node numbers have
+	// Cells fills the chunk with the cells of the span, but for where they stand
+	// (Piece, Source, Block, First) and their points, which the walk adds. The chunk's
+	// slices belong to the cursor and are valid until its next call of Cells. Node numbers have
 	// been checked against the piece's point count, cell sizes against the shape.
 	Cells(ctx context.Context, span Span, want *Want, to *Chunk) error
 	Close() error
@@ -136,7 +141,7 @@ type Want struct {
 	CellValues  []string // cell arrays as numbers, in the order of Chunk.Values
 	Labels      []string // cell arrays as whole numbers, in the order of Chunk.Labels
 	PointValues []string // point arrays, in the order of Chunk.PointValues
-	TypesOnly   bool     // types and ghost marks alone: no nodes, no points, no values
+	NoNodes     bool     // types, ghost marks and cell arrays, but neither nodes nor points
 }
 
 // Ghost and blanking bits of Chunk.Hidden, VTK's vtkGhostType for cells.
@@ -157,7 +162,7 @@ type Chunk struct {
 	Count  int
 
 	Types  []CellType
-	Shapes []*Shape // what each type with its node count is
+	Shapes []*Shape // what each type with its node count is; nil with Want.NoNodes
 	Start  []int32  // Count+1 positions in Nodes
 	Nodes  []int32  // positions in Points; checked
 	Hidden []uint8  // ghost and blanking bits; nil when the file has none

@@ -31,9 +31,9 @@ func (p *piece) cellError(a *column, cell int64, err error) error {
 
 // read appends the cells [low, high) of the section, counted in the section, to the
 // cursor's buffers.
-func (s *section) read(c *cursor, p *piece, low, high int64, typesOnly bool) error {
+func (s *section) read(c *cursor, p *piece, low, high int64, noNodes bool) error {
 	types, err := s.cellTypes(c, p, low, high)
-	if err != nil || typesOnly {
+	if err != nil || noNodes {
 		return err
 	}
 	if s.list != nil {

@@ -104,15 +104,18 @@ func (c *cursor) Cells(ctx context.Context, span mesh.Span, want *mesh.Want, to 
 }
 
 func (c *cursor) fill(p *piece, span mesh.Span, want *mesh.Want, to *mesh.Chunk) error {
-	to.Piece, to.Count = span.Piece, int(span.High-span.Low)
+	to.Count = int(span.High - span.Low)
 	to.Types, to.Shapes, to.Start, to.Nodes, to.Hidden = nil, nil, nil, nil, nil
 	to.Faces, to.FaceStart, to.Values, to.Labels = nil, nil, nil, nil
-	if err := c.topology(p, span, want.TypesOnly); err != nil {
+	if err := c.topology(p, span, want.NoNodes); err != nil {
 		return err
 	}
 	to.Types = c.types
-	if err := c.ghosts(p, span, to); err != nil || want.TypesOnly {
+	if err := c.ghosts(p, span, to); err != nil {
 		return err
+	}
+	if want.NoNodes {
+		return c.cellArrays(p, span, want, to)
 	}
 	to.Start, to.Nodes = c.start, c.nodes
 	if err := c.findShapes(p, span); err != nil {
@@ -123,7 +126,7 @@ func (c *cursor) fill(p *piece, span mesh.Span, want *mesh.Want, to *mesh.Chunk)
 }
 
 // topology fills types, starts and nodes.
-func (c *cursor) topology(p *piece, span mesh.Span, typesOnly bool) error {
+func (c *cursor) topology(p *piece, span mesh.Span, noNodes bool) error {
 	c.types, c.nodes = c.types[:0], c.nodes[:0]
 	c.start = append(c.start[:0], 0)
 	for i := range p.sections {
@@ -132,7 +135,7 @@ func (c *cursor) topology(p *piece, span mesh.Span, typesOnly bool) error {
 		if low >= high {
 			continue
 		}
-		if err := s.read(c, p, low, high, typesOnly); err != nil {
+		if err := s.read(c, p, low, high, noNodes); err != nil {
 			return err
 		}
 	}

@@ -1,0 +1,350 @@
+package study
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"strainledger/energy"
+	"strainledger/mesh"
+)
+
+// A reading turns a checked tree into options. What one entry says about another is
+// checked here: names that have to exist, and keys that go together.
+type reading struct {
+	root   *node
+	faults *faults
+	to     energy.Options
+}
+
+// options reads the options from a tree that has been checked.
+func options(root *node, to *faults) energy.Options {
+	r := reading{root: root, faults: to}
+	r.units()
+	r.model()
+	r.fields()
+	r.materials()
+	r.regions()
+	r.judgement()
+	return r.to
+}
+
+func (r *reading) units() {
+	r.to.Title = r.root.textOf("title")
+	r.to.Length = r.root.textOf("units", "length")
+	r.to.Stress = r.root.textOf("units", "stress")
+	r.to.Mass = r.root.textOf("units", "mass")
+	r.to.Review = energy.Review{
+		Document:   r.root.textOf("review", "document"),
+		Revision:   r.root.textOf("review", "revision"),
+		PreparedBy: r.root.textOf("review", "prepared_by"),
+		CheckedBy:  r.root.textOf("review", "checked_by"),
+	}
+}
+
+func (r *reading) model() {
+	model := r.root.get("model")
+	r.to.Idealisation = energy.Solid
+	if stated := model.textOf("idealisation"); stated != "" {
+		r.to.Idealisation = energy.Idealisation(stated)
+	}
+	r.to.Thickness = model.numberOf(0, "thickness")
+	r.to.ThicknessArray = model.textOf("thickness")
+	r.to.AxisX = model.textOf("axis") == "x"
+	r.to.Deformed = model.textOf("points") == "deformed"
+	r.to.Repeats = int(model.numberOf(0, "repeats"))
+	r.to.From = energy.EnergySource(r.root.textOf("energy", "from"))
+	if !r.isIdealisationSound() {
+		return
+	}
+	if axis := model.get("axis"); axis != nil && r.to.Idealisation != energy.Axisymmetric {
+		r.faults.add(axis.place, `model.axis has no meaning in a %s model; remove it or write idealisation = "axisymmetric"`, r.to.Idealisation)
+	}
+	r.refuseThickness(model.get("thickness"), "model.thickness")
+	if r.to.Idealisation == energy.PlaneStress && !model.has("thickness") && !r.everyRegionIsThick() {
+		r.faults.add(model.get("idealisation").place,
+			"a plane-stress model needs a thickness; add thickness to [model], as a number or the name of a cell array")
+	}
+}
+
+// isIdealisationSound reports whether what goes with the idealisation can be judged:
+// it is stated as it should be, or not at all.
+func (r *reading) isIdealisationSound() bool {
+	model := r.root.get("model")
+	return model.get("idealisation") != nil || !model.has("idealisation")
+}
+
+// isPlane reports whether cells have a thickness.
+func (r *reading) isPlane() bool {
+	return r.to.Idealisation == energy.PlaneStress || r.to.Idealisation == energy.PlaneStrain
+}
+
+// refuseThickness reports a thickness that the idealisation has no use for.
+func (r *reading) refuseThickness(stated *node, name string) {
+	if stated != nil && r.isIdealisationSound() && !r.isPlane() {
+		r.faults.add(stated.place, `%s has no meaning in a %s model; remove it or write idealisation = "plane-stress" or "plane-strain"`,
+			name, r.to.Idealisation)
+	}
+}
+
+// everyRegionIsThick reports whether there are regions and each states a thickness.
+func (r *reading) everyRegionIsThick() bool {
+	regions := r.root.itemsOf("region")
+	return len(regions) > 0 && !slices.ContainsFunc(regions, func(region *node) bool { return !region.has("thickness") })
+}
+
+func (r *reading) fields() {
+	for _, field := range []struct {
+		name string
+		to   *energy.Field
+	}{
+		{"stress", &r.to.Fields.Stress},
+		{"strain", &r.to.Fields.Strain},
+		{"thermal_strain", &r.to.Fields.ThermalStrain},
+		{"plastic_strain", &r.to.Fields.PlasticStrain},
+		{"equivalent_plastic_strain", &r.to.Fields.EquivalentPlasticStrain},
+		{"displacement", &r.to.Fields.Displacement},
+		{"temperature", &r.to.Fields.Temperature},
+		{"element_id", &r.to.Fields.ElementID},
+	} {
+		if stated := r.root.get("fields", field.name); stated != nil {
+			*field.to = r.field(stated)
+		}
+	}
+}
+
+// field reads what is stated of one field.
+func (r *reading) field(stated *node) energy.Field {
+	switch stated.shape {
+	case isTruth:
+		return energy.Field{Off: true}
+	case isText:
+		return energy.Field{Arrays: []string{stated.text}}
+	}
+	field := energy.Field{
+		Shear:       stated.textOf("shear"),
+		Kind:        stated.textOf("kind"),
+		Compression: stated.textOf("sign") == "compression",
+	}
+	switch stated.textOf("on") {
+	case "cell":
+		field.On = mesh.OnCell
+	case "point":
+		field.On = mesh.OnPoint
+	}
+	for _, item := range stated.itemsOf("arrays") {
+		field.Arrays = append(field.Arrays, item.text)
+	}
+	if array := stated.textOf("array"); array != "" {
+		field.Arrays = []string{array}
+	}
+	r.fieldParts(stated, &field)
+	return field
+}
+
+// fieldParts checks what the keys of one field say of each other.
+func (r *reading) fieldParts(stated *node, field *energy.Field) {
+	path := "fields." + stated.name
+	one, several, order := stated.child("array"), stated.get("arrays"), stated.get("order")
+	switch {
+	case len(stated.keys) == 0:
+		r.faults.add(stated.place, `%s is an empty table; write array = "..." in it or remove it`, path)
+	case one != nil && several != nil:
+		r.faults.add(several.place, "%s has both array and arrays; keep one of them", path)
+	}
+	if order != nil {
+		parsed, err := mesh.ParseOrder(order.text, r.to.AxisX)
+		switch {
+		case err != nil:
+			r.faults.add(order.place, "%s.order: %v", path, err)
+		case isCylindrical(order.text) && r.to.Idealisation != energy.Axisymmetric:
+			r.faults.add(order.place, `%s.order names rr or tt, which belong to an axisymmetric model; write xx yy zz or idealisation = "axisymmetric"`, path)
+		default:
+			field.Order = parsed
+		}
+	}
+	if several == nil {
+		return
+	}
+	seen := map[string]bool{}
+	for _, item := range several.items {
+		if seen[item.text] {
+			r.faults.add(item.place, "%s.arrays names %s twice; name one array for each component", path, quote(item.text))
+		}
+		seen[item.text] = true
+	}
+	switch isTensor := findKey(path+".order") != nil; {
+	case isTensor && !stated.has("order"):
+		r.faults.add(several.place, `%s.arrays without order; add order = "..." with one component for each array`, path)
+	case isTensor && field.Order != nil && len(field.Order) != len(several.items):
+		r.faults.add(order.place, "%s.order names %d components for %d arrays; name one component for each array", path, len(field.Order), len(several.items))
+	case !isTensor && len(several.items) > 3:
+		r.faults.add(several.place, "%s.arrays names %d arrays; name at most three, for x, y and z", path, len(several.items))
+	}
+}
+
+// isCylindrical reports whether a component order uses names that occur in
+// cylindrical orders alone.
+func isCylindrical(order string) bool {
+	words := strings.Fields(strings.ToLower(order))
+	return slices.Contains(words, "rr") || slices.Contains(words, "tt")
+}
+
+func (r *reading) materials() {
+	r.refuseSameNames("material", "name")
+	for _, stated := range r.root.itemsOf("material") {
+		material := energy.NewMaterial(stated.textOf("name"))
+		none := float64(energy.None)
+		material.YoungsModulus = stated.numberOf(none, "youngs_modulus")
+		material.PoissonsRatio = stated.numberOf(none, "poissons_ratio")
+		material.ProportionalLimit = stated.numberOf(none, "proportional_limit")
+		material.Source = stated.textOf("source")
+		material.Density = stated.numberOf(none, "density")
+		material.ThermalExpansion = stated.numberOf(none, "thermal_expansion")
+		material.ReferenceTemperature = stated.numberOf(none, "reference_temperature")
+		r.to.Materials = append(r.to.Materials, material)
+	}
+}
+
+// namesOf returns the names of the entries of a list of tables.
+func (r *reading) namesOf(list string) []string {
+	var names []string
+	for _, item := range r.root.itemsOf(list) {
+		if name := item.textOf("name"); name != "" {
+			names = append(names, name)
+		}
+	}
+	return names
+}
+
+// refuseSameNames reports entries of a list of tables that share a key's text.
+func (r *reading) refuseSameNames(list, key string) {
+	first := map[string]place{}
+	for _, item := range r.root.itemsOf(list) {
+		stated := item.get(key)
+		if stated == nil {
+			continue
+		}
+		if at, again := first[stated.text]; again {
+			where := at.flag
+			if where == "" {
+				where = fmt.Sprintf("line %d", at.line)
+			}
+			r.faults.add(stated.place, "%s.%s %s was given before (%s); use another or remove one of the two", list, key, quote(stated.text), where)
+			continue
+		}
+		first[stated.text] = stated.place
+	}
+}
+
+// refuseUnknown reports a name that no entry of a list of tables has.
+func (r *reading) refuseUnknown(stated *node, path, list string) {
+	names := r.namesOf(list)
+	switch {
+	case stated == nil || slices.Contains(names, stated.text):
+	case len(names) == 0 && r.root.has(list): // refused already
+	case len(names) == 0:
+		r.faults.add(stated.place, "%s is %s, but the study has no %s; add [[%s]]", path, quote(stated.text), list, list)
+	default:
+		r.faults.add(stated.place, "%s is %s, and no %s has that name; the nearest is %s", path, quote(stated.text), list,
+			quote(nearest(stated.text, names)))
+	}
+}
+
+func (r *reading) regions() {
+	r.refuseSameNames("region", "name")
+	var rest *node
+	for _, stated := range r.root.itemsOf("region") {
+		region := energy.Region{
+			Name:      stated.textOf("name"),
+			Material:  stated.textOf("material"),
+			Thickness: stated.numberOf(0, "thickness"),
+			Criterion: energy.Criterion(stated.textOf("criterion")),
+		}
+		if optional := stated.get("optional"); optional != nil {
+			region.Optional = optional.truth
+		}
+		r.refuseUnknown(stated.get("material"), "region.material", "material")
+		r.refuseThickness(stated.get("thickness"), "region.thickness")
+		r.selection(stated.get("select"), &region)
+		if region.Rest && rest != nil {
+			r.faults.add(stated.get("select").place, "the region on line %d takes the rest already; select by array, block or box", rest.place.line)
+		}
+		if region.Rest {
+			rest = stated
+		}
+		r.to.Regions = append(r.to.Regions, region)
+	}
+}
+
+// selection reads how a region chooses its cells: by one way exactly.
+func (r *reading) selection(stated *node, to *energy.Region) {
+	if stated == nil {
+		return
+	}
+	ways := 0
+	for _, way := range []string{"array", "block", "box", "rest"} {
+		if stated.has(way) {
+			ways++
+		}
+	}
+	rest := stated.get("rest")
+	switch array, values := stated.child("array"), stated.child("values"); {
+	case array != nil && !stated.has("values"):
+		r.faults.add(array.place, "region.select.array without values; add values = [...] with the numbers that belong to the region")
+	case values != nil && !stated.has("array"):
+		r.faults.add(values.place, `region.select.values without array; add array = "..." with the name of the cell array`)
+	case ways != 1:
+		r.faults.add(stated.place, "region.select names %d ways to choose cells; use one of array with values, block, box or rest", ways)
+	case rest != nil && !rest.truth:
+		r.faults.add(rest.place, "region.select.rest is false, which selects nothing; write true or choose cells by array, block or box")
+	}
+	to.Array = stated.textOf("array")
+	to.Block = stated.textOf("block")
+	to.Rest = rest != nil && rest.truth
+	for _, value := range stated.itemsOf("values") {
+		if math.Abs(value.number) > maxExact {
+			r.faults.add(value.place, "region.select.values holds %s; whole numbers are exact up to 2^53 only, use smaller ones", value.text)
+		}
+		to.Values = append(to.Values, value.number)
+	}
+	if box := stated.get("box"); box != nil {
+		to.Box = r.box(box)
+	}
+}
+
+// maxExact is the largest number up to which a float64 holds every whole number.
+const maxExact = 1 << 53
+
+// box reads the two corners of a box, the lower coordinates first.
+func (r *reading) box(stated *node) *energy.Box {
+	if len(stated.items) != 2 || len(stated.items[0].items) != 3 || len(stated.items[1].items) != 3 {
+		r.faults.add(stated.place, "region.select.box must have two corners of three coordinates; write [[x, y, z], [x, y, z]]")
+		return nil
+	}
+	var box energy.Box
+	for axis := range 3 {
+		low, high := stated.items[0].items[axis], stated.items[1].items[axis]
+		if low.number > high.number {
+			r.faults.add(stated.place, "region.select.box has the corners %s and %s in %s; write the lower one first", low.text, high.text, "xyz"[axis:axis+1])
+		}
+		box.Low[axis], box.High[axis] = low.number, high.number
+	}
+	return &box
+}
+
+// judgement reads what is listed, demanded and accepted.
+func (r *reading) judgement() {
+	r.to.Limit.Criterion = energy.Criterion(r.root.textOf("limit", "criterion"))
+	r.to.Limit.List = int(r.root.numberOf(0, "limit", "list"))
+	r.to.Hotspots.Count = int(r.root.numberOf(0, "hotspots", "count"))
+	r.to.Hotspots.By = r.root.textOf("hotspots", "by")
+	for _, stated := range r.root.itemsOf("require") {
+		r.to.Requirements = append(r.to.Requirements, r.requirement(stated))
+	}
+	r.refuseSameNames("accept", "code")
+	for _, stated := range r.root.itemsOf("accept") {
+		r.to.Acceptances = append(r.to.Acceptances, energy.Acceptance{Code: stated.textOf("code"), Reason: stated.textOf("reason")})
+	}
+}

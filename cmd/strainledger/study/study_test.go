@@ -1,0 +1,265 @@
+package study
+
+import (
+	"errors"
+	"math"
+	"os"
+	"path/filepath"
+	"testing"
+
+	"github.com/google/go-cmp/cmp"
+	"github.com/google/go-cmp/cmp/cmpopts"
+
+	"strainledger/energy"
+	"strainledger/mesh"
+)
+
+// whole uses every key that is built.
+const whole = `title = "Mooring bracket, fillet R5"
+[units]
+length = "mm"
+stress = "MPa"
+mass = "kg"
+[input]
+files = ["bracket-r5.vtu"]
+time = 2.5
+[model]
+idealisation = "axisymmetric"
+axis = "x"
+points = "deformed"
+repeats = 4
+[energy]
+from = "stress-strain"
+[fields]
+stress = { arrays = ["srr", "szz", "stt", "srz"], order = "rr zz tt rz", on = "cell", shear = "mandel", sign = "compression" }
+strain = { array = "strain", on = "point", order = "xx yy zz xy", shear = "engineering", kind = "elastic" }
+thermal_strain = "eth"
+plastic_strain = false
+equivalent_plastic_strain = { array = "peeq", on = "cell" }
+displacement = { arrays = ["ux", "uy"] }
+temperature = "T"
+element_id = { array = "id" }
+[[material]]
+name = "S355"
+youngs_modulus = 210_000
+poissons_ratio = 0.3
+proportional_limit = 330.0
+source = "EN 10025-2, minimum"
+density = 7.85e-6
+thermal_expansion = 1.2e-5
+reference_temperature = -20
+[[material]]
+name = "rubber"
+[[region]]
+name = "web"
+select = { array = "part", values = [1, 2.5, -3] }
+material = "S355"
+criterion = "von-mises"
+[[region]]
+name = "Steg, größer"
+select = { block = "hull/*" }
+optional = true
+[[region]]
+name = "corner"
+select = { box = [[0, 0, -1.5], [10, 20, 1.5]] }
+material = "rubber"
+[[region]]
+name = "others"
+[region.select]
+rest = true
+[limit]
+criterion = "von-mises"
+list = 7
+[hotspots]
+count = 3
+by = "energy"
+[[require]]
+name = "web stores little"
+quantity = "energy"
+region = "web"
+at_most = 120.0
+[[require]]
+quantity = "max_utilisation"
+at_least = 0.25
+at_most = 1
+[[require]]
+name = "first hotspot"
+quantity = "hotspot.1.density"
+at_most = 0.5
+[[accept]]
+code = "large-strain"
+reason = "rubber pad, not judged"
+[review]
+document = "MB-7"
+revision = "C"
+prepared_by = "A. N."
+checked_by = ""
+`
+
+// wholeOptions is what whole says, written by hand.
+func wholeOptions() energy.Options {
+	steel, rubber := energy.NewMaterial("S355"), energy.NewMaterial("rubber")
+	steel.YoungsModulus, steel.PoissonsRatio, steel.ProportionalLimit = 210000, 0.3, 330
+	steel.Source, steel.Density = "EN 10025-2, minimum", 7.85e-6
+	steel.ThermalExpansion, steel.ReferenceTemperature = 1.2e-5, -20
+	return energy.Options{
+		Title: "Mooring bracket, fillet R5", Length: "mm", Stress: "MPa", Mass: "kg",
+		Idealisation: energy.Axisymmetric, AxisX: true, Deformed: true, Repeats: 4,
+		From: energy.FromStressStrain,
+		Fields: energy.Fields{
+			// With the axis along x the radius is y: rr is yy, zz is xx, tt is zz, rz is xy.
+			Stress: energy.Field{Arrays: []string{"srr", "szz", "stt", "srz"}, Order: mesh.Order{"yy", "xx", "zz", "xy"},
+				On: mesh.OnCell, Shear: "mandel", Compression: true},
+			Strain: energy.Field{Arrays: []string{"strain"}, Order: mesh.Order{"xx", "yy", "zz", "xy"},
+				On: mesh.OnPoint, Shear: "engineering", Kind: "elastic"},
+			ThermalStrain:           energy.Field{Arrays: []string{"eth"}},
+			PlasticStrain:           energy.Field{Off: true},
+			EquivalentPlasticStrain: energy.Field{Arrays: []string{"peeq"}, On: mesh.OnCell},
+			Displacement:            energy.Field{Arrays: []string{"ux", "uy"}},
+			Temperature:             energy.Field{Arrays: []string{"T"}},
+			ElementID:               energy.Field{Arrays: []string{"id"}},
+		},
+		Materials: []energy.Material{steel, rubber},
+		Regions: []energy.Region{
+			{Name: "web", Array: "part", Values: []float64{1, 2.5, -3}, Material: "S355", Criterion: energy.VonMises},
+			{Name: "Steg, größer", Block: "hull/*", Optional: true},
+			{Name: "corner", Box: &energy.Box{Low: energy.Vector{0, 0, -1.5}, High: energy.Vector{10, 20, 1.5}}, Material: "rubber"},
+			{Name: "others", Rest: true},
+		},
+		Limit:    energy.LimitOptions{Criterion: energy.VonMises, List: 7},
+		Hotspots: energy.HotspotOptions{Count: 3, By: "energy"},
+		Requirements: []energy.Requirement{
+			{Name: "web stores little", Quantity: "energy", Region: "web", AtMost: 120, AtLeast: energy.None},
+			{Name: "max_utilisation >= 0.25 and <= 1", Quantity: "max_utilisation", AtMost: 1, AtLeast: 0.25},
+			{Name: "first hotspot", Quantity: "hotspot.1.density", AtMost: 0.5, AtLeast: energy.None},
+		},
+		Acceptances: []energy.Acceptance{{Code: "large-strain", Reason: "rubber pad, not judged"}},
+		Review:      energy.Review{Document: "MB-7", Revision: "C", PreparedBy: "A. N."},
+	}
+}
+
+// sameNumbers holds missing numbers for equal.
+var sameNumbers = cmp.Options{cmpopts.EquateNaNs(), cmp.Comparer(func(a, b energy.Number) bool {
+	return a == b || !a.Exists() && !b.Exists()
+})}
+
+// write puts a file into a temporary folder and returns its path.
+func write(t *testing.T, folder, name, text string) string {
+	t.Helper()
+	path := filepath.Join(folder, name)
+	if err := os.MkdirAll(filepath.Dir(path), 0o755); err != nil {
+		t.Fatal(err)
+	}
+	if err := os.WriteFile(path, []byte(text), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	return path
+}
+
+func TestReadWhole(t *testing.T) {
+	folder := t.TempDir()
+	path := write(t, folder, "study.toml", whole)
+	got, err := Read(path, Flags{}, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	time := 2.5
+	want := &Study{
+		Path: path,
+		// sha256sum of the text above
+		SHA256:  "6bc21258ab87c7333a886041f2c1812833b194a8cac576be0458b1fb3acff42e",
+		Options: wholeOptions(),
+		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
+		Time:    Time{Value: &time},
+	}
+	if difference := cmp.Diff(want, got, sameNumbers); difference != "" {
+		t.Errorf("want -, got +\n%s", difference)
+	}
+}
+
+// The forms of one study that mean the same.
+func TestFormsThatMeanTheSame(t *testing.T) {
+	for name, text := range map[string]string{
+		"windows line ends": "title = \"t\"\r\n[units]\r\nlength = \"mm\"\r\n",
+		"byte order mark":   "\ufefftitle = \"t\"\nunits.length = \"mm\"",
+		"dotted":            "title = 't'\nunits.length = 'mm'",
+		"inline":            "title = \"\"\"t\"\"\"\nunits = { length = \"mm\" }",
+		"quoted keys":       "\"title\" = \"\\u0074\"\n['units']\n\"length\" = 'mm' # millimetres",
+	} {
+		t.Run(name, func(t *testing.T) {
+			to := &faults{path: "s.toml"}
+			study, _ := parseStudy("s.toml", []byte(text), Flags{}, to)
+			if err := to.err(); err != nil {
+				t.Fatal(err)
+			}
+			if want := (energy.Options{Title: "t", Length: "mm", Idealisation: energy.Solid}); !cmp.Equal(study.Options, want) {
+				t.Errorf("got %+v", study.Options)
+			}
+		})
+	}
+}
+
+func TestEmptyStudyIsSolidAndNothingElse(t *testing.T) {
+	got, err := Read("", Flags{}, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if want := (&Study{Options: energy.Options{Idealisation: energy.Solid}}); !cmp.Equal(got, want) {
+		t.Errorf("got %+v", got)
+	}
+}
+
+// Materials of which nothing is given hold NaN and never 0.
+func TestMissingNumbersAreNaN(t *testing.T) {
+	got, err := Read("", Flags{Materials: []string{"name=S"}}, nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	material := got.Options.Materials[0]
+	for name, value := range map[string]float64{
+		"youngs_modulus": material.YoungsModulus, "poissons_ratio": material.PoissonsRatio,
+		"proportional_limit": material.ProportionalLimit, "density": material.Density,
+		"thermal_expansion": material.ThermalExpansion, "reference_temperature": material.ReferenceTemperature,
+	} {
+		if !math.IsNaN(value) {
+			t.Errorf("%s = %v, want NaN", name, value)
+		}
+	}
+}
+
+func TestTime(t *testing.T) {
+	seconds := 3.0
+	for text, want := range map[string]Time{
+		"":        {},
+		`"last"`:  {},
+		`"first"`: {First: true},
+		"3":       {Value: &seconds},
+		"3.0":     {Value: &seconds},
+	} {
+		to := &faults{}
+		source := ""
+		if text != "" {
+			source = "input.time = " + text
+		}
+		study, _ := parseStudy("s.toml", []byte(source), Flags{}, to)
+		if err := to.err(); err != nil || !cmp.Equal(study.Time, want) {
+			t.Errorf("time = %s: %+v, %v", text, study.Time, err)
+		}
+	}
+}
+
+func TestReadReportsUnreadableStudies(t *testing.T) {
+	folder := t.TempDir()
+	large := write(t, folder, "large.toml", "# "+string(make([]byte, maxStudyBytes)))
+	for path, want := range map[string]string{
+		filepath.Join(folder, "no.toml"): filepath.Join(folder, "no.toml") +
+			": cannot read the study file: no such file or directory; give the path of a file that exists and can be read",
+		folder: folder + ": cannot read the study file: is a directory; give the path of a file that exists and can be read",
+		large:  large + ": larger than 1 MiB, so no study file; give a text of a few hundred lines",
+	} {
+		_, err := Read(path, Flags{}, nil)
+		if found := (Faults{}); !errors.As(err, &found) || err.Error() != want {
+			t.Errorf("got %v\nwant %s", err, want)
+		}
+	}
+}

@@ -1,0 +1,387 @@
+package energy
+
+import (
+	"math"
+	"slices"
+
+	"strainledger/mesh"
+)
+
+// close lays out the ledger of a part that has seen every cell.
+func (p *plan) close(total *part) (*Ledger, error) {
+	if err := p.checkCells(total); err != nil {
+		return nil, err
+	}
+	ledger := &Ledger{
+		Schema: LedgerSchema, Title: Text(p.options.Title), Caution: Caution,
+		Units: labels(p.options.Length, p.options.Stress, p.options.Mass),
+		Model: p.summary(), Sources: p.sources(), Fields: p.inputs.used, Materials: p.materials(),
+		Excluded: excluded(total),
+	}
+	p.fillAccounts(ledger, total)
+	p.fillLists(ledger, total)
+	p.findInResult(ledger, total)
+	ledger.Findings = p.findings.sorted(p.options.Acceptances)
+	ledger.Requirements = judge(ledger, p.options.Requirements)
+	return ledger, nil
+}
+
+// checkCells refuses a model without a cell that can carry energy, and regions that
+// selected nothing.
+func (p *plan) checkCells(total *part) error {
+	var cells int64
+	for i := range total.accounts {
+		cells += total.accounts[i].cells
+	}
+	if cells == 0 {
+		return inputError("no cell can be accounted for: %s", whyNoCell(total, p.dimension))
+	}
+	for i := range p.regions.regions {
+		r := &p.regions.regions[i]
+		if total.accounts[i].cells == 0 && !r.optional {
+			return inputError("region %q has no cells; state optional = true if that is meant", r.name)
+		}
+	}
+	return nil
+}
+
+// whyNoCell says what became of the cells of a model in which none counts.
+func whyNoCell(total *part, dimension int) string {
+	names := []string{"points", "lines", "surfaces", "solids"}
+	for reason := range total.excluded {
+		for d, count := range total.excluded[reason].cells {
+			if count == 0 {
+				continue
+			}
+			if exclusionReason(reason) == otherDimension {
+				return "the model is one of " + names[dimension] + ", the file has " + names[d] + ": state [model] idealisation"
+			}
+			return "all are excluded as " + exclusionNames[reason]
+		}
+	}
+	return "the files have no cells"
+}
+
+// summary says how the model was read.
+func (p *plan) summary() ModelSummary {
+	o := p.options
+	summary := ModelSummary{
+		Idealisation: string(o.Idealisation), Points: "reference", EnergyFrom: string(p.from), Criterion: string(p.criterion()),
+	}
+	if o.Deformed {
+		summary.Points = "deformed"
+	}
+	switch {
+	case o.Idealisation != PlaneStress && o.Idealisation != PlaneStrain:
+	case o.ThicknessArray != "":
+		summary.Thickness = o.ThicknessArray
+	case o.Thickness != 0:
+		summary.Thickness = Number(o.Thickness)
+	case o.Idealisation == PlaneStrain:
+		summary.Thickness = Number(1)
+	}
+	if o.Idealisation == Axisymmetric {
+		summary.Axis = "y"
+		if o.AxisX {
+			summary.Axis = "x"
+		}
+	}
+	return summary
+}
+
+// criterion returns the criterion of the study.
+func (p *plan) criterion() Criterion {
+	if p.options.Limit.Criterion == "" {
+		return VonMises
+	}
+	return p.options.Limit.Criterion
+}
+
+// sources lists the files of the model.
+func (p *plan) sources() []SourceFile {
+	list := make([]SourceFile, len(p.model.Sources))
+	for i, source := range p.model.Sources {
+		list[i] = SourceFile{Path: source.Path, Bytes: source.Bytes, Points: source.Points, Cells: source.Cells, Time: Number(source.Time)}
+	}
+	return list
+}
+
+// materials lists the values of the materials that regions use, in study order.
+func (p *plan) materials() []MaterialUsed {
+	list := []MaterialUsed{}
+	for i := range p.options.Materials {
+		m := &p.options.Materials[i]
+		law := "none"
+		isUsed := false
+		for j := range p.regions.regions {
+			if r := &p.regions.regions[j]; r.material == m {
+				isUsed = true
+				if r.law != nil {
+					law = "isotropic"
+				}
+			}
+		}
+		if !isUsed {
+			continue
+		}
+		list = append(list, MaterialUsed{
+			Name: m.Name, Law: law, YoungsModulus: Number(m.YoungsModulus), PoissonsRatio: Number(m.PoissonsRatio),
+			ProportionalLimit: Number(m.ProportionalLimit), ProportionalLimitCompression: Number(m.ProportionalLimitCompression),
+			Density: Number(m.Density), ThermalExpansion: Number(m.ThermalExpansion),
+			ReferenceTemperature: Number(m.ReferenceTemperature), Source: Text(m.Source),
+		})
+	}
+	return list
+}
+
+// excluded lists the cells left out, by reason and dimension.
+func excluded(total *part) []Exclusion {
+	list := []Exclusion{}
+	for reason := notExcluded + 1; reason < exclusionReasons; reason++ {
+		e := &total.excluded[reason]
+		for dimension, count := range e.cells {
+			if count == 0 {
+				continue
+			}
+			measure := Number(e.measure[dimension].Float64())
+			if e.unknown[dimension] > 0 {
+				measure = None
+			}
+			list = append(list, Exclusion{Reason: exclusionNames[reason], Dimension: dimension, Cells: count, Measure: measure})
+		}
+	}
+	return list
+}
+
+// fillAccounts lays out the accounts of the regions and of the whole.
+func (p *plan) fillAccounts(ledger *Ledger, total *part) {
+	whole := wholeAccount(total)
+	hasLaws, hasDensities := true, true
+	ledger.Regions = make([]RegionAccount, len(p.regions.regions))
+	var mass Sum
+	for i := range p.regions.regions {
+		r := &p.regions.regions[i]
+		account := p.layOut(&total.accounts[i], r.law != nil, !math.IsNaN(r.limit))
+		account.VolumeWithoutLimit = 0
+		if math.IsNaN(r.limit) {
+			account.VolumeWithoutLimit = account.Volume
+		}
+		entry := RegionAccount{Name: r.name, Criterion: string(p.criterion()), Account: account}
+		if r.material != nil {
+			entry.Material = Text(r.material.Name)
+		}
+		if r.material != nil && !math.IsNaN(r.material.Density) {
+			entry.Mass = Number(r.material.Density) * account.Volume
+			mass.Add(float64(entry.Mass))
+		} else if total.accounts[i].cells > 0 {
+			hasDensities = false
+		}
+		if total.accounts[i].cells > 0 {
+			hasLaws = hasLaws && r.law != nil
+		}
+		ledger.Regions[i] = entry
+	}
+	ledger.Total = p.layOut(whole, hasLaws, p.hasLimits())
+	if hasDensities {
+		ledger.Total.Mass = Number(mass.Float64())
+	}
+	ledger.Total.VolumeWithoutLimit = p.volumeWithoutLimit(total)
+	p.fillShares(ledger)
+	if p.options.Repeats > 0 {
+		n := Number(p.options.Repeats)
+		ledger.Repeated = &Repeated{
+			Repeats: p.options.Repeats, Volume: n * ledger.Total.Volume, Mass: n * ledger.Total.Mass, Energy: n * ledger.Total.Energy,
+		}
+	}
+}
+
+// wholeAccount returns the account of all regions together.
+func wholeAccount(total *part) *account {
+	whole := &account{maxEquivalent: math.Inf(-1)}
+	for i := range total.accounts {
+		whole.join(&total.accounts[i])
+	}
+	return whole
+}
+
+// volumeWithoutLimit returns the volume of the regions that have no limit.
+func (p *plan) volumeWithoutLimit(total *part) Number {
+	var volume Sum
+	for i := range p.regions.regions {
+		if math.IsNaN(p.regions.regions[i].limit) {
+			volume.Join(&total.accounts[i].volume)
+		}
+	}
+	return Number(volume.Float64())
+}
+
+// layOut turns one account into the ledger's form. Without a law there is no split,
+// without a limit no utilisation.
+func (p *plan) layOut(a *account, hasLaw, hasLimit bool) Account {
+	account := Account{
+		Cells: a.cells, Volume: Number(a.volume.Float64()), Mass: None, Energy: Number(a.energy.Float64()), EnergyShare: None,
+		EnergyVolumetric: None, EnergyDistortional: None, MeanDensity: None,
+		MaxDensity: a.maxDensity.number(), PeakDensity: a.peak.number(), MaxEquivalentStress: None,
+		MaxUtilisation: None, MaxUtilisationCell: None, MaxUtilisationSource: None,
+		CellsPastLimit: None, VolumePastLimit: None, EnergyPastLimit: None, CellsYielded: None,
+		CurveEnergy: None, ErrorEstimate: None, EnergyError: None,
+	}
+	account.MaxDensityCell, account.MaxDensitySource, account.MaxDensityAt = a.maxDensity.where()
+	_, _, account.PeakDensityAt = a.peak.where()
+	if a.cells > 0 {
+		account.MaxEquivalentStress = Number(a.maxEquivalent)
+	}
+	if account.Volume != 0 {
+		account.MeanDensity = account.Energy / account.Volume
+	}
+	if hasLaw {
+		distortional := a.energy
+		distortional.Subtract(&a.volumetric)
+		account.EnergyVolumetric = Number(a.volumetric.Float64())
+		account.EnergyDistortional = Number(distortional.Float64())
+	}
+	if hasLimit {
+		account.MaxUtilisation = a.maxUtilisation.number()
+		account.MaxUtilisationCell, account.MaxUtilisationSource, account.MaxUtilisationAt = a.maxUtilisation.where()
+		account.CellsPastLimit = Number(a.pastCells)
+		account.VolumePastLimit = Number(a.pastVolume.Float64())
+		account.EnergyPastLimit = Number(a.pastEnergy.Float64())
+	}
+	if p.inputs.plasticStrain.exists() || p.inputs.equivalentPlasticStrain.exists() {
+		account.CellsYielded = Number(a.yieldedCells)
+	}
+	return account
+}
+
+// fillShares divides the regions' energies by the total.
+func (p *plan) fillShares(ledger *Ledger) {
+	total := ledger.Total.Energy
+	if total == 0 {
+		return
+	}
+	ledger.Total.EnergyShare = 1
+	for i := range ledger.Regions {
+		ledger.Regions[i].EnergyShare = ledger.Regions[i].Energy / total
+	}
+}
+
+// fillLists lays out the hotspots and the cells past their limit.
+func (p *plan) fillLists(ledger *Ledger, total *part) {
+	ledger.Hotspots = []Hotspot{}
+	total.hotspots.trim()
+	for rank, c := range total.hotspots.list {
+		ledger.Hotspots = append(ledger.Hotspots, p.hotspot(rank+1, &c))
+	}
+	ledger.PastLimit = PastLimit{
+		Criterion: string(p.criterion()), Cells: ledger.Total.CellsPastLimit,
+		Volume: ledger.Total.VolumePastLimit, Energy: ledger.Total.EnergyPastLimit, EnergyShare: None,
+		Worst: []RankedCell{},
+	}
+	if ledger.Total.Energy != 0 {
+		ledger.PastLimit.EnergyShare = ledger.PastLimit.Energy / ledger.Total.Energy
+	}
+	total.worst.trim()
+	for _, c := range total.worst.list {
+		ledger.PastLimit.Worst = append(ledger.PastLimit.Worst, p.rankedCell(&c))
+	}
+	slices.SortFunc(total.past, compare)
+	for i := range total.past {
+		ledger.AllPastLimit = append(ledger.AllPastLimit, p.rankedCell(&total.past[i]))
+	}
+}
+
+// hotspot lays out one entry of the list of hotspots: a single cell.
+func (p *plan) hotspot(rank int, c *candidate) Hotspot {
+	at := c.at
+	entry := Hotspot{
+		Rank: rank, Region: p.regions.regions[c.region].name, Cell: c.place.cell, Source: c.place.source, ElementID: elementID(c),
+		At: &at, Density: Number(c.density), PeakDensity: Number(c.peak), Energy: None, EnergyShare: None, Volume: None, Cells: None,
+		Prominence: None, EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
+	}
+	if !math.IsNaN(c.limitShare) {
+		isPast := c.limitShare > 1
+		entry.PastLimit = &isPast
+	}
+	return entry
+}
+
+// rankedCell lays out one cell past its limit.
+func (p *plan) rankedCell(c *candidate) RankedCell {
+	at := c.at
+	return RankedCell{
+		Cell: c.place.cell, Source: c.place.source, ElementID: elementID(c), Region: p.regions.regions[c.region].name,
+		At: &at, Density: Number(c.density), EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
+	}
+}
+
+// elementID returns the file's own number of a cell.
+func elementID(c *candidate) Number {
+	if c.elementID == mesh.NoLabel {
+		return None
+	}
+	return Number(c.elementID)
+}
+
+// findInResult reports what the evaluated cells have shown.
+func (p *plan) findInResult(ledger *Ledger, total *part) {
+	f := &p.findings
+	count := func(reason exclusionReason) (cells int64) {
+		for _, n := range total.excluded[reason].cells {
+			cells += n
+		}
+		return cells
+	}
+	if n := count(ghostCell); n > 0 {
+		f.add("ghost-cells", n, "%d cells are marked as duplicates or hidden and are left out", n)
+	}
+	if n := count(notFinite); n > 0 {
+		f.add("not-finite", n, "%d cells have values that are not finite and are left out: the sums lack their energy", n)
+	}
+	if n := count(noRegion); n > 0 {
+		f.add("no-region", n, "%d cells belong to no region and are left out: add a region, or one with select = { rest = true }", n)
+	}
+	if n := count(degenerateCell); n > 0 {
+		f.add("degenerate-cells", n, "%d cells have no measure worth the name and are left out", n)
+	}
+	if n := total.overlaps; n > 0 {
+		f.add("regions-overlap", n, "%d cells are claimed by more than one region; each is counted in the first", n)
+	}
+	if n := total.mirrored; n > 0 {
+		f.add("mirrored-cells", n, "%d cells are numbered inside out; each counts with its absolute volume", n)
+	}
+	if n := total.tangled; n > 0 {
+		f.add("tangled-cells", n, "%d cells are folded (their corner Jacobians differ in sign) and count with their signed volume: mend the mesh or its node order", n)
+	}
+	p.findNegative(ledger, total)
+	p.findZero(total)
+	if n := ledger.Total.CellsYielded; n > 0 {
+		f.add("plastic-strain-present", int64(n), "%d cells have plastic strain: the elastic energy stored is not the work done, and the limit's utilisation does not describe them", int64(n))
+	}
+}
+
+// findNegative reports cells of negative density beyond rounding: more than about 1e-9
+// of the peak (methods: negative density is an input error; threshold common practice,
+// no source). The amounts are known by their binary exponent only.
+func (p *plan) findNegative(ledger *Ledger, total *part) {
+	threshold := 1e-9 * math.Abs(float64(ledger.Total.MaxDensity))
+	first := int(math.Float64bits(threshold)>>52&0x7ff) + 1
+	var cells int64
+	for exponent := first; exponent < len(total.negative); exponent++ {
+		cells += total.negative[exponent]
+	}
+	if cells > 0 {
+		p.findings.add("negative-density", cells, "%d cells have a negative strain energy density: stress and strain do not belong together (component order, load step, or a strain that is not the elastic one)", cells)
+	}
+}
+
+// findZero reports fields without a single value that is not zero.
+func (p *plan) findZero(total *part) {
+	switch {
+	case !total.hasStress && !total.hasStrain:
+		p.findings.add("all-zero", 0, "every stress and strain is zero: there is no energy to account for; was the right state exported?")
+	case !total.hasStress:
+		p.findings.add("all-zero", 0, "every stress is zero: the energy is zero by that; was the right array exported?")
+	case !total.hasStrain:
+		p.findings.add("all-zero", 0, "every elastic strain is zero: the energy is zero by that; was the right array exported?")
+	}
+}

@@ -1,0 +1,629 @@
+package energy
+
+import (
+	"fmt"
+	"slices"
+	"strings"
+
+	"strainledger/mesh"
+)
+
+// A tensorInput reads one tensor field from a chunk.
+type tensorInput struct {
+	on      mesh.Location // 0: the field is not there
+	layout  mesh.Layout
+	columns []int // positions in Chunk.Values or Chunk.PointValues; several hold one component each
+}
+
+func (in *tensorInput) exists() bool { return in.on != 0 }
+
+// at returns the tensor of a cell, or of a node where the field is on points.
+func (in *tensorInput) at(chunk *mesh.Chunk, cell int, node int32) mesh.SymmetricTensor {
+	values, index := chunk.Values, cell
+	if in.on == mesh.OnPoint {
+		values, index = chunk.PointValues, int(node)
+	}
+	if len(in.columns) == 1 {
+		n := in.layout.Components
+		return in.layout.At(values[in.columns[0]][index*n : index*n+n])
+	}
+	var tuple [9]float64
+	for i, column := range in.columns {
+		tuple[i] = values[column][index]
+	}
+	return in.layout.At(tuple[:len(in.columns)])
+}
+
+// A scalarInput reads one field of single numbers from a chunk.
+type scalarInput struct {
+	on     mesh.Location // 0: the field is not there
+	column int
+}
+
+func (in *scalarInput) exists() bool { return in.on != 0 }
+
+// at returns the number of a cell, or of a node where the field is on points.
+func (in *scalarInput) at(chunk *mesh.Chunk, cell int, node int32) float64 {
+	if in.on == mesh.OnPoint {
+		return chunk.PointValues[in.column][node]
+	}
+	return chunk.Values[in.column][cell]
+}
+
+// inputs are the fields that a tally reads.
+type inputs struct {
+	stress, strain, thermalStrain, plasticStrain tensorInput
+	equivalentPlasticStrain, temperature         scalarInput
+	thickness                                    scalarInput
+	elementID                                    int // column of Chunk.Labels, or -1
+
+	strainIsElastic bool
+	used            FieldsUsed
+	want            mesh.Want
+}
+
+// isPerCell reports whether everything that the density needs is cell data.
+func (in *inputs) isPerCell() bool {
+	return in.stress.on != mesh.OnPoint && in.strain.on != mesh.OnPoint && in.thermalStrain.on != mesh.OnPoint &&
+		in.plasticStrain.on != mesh.OnPoint && in.temperature.on != mesh.OnPoint
+}
+
+// wantColumn adds an array to what is read, once, and returns its column.
+func wantColumn(list *[]string, name string) int {
+	if i := slices.Index(*list, name); i >= 0 {
+		return i
+	}
+	*list = append(*list, name)
+	return len(*list) - 1
+}
+
+// A fieldFinder decides which arrays are taken for which fields.
+type fieldFinder struct {
+	options  *Options
+	arrays   []mesh.Array // those that every piece with cells has
+	findings *findings
+	in       *inputs
+}
+
+// commonArrays returns the point and cell arrays that every piece with cells has with
+// the same number of components, in the order of the first such piece.
+func commonArrays(model *mesh.Model) []mesh.Array {
+	var common []mesh.Array
+	isFirst := true
+	for i := range model.Pieces {
+		piece := &model.Pieces[i]
+		if piece.CellCount == 0 {
+			continue
+		}
+		if isFirst {
+			common, isFirst = slices.Clone(piece.Arrays), false
+			continue
+		}
+		common = slices.DeleteFunc(common, func(a mesh.Array) bool {
+			other := piece.Find(a.On, a.Name)
+			return other == nil || other.Components != a.Components
+		})
+	}
+	return slices.DeleteFunc(common, func(a mesh.Array) bool { return a.Type == "String" })
+}
+
+// findInputs resolves every field of the study and of the file. The energy's source
+// is decided with them.
+func findInputs(model *mesh.Model, options *Options, found *findings) (*inputs, EnergySource, error) {
+	f := &fieldFinder{options: options, arrays: commonArrays(model), findings: found, in: &inputs{elementID: -1}}
+	source, on, err := f.chooseSource()
+	if err != nil {
+		return nil, "", err
+	}
+	if err := f.findTensors(source, on); err != nil {
+		return nil, "", err
+	}
+	if err := f.findOthers(on); err != nil {
+		return nil, "", err
+	}
+	return f.in, source, nil
+}
+
+// candidates returns the arrays at a location whose names and component counts fit one
+// of the roles.
+func (f *fieldFinder) candidates(on mesh.Location, fits func(components int) bool, roles ...role) []mesh.Array {
+	var list []mesh.Array
+	for _, array := range f.arrays {
+		if (on == 0 || array.On == on) && slices.Contains(roles, roleOf(array.Name)) && fits(array.Components) {
+			list = append(list, array)
+		}
+	}
+	return list
+}
+
+// isTensor reports whether so many components can be a tensor in this idealisation.
+func (f *fieldFinder) isTensor(components int) bool {
+	switch f.options.Idealisation {
+	case PlaneStress, PlaneStrain:
+		return slices.Contains([]int{3, 4, 6, 9}, components)
+	case Axisymmetric:
+		return slices.Contains([]int{4, 6, 9}, components)
+	}
+	return components == 6 || components == 9
+}
+
+func isScalar(components int) bool { return components == 1 }
+
+func isVector(components int) bool { return components == 2 || components == 3 }
+
+// locations are tried in this order where the study does not say.
+var locations = []mesh.Location{mesh.OnCell, mesh.OnPoint}
+
+// strainRoles are tried in this order: an elastic strain needs nothing subtracted.
+var strainRoles = [][]role{{elasticStrainRole}, {strainRole}}
+
+// has reports whether a tensor field is stated by the study or can be found at the
+// location.
+func (f *fieldFinder) has(field *Field, on mesh.Location, roles ...role) bool {
+	switch {
+	case field.Off:
+		return false
+	case field.IsStated():
+		array := f.stated(field)
+		return array == nil || array.On == on // a missing array is told later, by name
+	}
+	return (field.On == 0 || field.On == on) && len(f.candidates(on, f.isTensor, roles...)) > 0
+}
+
+// chooseSource returns the source of the energy and the location of its fields: what
+// the study states, else the first whose inputs exist.
+func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
+	stress, strain := &f.options.Fields.Stress, &f.options.Fields.Strain
+	from := f.options.From
+	if from == FromDisplacement {
+		return "", 0, studyError("[energy] from = \"displacement\" is not built yet")
+	}
+	if stress.IsStated() && strain.IsStated() && (from == "" || from == FromStressStrain) {
+		return FromStressStrain, 0, nil // also at two locations, because the study says so
+	}
+	for _, source := range []EnergySource{FromStressStrain, FromStress, FromStrain} {
+		if from != "" && from != source {
+			continue
+		}
+		for _, on := range locations {
+			hasStress := f.has(stress, on, stressRole)
+			hasStrain := f.has(strain, on, strainRole, elasticStrainRole)
+			if (hasStress || source == FromStrain) && (hasStrain || source == FromStress) {
+				return source, on, nil
+			}
+		}
+	}
+	return "", 0, f.nothingFound(from)
+}
+
+// nothingFound says which fields are missing and what the file has instead.
+func (f *fieldFinder) nothingFound(from EnergySource) error {
+	var have []string
+	for _, array := range f.arrays {
+		have = append(have, describe(array))
+	}
+	needed := "a stress or strain array"
+	switch from {
+	case FromStressStrain:
+		needed = "a stress and a strain array at one location"
+	case FromStress:
+		needed = "a stress array"
+	case FromStrain:
+		needed = "a strain array"
+	}
+	if len(have) == 0 {
+		have = []string{"no arrays"}
+	}
+	components := "6 or 9 components"
+	switch f.options.Idealisation {
+	case PlaneStress, PlaneStrain:
+		components = "3, 4, 6 or 9 components"
+	case Axisymmetric:
+		components = "4, 6 or 9 components, the hoop term among them"
+	}
+	return inputError("found no %s with %s; the file has %s; name the arrays in [fields]",
+		strings.TrimPrefix(needed, "a "), components, strings.Join(have, ", "))
+}
+
+// describe names an array for a message.
+func describe(array mesh.Array) string {
+	return fmt.Sprintf("%q (%d on %ss)", array.Name, array.Components, array.On)
+}
+
+// stated returns the array that the study names, nil when it is not in the file. The
+// first of several component arrays stands for all.
+func (f *fieldFinder) stated(field *Field) *mesh.Array {
+	for _, on := range locations {
+		if field.On != 0 && field.On != on {
+			continue
+		}
+		for i := range f.arrays {
+			if f.arrays[i].On == on && f.arrays[i].Name == field.Arrays[0] {
+				return &f.arrays[i]
+			}
+		}
+	}
+	return nil
+}
+
+// choose returns the array for a field: the stated one, or the only candidate at the
+// location. Found nothing: a nil array and no error. why is the reason for the report.
+func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits func(int) bool, roles ...role) (*mesh.Array, string, error) {
+	if field.Off {
+		return nil, "", nil
+	}
+	if field.IsStated() {
+		array := f.stated(field)
+		if array == nil {
+			return nil, "", f.missing(key, field)
+		}
+		if field.On == 0 {
+			f.noteSeveralLocations(key, array)
+		}
+		return array, "named in the study", nil
+	}
+	if field.On != 0 {
+		on = field.On
+	}
+	list := f.candidates(on, fits, roles...)
+	switch {
+	case len(list) == 0:
+		return nil, "", nil
+	case len(list) > 1:
+		names := make([]string, len(list))
+		for i, array := range list {
+			names[i] = describe(array)
+		}
+		return nil, "", inputError("the %s could be any of %s; name one in [fields] %s", plain(key), strings.Join(names, ", "), key)
+	}
+	for _, other := range locations {
+		if other != list[0].On && on != 0 && field.On == 0 && len(f.candidates(other, fits, roles...)) > 0 {
+			f.findings.add("several-locations", 0, "the %s is on cells and on points; taken on %ss: state [fields] %s = { on = ... } for the other", plain(key), list[0].On, key)
+		}
+	}
+	return &list[0], fmt.Sprintf("its name says %s and it has %d components", plain(key), list[0].Components), nil
+}
+
+// noteSeveralLocations reports a named array that stands on cells and on points.
+func (f *fieldFinder) noteSeveralLocations(key string, array *mesh.Array) {
+	for _, other := range f.arrays {
+		if other.Name == array.Name && other.On != array.On {
+			f.findings.add("several-locations", 0, "array %q is on cells and on points; taken on %ss: state [fields] %s = { array = %q, on = ... } for the other", array.Name, array.On, key, array.Name)
+			return
+		}
+	}
+}
+
+// missing says that an array which the study names is not in the file.
+func (f *fieldFinder) missing(key string, field *Field) error {
+	var have []string
+	for _, array := range f.arrays {
+		if field.On == 0 || array.On == field.On {
+			have = append(have, fmt.Sprintf("%q", array.Name))
+		}
+	}
+	where := "cells or points"
+	if field.On != 0 {
+		where = field.On.String() + "s"
+	}
+	if len(have) == 0 {
+		have = []string{"none"}
+	}
+	return inputError("[fields] %s: no array %q on %s; there are: %s", key, field.Arrays[0], where, strings.Join(have, ", "))
+}
+
+// plain is a field's key as words.
+func plain(key string) string { return strings.ReplaceAll(key, "_", " ") }
+
+// findTensors resolves stress, strain and what is subtracted from the strain.
+func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
+	fields, in := &f.options.Fields, f.in
+	if source != FromStrain {
+		if err := f.tensor("stress", &fields.Stress, on, &in.stress, &in.used.Stress, stressRole); err != nil {
+			return err
+		}
+	}
+	if source != FromStress {
+		for _, roles := range strainRoles {
+			if err := f.tensor("strain", &fields.Strain, on, &in.strain, &in.used.Strain, roles...); err != nil {
+				return err
+			}
+			if in.strain.exists() {
+				break
+			}
+		}
+		f.decideKind()
+	}
+	if in.strain.exists() && !in.strainIsElastic {
+		if err := f.tensor("thermal_strain", &fields.ThermalStrain, in.strain.on, &in.thermalStrain, &in.used.ThermalStrain, thermalStrainRole); err != nil {
+			return err
+		}
+	}
+	// The plastic strain also tells which cells have yielded.
+	if on == 0 {
+		on = in.strain.on
+	}
+	if err := f.tensor("plastic_strain", &fields.PlasticStrain, on, &in.plasticStrain, &in.used.PlasticStrain, plasticStrainRole); err != nil {
+		return err
+	}
+	if in.stress.exists() && in.strain.exists() && in.stress.on != in.strain.on {
+		f.findings.add("mixed-locations", 0, "stress is on %ss and strain on %ss, as the study names them: their product mixes averages of different kinds", in.stress.on, in.strain.on)
+	}
+	return f.checkComponents(source)
+}
+
+// decideKind settles whether the strain is the total or the elastic one.
+func (f *fieldFinder) decideKind() {
+	used := f.in.used.Strain
+	if used == nil {
+		return
+	}
+	f.in.strainIsElastic = f.options.Fields.Strain.Kind == "elastic" ||
+		f.options.Fields.Strain.Kind == "" && roleOf(used.Array) == elasticStrainRole
+	used.Kind = "total"
+	if f.in.strainIsElastic {
+		used.Kind = "elastic"
+	}
+}
+
+// tensor resolves one tensor field and records how it was decided.
+func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *tensorInput, used **FieldUsed, roles ...role) error {
+	array, why, err := f.choose(key, field, on, f.isTensor, roles...)
+	if err != nil || array == nil {
+		return err
+	}
+	components := array.Components
+	if len(field.Arrays) > 1 {
+		if components, err = f.componentArrays(key, field, array.On); err != nil {
+			return err
+		}
+	}
+	order, orderFrom, err := f.order(key, field, array, components)
+	if err != nil {
+		return err
+	}
+	shear, sign := mesh.TensorShear, 1.0
+	if field.Shear != "" {
+		if shear, err = mesh.ParseShear(field.Shear); err != nil {
+			return studyError("[fields] %s: %w", key, err)
+		}
+	}
+	signName := Text("")
+	if key == "stress" {
+		signName = "tension"
+		if field.Compression {
+			sign, signName = -1, "compression"
+		}
+	}
+	layout, err := mesh.NewLayout(order, components, shear, sign)
+	if err != nil {
+		return inputError("[fields] %s: array %q: %w", key, array.Name, err)
+	}
+	*to = tensorInput{on: array.On, layout: layout}
+	names := []string{array.Name}
+	if len(field.Arrays) > 1 {
+		names = field.Arrays
+	}
+	for _, name := range names {
+		to.columns = append(to.columns, f.column(array.On, name))
+	}
+	record := &FieldUsed{
+		Array: strings.Join(names, " "), On: array.On.String(), Order: Text(order.String()), Sign: signName,
+		DecidedBy: "default", Why: why,
+	}
+	if key != "stress" || field.Shear != "" {
+		record.Shear = Text(shear.String())
+	}
+	f.recordDecision(record, key, field, orderFrom)
+	*used = record
+	return nil
+}
+
+// recordDecision says who decided the order and the shear convention, and warns where
+// nobody did.
+func (f *fieldFinder) recordDecision(record *FieldUsed, key string, field *Field, orderFrom string) {
+	stated := field.Shear != "" || key == "stress"
+	switch {
+	case orderFrom == "study" && stated:
+		record.DecidedBy = "study"
+	case orderFrom == "file" && stated:
+		record.DecidedBy = "file"
+	}
+	record.Why += "; component order " + orderWords[orderFrom]
+	if key != "stress" {
+		if field.Shear != "" {
+			record.Why += ", shear as the study states"
+		} else {
+			record.Why += ", shear taken as tensor components"
+		}
+	}
+	if orderFrom == "default" {
+		f.findings.add("default-order", 0, "the component order of the %s is not stated; taken as %s: state [fields] %s = { order = ... } if it is another", plain(key), record.Order, key)
+	}
+	if !stated && record.Order != "xx yy zz" {
+		f.findings.add("shear-convention", 0, "the shear terms of the %s are not stated; taken as tensor components: state [fields] %s = { shear = \"engineering\" } if they are γ", plain(key), key)
+	}
+}
+
+var orderWords = map[string]string{
+	"study": "as the study states", "file": "from the array's component names", "default": "by default for its number of components",
+}
+
+// order returns the component order of an array and who decided it.
+func (f *fieldFinder) order(key string, field *Field, array *mesh.Array, components int) (mesh.Order, string, error) {
+	if len(field.Order) > 0 {
+		if len(field.Order) != components {
+			return nil, "", inputError("[fields] %s: array %q has %d components, the order %q names %d", key, array.Name, components, field.Order, len(field.Order))
+		}
+		return field.Order, "study", nil
+	}
+	if len(array.ComponentNames) == components {
+		if order, err := mesh.ParseOrder(strings.Join(array.ComponentNames, " "), f.options.AxisX); err == nil && len(order) == components {
+			return order, "file", nil
+		}
+	}
+	order := mesh.DefaultOrder(components)
+	if order == nil {
+		return nil, "", inputError("[fields] %s: array %q has %d components, a tensor has 3, 4, 6 or 9; state its order", key, array.Name, components)
+	}
+	return order, "default", nil
+}
+
+// componentArrays checks the arrays of a tensor that is stored component by component
+// and returns their number.
+func (f *fieldFinder) componentArrays(key string, field *Field, on mesh.Location) (int, error) {
+	if len(field.Arrays) > 9 {
+		return 0, studyError("[fields] %s names %d arrays, a tensor has at most 9 components", key, len(field.Arrays))
+	}
+	for _, name := range field.Arrays {
+		i := slices.IndexFunc(f.arrays, func(a mesh.Array) bool { return a.On == on && a.Name == name })
+		if i < 0 {
+			return 0, f.missing(key, &Field{Arrays: []string{name}, On: on})
+		}
+		if f.arrays[i].Components != 1 {
+			return 0, inputError("[fields] %s: array %q has %d components, one of several component arrays must have 1", key, name, f.arrays[i].Components)
+		}
+	}
+	return len(field.Arrays), nil
+}
+
+// column adds an array to what is read.
+func (f *fieldFinder) column(on mesh.Location, name string) int {
+	if on == mesh.OnPoint {
+		return wantColumn(&f.in.want.PointValues, name)
+	}
+	return wantColumn(&f.in.want.CellValues, name)
+}
+
+// checkComponents refuses tensors that lack components which no law can complete.
+func (f *fieldFinder) checkComponents(source EnergySource) error {
+	in := f.in
+	needed := []int{0, 1, 3}
+	switch f.options.Idealisation {
+	case Axisymmetric:
+		needed = []int{0, 1, 2, 3}
+	case Solid:
+		needed = []int{0, 1, 2, 3, 4, 5}
+	}
+	names := []string{"xx", "yy", "zz", "xy", "yz", "xz"}
+	for _, field := range []struct {
+		key   string
+		input *tensorInput
+	}{{"stress", &in.stress}, {"strain", &in.strain}, {"thermal_strain", &in.thermalStrain}, {"plastic_strain", &in.plasticStrain}} {
+		if !field.input.exists() {
+			continue
+		}
+		for _, i := range needed {
+			if !field.input.layout.Has(i) && !(i >= 3 && strings.HasPrefix(field.key, "thermal")) {
+				return inputError("the %s has no %s component, which a model of idealisation %q needs", plain(field.key), names[i], f.options.Idealisation)
+			}
+		}
+	}
+	if f.options.Idealisation != PlaneStrain || !in.strain.exists() || in.strain.layout.Has(2) {
+		return nil
+	}
+	// Elastic ε_zz is then -(thermal + plastic), so that these must be known.
+	if in.thermalStrain.exists() && !in.thermalStrain.layout.Has(2) {
+		return inputError("the strain has no zz component, and neither has the thermal strain: in plane strain the elastic zz strain is then unknown")
+	}
+	if in.plasticStrain.exists() && !in.strainIsElastic && !in.plasticStrain.layout.Has(2) {
+		return inputError("the strain has no zz component, and neither has the plastic strain: in plane strain the elastic zz strain is then unknown")
+	}
+	return nil
+}
+
+// findOthers resolves the fields of single numbers and the displacement.
+func (f *fieldFinder) findOthers(on mesh.Location) error {
+	fields, in := &f.options.Fields, f.in
+	if err := f.scalar("equivalent_plastic_strain", &fields.EquivalentPlasticStrain, on, &in.equivalentPlasticStrain, &in.used.EquivalentPlasticStrain, equivalentPlasticStrainRole); err != nil {
+		return err
+	}
+	// An array of thermal strain wins over temperature with expansion.
+	if in.strain.exists() && !in.strainIsElastic && !in.thermalStrain.exists() {
+		if err := f.findTemperature(); err != nil {
+			return err
+		}
+	}
+	displacement, why, err := f.choose("displacement", &fields.Displacement, mesh.OnPoint, isVector, displacementRole)
+	if err != nil {
+		if fields.Displacement.IsStated() {
+			return err
+		}
+		displacement = nil // not used, so that several candidates do no harm
+	}
+	if displacement != nil {
+		in.used.Displacement = &FieldUsed{Array: displacement.Name, On: displacement.On.String(), DecidedBy: decidedBy(&fields.Displacement), Why: why + "; the energy does not use it"}
+	}
+	if f.options.ThicknessArray != "" {
+		thickness := &Field{Arrays: []string{f.options.ThicknessArray}, On: mesh.OnCell}
+		array := f.stated(thickness)
+		if array == nil || array.Components != 1 {
+			return inputError("[model] thickness: no cell array %q with one component", f.options.ThicknessArray)
+		}
+		in.thickness = scalarInput{mesh.OnCell, f.column(mesh.OnCell, array.Name)}
+	}
+	return f.findElementID()
+}
+
+// findTemperature resolves the temperature, on cells or on points.
+func (f *fieldFinder) findTemperature() error {
+	if !slices.ContainsFunc(f.options.Materials, func(m Material) bool { return Number(m.ThermalExpansion).Exists() }) {
+		if f.options.Fields.Temperature.IsStated() {
+			return studyError("[fields] temperature is stated, but no material has a thermal_expansion")
+		}
+		return nil
+	}
+	field := &f.options.Fields.Temperature
+	for _, on := range locations {
+		if err := f.scalar("temperature", field, on, &f.in.temperature, &f.in.used.Temperature, temperatureRole); err != nil || f.in.temperature.exists() {
+			return err
+		}
+	}
+	return nil
+}
+
+// findElementID resolves the file's own cell numbers.
+func (f *fieldFinder) findElementID() error {
+	field := &f.options.Fields.ElementID
+	array, why, err := f.choose("element_id", field, mesh.OnCell, isScalar, elementIDRole)
+	if err != nil && !field.IsStated() {
+		return nil // numbers are a comfort; several candidates are no reason to stop
+	}
+	if err != nil || array == nil {
+		return err
+	}
+	if array.Components != 1 {
+		return inputError("[fields] element_id: array %q has %d components, want 1", array.Name, array.Components)
+	}
+	if array.On != mesh.OnCell {
+		return inputError("[fields] element_id: array %q is on points, element numbers are on cells", array.Name)
+	}
+	if !field.IsStated() && !array.IsInteger() {
+		return nil
+	}
+	f.in.elementID = wantColumn(&f.in.want.Labels, array.Name)
+	f.in.used.ElementID = &FieldUsed{Array: array.Name, On: "cell", DecidedBy: decidedBy(field), Why: why}
+	return nil
+}
+
+// scalar resolves one field of single numbers.
+func (f *fieldFinder) scalar(key string, field *Field, on mesh.Location, to *scalarInput, used **FieldUsed, roles ...role) error {
+	array, why, err := f.choose(key, field, on, isScalar, roles...)
+	if err != nil || array == nil {
+		return err
+	}
+	if array.Components != 1 {
+		return inputError("[fields] %s: array %q has %d components, want 1", key, array.Name, array.Components)
+	}
+	*to = scalarInput{array.On, f.column(array.On, array.Name)}
+	*used = &FieldUsed{Array: array.Name, On: array.On.String(), DecidedBy: decidedBy(field), Why: why}
+	return nil
+}
+
+// decidedBy tells a stated field from one that was found by its name.
+func decidedBy(field *Field) string {
+	if field.IsStated() {
+		return "study"
+	}
+	return "default"
+}

@@ -1,0 +1,132 @@
+package energy
+
+import (
+	"math"
+
+	"strainledger/mesh"
+)
+
+// An exclusionReason says why a cell is in no account. The order is that of the
+// ledger.
+type exclusionReason int
+
+const (
+	notExcluded exclusionReason = iota
+	ghostCell
+	otherDimension
+	unsupportedCell
+	noRegion
+	degenerateCell
+	notFinite
+	exclusionReasons
+)
+
+var exclusionNames = [exclusionReasons]string{
+	"", "ghost", "other-dimension", "unsupported", "no-region", "degenerate", "not-finite",
+}
+
+// An exclusion counts the cells left out for one reason, by their dimension.
+type exclusion struct {
+	cells   [4]int64
+	measure [4]Sum
+	unknown [4]int64 // cells whose measure cannot be told
+}
+
+// An account gathers what one region stores. Everything in it is order-free: exact
+// sums, counts, and bests under a total order.
+type account struct {
+	cells, pastCells, yieldedCells int64
+
+	volume, energy, volumetric Sum
+	pastVolume, pastEnergy     Sum
+
+	maxDensity, peak, maxUtilisation best
+	maxEquivalent                    float64 // -Inf before the first cell
+}
+
+// join adds another account of the same region, or of another one for the total.
+func (a *account) join(other *account) {
+	a.cells += other.cells
+	a.pastCells += other.pastCells
+	a.yieldedCells += other.yieldedCells
+	a.volume.Join(&other.volume)
+	a.energy.Join(&other.energy)
+	a.volumetric.Join(&other.volumetric)
+	a.pastVolume.Join(&other.pastVolume)
+	a.pastEnergy.Join(&other.pastEnergy)
+	a.maxDensity.join(&other.maxDensity)
+	a.peak.join(&other.peak)
+	a.maxUtilisation.join(&other.maxUtilisation)
+	a.maxEquivalent = max(a.maxEquivalent, other.maxEquivalent)
+}
+
+// A part is the account of some of a model's cells. Parts of one model join to the
+// part of the whole, exactly.
+type part struct {
+	accounts []account
+	excluded [exclusionReasons]exclusion
+
+	mirrored, tangled, overlaps int64
+
+	// negative counts the cells of negative density by the binary exponent of its
+	// amount, because what is negligible is known only when the peak is.
+	negative             [2048]int64
+	hasStress, hasStrain bool // some value that is not 0 was seen
+
+	hotspots ranking
+	worst    ranking
+	past     []candidate // every cell past its limit, where asked for
+}
+
+// newPart returns a part that has seen no cell.
+func newPart(p *plan) *part {
+	result := &part{accounts: make([]account, len(p.regions.regions))}
+	for i := range result.accounts {
+		result.accounts[i].maxEquivalent = math.Inf(-1)
+	}
+	result.hotspots.count = p.hotspotCount
+	result.worst.count = p.listCount
+	return result
+}
+
+// join adds another part of the same model.
+func (p *part) join(other *part) {
+	for i := range p.accounts {
+		p.accounts[i].join(&other.accounts[i])
+	}
+	for reason := range p.excluded {
+		mine, theirs := &p.excluded[reason], &other.excluded[reason]
+		for dimension := range mine.cells {
+			mine.cells[dimension] += theirs.cells[dimension]
+			mine.unknown[dimension] += theirs.unknown[dimension]
+			mine.measure[dimension].Join(&theirs.measure[dimension])
+		}
+	}
+	p.mirrored += other.mirrored
+	p.tangled += other.tangled
+	p.overlaps += other.overlaps
+	for i := range p.negative {
+		p.negative[i] += other.negative[i]
+	}
+	p.hasStress = p.hasStress || other.hasStress
+	p.hasStrain = p.hasStrain || other.hasStrain
+	p.hotspots.join(&other.hotspots)
+	p.worst.join(&other.worst)
+	p.past = append(p.past, other.past...)
+}
+
+// exclude counts a cell that is left out.
+func (p *part) exclude(reason exclusionReason, cell *mesh.Cell) {
+	dimension := cell.Shape.Dimension
+	e := &p.excluded[reason]
+	e.cells[dimension]++
+	measure := math.NaN()
+	if cell.Shape.Supported {
+		measure = cell.Measure()
+	}
+	if math.IsNaN(measure) || math.IsInf(measure, 0) {
+		e.unknown[dimension]++
+		return
+	}
+	e.measure[dimension].Add(measure)
+}

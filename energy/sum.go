@@ -1,0 +1,97 @@
+package energy
+
+import (
+	"math"
+	"math/big"
+	"math/bits"
+)
+
+// A Sum adds doubles exactly, so that neither the order of the terms nor the way they
+// were shared among workers can be seen in the result. It is a superaccumulator: 64
+// overlapping two's-complement digits of 128 bits, digit i in units of 2^(32i-1075),
+// 1 KiB in all. A digit takes 2^43 terms before it could overflow. The zero value is
+// an empty sum.
+//
+// Kulisch 2013, Computer Arithmetic and Validity, ch. 8 (long accumulator); the
+// overlapping digits are our own choice, so that no carry has to run.
+type Sum struct {
+	digit [64]struct{ low, high uint64 }
+}
+
+// Add adds one finite value.
+func (s *Sum) Add(value float64) {
+	bits64 := math.Float64bits(value)
+	exponent := int(bits64>>52) & 0x7ff
+	mantissa := bits64 & (1<<52 - 1)
+	if exponent == 0 {
+		exponent = 1 // subnormal: same unit, no hidden bit
+		if mantissa == 0 {
+			return
+		}
+	} else {
+		mantissa |= 1 << 52
+	}
+	// value = mantissa × 2^(exponent-1075)
+	digit, shift := exponent>>5, uint(exponent&31)
+	low, high := mantissa<<shift, mantissa>>(64-shift)
+	d := &s.digit[digit]
+	// Two's complement of the 128-bit term where the value is negative.
+	negative := uint64(int64(bits64) >> 63)
+	low, high = low^negative, high^negative
+	var carry uint64
+	low, carry = bits.Add64(low, negative&1, 0)
+	high += carry
+	d.low, carry = bits.Add64(d.low, low, 0)
+	d.high, _ = bits.Add64(d.high, high, carry)
+}
+
+// AddAll adds finite values.
+func (s *Sum) AddAll(values []float64) {
+	for _, value := range values {
+		s.Add(value)
+	}
+}
+
+// Join adds another sum.
+func (s *Sum) Join(other *Sum) {
+	for i := range s.digit {
+		d, o := &s.digit[i], &other.digit[i]
+		var carry uint64
+		d.low, carry = bits.Add64(d.low, o.low, 0)
+		d.high, _ = bits.Add64(d.high, o.high, carry)
+	}
+}
+
+// Subtract takes another sum away.
+func (s *Sum) Subtract(other *Sum) {
+	for i := range s.digit {
+		d, o := &s.digit[i], &other.digit[i]
+		var borrow uint64
+		d.low, borrow = bits.Sub64(d.low, o.low, 0)
+		d.high, _ = bits.Sub64(d.high, o.high, borrow)
+	}
+}
+
+// Float64 returns the sum, rounded once to the nearest double, ties to even.
+func (s *Sum) Float64() float64 {
+	var total, term big.Int
+	for i := len(s.digit) - 1; i >= 0; i-- {
+		total.Lsh(&total, 32)
+		d := &s.digit[i]
+		if d.low|d.high == 0 {
+			continue
+		}
+		term.SetInt64(int64(d.high))
+		term.Lsh(&term, 64)
+		total.Add(&total, &term)
+		total.Add(&total, term.SetUint64(d.low))
+	}
+	if total.Sign() == 0 {
+		return 0
+	}
+	// Exact so far; a precision of all its bits makes the last step the only rounding.
+	exact := new(big.Float).SetPrec(uint(total.BitLen())).SetInt(&total)
+	exact.SetMantExp(exact, -1075)
+	value, _ := exact.Float64()
+	return value
+}

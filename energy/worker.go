@@ -1,0 +1,442 @@
+package energy
+
+import (
+	"math"
+
+	"strainledger/mesh"
+)
+
+// A worker evaluates chunks: it turns the arrays of a chunk into columns, one number
+// for each cell, and adds the columns to its part.
+type worker struct {
+	*plan
+	part *part
+	cell mesh.Cell
+
+	region      []int32 // -1: in no account
+	measure     []float64
+	energy      []float64
+	volumetric  []float64
+	density     []float64
+	peak        []float64 // largest ½ σ:ε over the places where the file gives values
+	peakNode    []int32   // the node of that place, 0 for cell data
+	equivalent  []float64
+	utilisation []float64 // NaN without a limit
+	isYielded   []bool
+
+	// The places of the current cell: its nodes, or one place for cell data.
+	stress, strain []mesh.SymmetricTensor
+	elements       []float64
+	rational       []float64 // room for the shape functions of Bézier cells
+}
+
+func newWorker(p *plan) *worker {
+	return &worker{plan: p, part: newPart(p)}
+}
+
+// visit takes one chunk.
+func (w *worker) visit(chunk *mesh.Chunk) error {
+	w.grow(chunk.Count)
+	w.part.overlaps += w.regions.assign(chunk, w.region)
+	for i := range chunk.Count {
+		chunk.Cell(i, &w.cell)
+		reason, err := w.evaluate(chunk, i)
+		if err != nil {
+			return err
+		}
+		if reason != notExcluded {
+			w.part.exclude(reason, &w.cell)
+			w.region[i] = -1
+		}
+	}
+	w.gather(chunk)
+	return nil
+}
+
+// grow makes room for a chunk's columns.
+func (w *worker) grow(count int) {
+	if len(w.region) >= count {
+		return
+	}
+	w.region, w.peakNode, w.isYielded = make([]int32, count), make([]int32, count), make([]bool, count)
+	for _, column := range []*[]float64{&w.measure, &w.energy, &w.volumetric, &w.density, &w.peak, &w.equivalent, &w.utilisation} {
+		*column = make([]float64, count)
+	}
+}
+
+// evaluate fills the columns of one cell, or returns why it is left out.
+func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
+	switch {
+	case chunk.Hidden != nil && chunk.Hidden[i]&(mesh.DuplicateCell|mesh.HiddenCell) != 0:
+		return ghostCell, nil
+	case w.cell.Shape.Dimension != w.dimension:
+		return otherDimension, nil
+	case !w.cell.Shape.Supported:
+		return unsupportedCell, nil
+	case w.region[i] < 0:
+		return noRegion, nil
+	}
+	r := &w.regions.regions[w.region[i]]
+	orientation, reason, err := w.measureCell(chunk, i, r)
+	if err != nil || reason != notExcluded {
+		return reason, err
+	}
+	if w.inputs.isPerCell() {
+		reason = w.evaluateCell(chunk, i, r)
+	} else {
+		reason = w.evaluateNodes(chunk, i, r, orientation)
+	}
+	if reason == notExcluded {
+		switch orientation {
+		case mesh.Mirrored:
+			w.part.mirrored++
+		case mesh.Tangled:
+			w.part.tangled++
+		}
+	}
+	return reason, nil
+}
+
+// measureCell computes the measure that energy is integrated over: the volume, the
+// area times the thickness, or the ring's volume 2πr dA.
+func (w *worker) measureCell(chunk *mesh.Chunk, i int, r *region) (mesh.Orientation, exclusionReason, error) {
+	var measure, flat float64 // flat: what is compared with the model's size
+	var orientation mesh.Orientation
+	switch w.options.Idealisation {
+	case Solid:
+		measure, orientation = w.cell.Volume()
+		flat = measure
+	case Axisymmetric:
+		var smallest float64
+		measure, smallest, orientation = w.cell.RingVolume(w.options.AxisX)
+		if smallest < -1e-12*w.bounds.Diagonal() {
+			return 0, 0, inputError("%s: cell %d reaches a radius of %g: an axisymmetric mesh lies on one side of its axis; state [model] axis if it is the other one",
+				w.model.Sources[chunk.Source].Path, chunk.First+int64(i), smallest)
+		}
+		flat, _ = w.cell.PlaneArea()
+	default:
+		measure, orientation = w.cell.PlaneArea()
+		flat = measure
+		measure *= w.thickness(chunk, i, r)
+	}
+	if orientation == mesh.Mirrored {
+		measure = -measure
+	}
+	w.measure[i] = measure
+	switch {
+	case math.IsNaN(measure) || math.IsInf(measure, 0):
+		return 0, notFinite, nil
+	case math.Abs(flat) <= 1e-12*math.Pow(w.bounds.Diagonal(), float64(w.dimension)):
+		return 0, degenerateCell, nil
+	}
+	return orientation, notExcluded, nil
+}
+
+// thickness returns the thickness of a plane cell.
+func (w *worker) thickness(chunk *mesh.Chunk, i int, r *region) float64 {
+	switch {
+	case w.inputs.thickness.exists():
+		return w.inputs.thickness.at(chunk, i, 0)
+	case r.thickness != 0:
+		return r.thickness
+	}
+	return 1 // plane strain: per unit thickness
+}
+
+// evaluateCell fills the columns of a cell from one value per cell.
+func (w *worker) evaluateCell(chunk *mesh.Chunk, i int, r *region) exclusionReason {
+	var stress, strain mesh.SymmetricTensor
+	isYielded := w.at(chunk, i, 0, r, &stress, &strain)
+	density := Density(&stress, &strain)
+	w.energy[i] = density * w.measure[i]
+	w.volumetric[i] = 0
+	if r.law != nil {
+		w.volumetric[i] = VolumetricDensity(&stress, &strain) * w.measure[i]
+	}
+	w.density[i], w.peak[i], w.peakNode[i] = density, density, 0
+	w.isYielded[i] = isYielded
+	w.judge(i, r, &stress)
+	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i]) || !stress.IsFinite() || !strain.IsFinite() {
+		return notFinite
+	}
+	return notExcluded
+}
+
+// judge writes the equivalent stress and the utilisation of one place.
+func (w *worker) judge(i int, r *region, stress *mesh.SymmetricTensor) {
+	w.equivalent[i] = VonMisesStress(stress)
+	w.utilisation[i] = w.equivalent[i] / r.limit
+}
+
+// evaluateNodes fills the columns of a cell whose fields, or some of them, are on its
+// points: stress and strain are each interpolated with the cell's shape functions,
+// multiplied, and integrated.
+func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) exclusionReason {
+	shape := w.cell.Shape
+	if !shape.Interpolates() {
+		return unsupportedCell
+	}
+	if count := shape.NodeCount; len(w.stress) < count {
+		w.stress, w.strain = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
+		w.rational = make([]float64, count)
+	}
+	w.isYielded[i] = false
+	w.peak[i] = math.Inf(-1)
+	largest := math.Inf(-1)
+	for k, node := range w.cell.Nodes {
+		stress, strain := &w.stress[k], &w.strain[k]
+		if w.at(chunk, i, node, r, stress, strain) {
+			w.isYielded[i] = true
+		}
+		if !stress.IsFinite() || !strain.IsFinite() {
+			return notFinite
+		}
+		if density := Density(stress, strain); density > w.peak[i] {
+			w.peak[i], w.peakNode[i] = density, int32(k)
+		}
+		w.judge(i, r, stress)
+		largest = max(largest, w.equivalent[i])
+	}
+	w.equivalent[i] = largest
+	w.utilisation[i] = largest / r.limit
+	w.integrate(chunk, i, r, orientation)
+	w.density[i] = w.energy[i] / w.measure[i]
+	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
+		return notFinite
+	}
+	return notExcluded
+}
+
+// integrate computes ∫ ½ σ:ε dV and its volumetric share from the nodal tensors.
+func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) {
+	shape := w.cell.Shape
+	rule := shape.ProductRule()
+	if w.options.Idealisation == Axisymmetric {
+		rule = shape.RingProductRule()
+	}
+	if len(w.elements) < len(rule.Weights) {
+		w.elements = make([]float64, len(rule.Weights))
+	}
+	elements := w.elements[:len(rule.Weights)]
+	factor := 1.0
+	switch w.options.Idealisation {
+	case Solid:
+		w.cell.VolumeElements(rule, elements)
+	case Axisymmetric:
+		w.cell.RingElements(rule, w.options.AxisX, elements)
+	default:
+		w.cell.PlaneElements(rule, elements)
+		factor = w.thickness(chunk, i, r)
+	}
+	if orientation == mesh.Mirrored {
+		factor = -factor
+	}
+	var energy, volumetric float64
+	for q, element := range elements {
+		values := w.cell.Values(rule, q, w.rational)
+		var stress, strain mesh.SymmetricTensor
+		for k, value := range values {
+			s, e := &w.stress[k], &w.strain[k]
+			for c := range stress {
+				stress[c] += float64(value * s[c])
+				strain[c] += float64(value * e[c])
+			}
+		}
+		energy += float64(Density(&stress, &strain) * element)
+		volumetric += float64(VolumetricDensity(&stress, &strain) * element)
+	}
+	w.energy[i] = energy * factor
+	w.volumetric[i] = 0
+	if r.law != nil {
+		w.volumetric[i] = volumetric * factor
+	}
+}
+
+// at evaluates stress and elastic strain at one place of a cell, the node where fields
+// are on points, with every component completed, and reports whether there is plastic
+// strain.
+func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, strain *mesh.SymmetricTensor) (isYielded bool) {
+	in := w.inputs
+	var plastic mesh.SymmetricTensor
+	if in.plasticStrain.exists() {
+		plastic = in.plasticStrain.at(chunk, cell, node)
+		isYielded = plastic != mesh.SymmetricTensor{}
+	}
+	if in.equivalentPlasticStrain.exists() && in.equivalentPlasticStrain.at(chunk, cell, node) != 0 {
+		isYielded = true
+	}
+	if in.strain.exists() {
+		*strain = in.strain.at(chunk, cell, node)
+		w.subtractInelastic(chunk, cell, node, r, &plastic, strain)
+	}
+	if in.stress.exists() {
+		*stress = in.stress.at(chunk, cell, node)
+	}
+	w.complete(r, stress, strain)
+	if !w.part.hasStress {
+		w.part.hasStress = *stress != mesh.SymmetricTensor{}
+	}
+	if !w.part.hasStrain {
+		w.part.hasStrain = *strain != mesh.SymmetricTensor{}
+	}
+	return isYielded
+}
+
+// subtractInelastic turns the strain array's value into the elastic strain: the total
+// minus the thermal minus the plastic one. An elastic strain that lacks zz gets its zz
+// this way in plane strain, where the total is 0.
+func (w *worker) subtractInelastic(chunk *mesh.Chunk, cell int, node int32, r *region, plastic, strain *mesh.SymmetricTensor) {
+	in := w.inputs
+	var thermal mesh.SymmetricTensor
+	switch {
+	case in.thermalStrain.exists():
+		thermal = in.thermalStrain.at(chunk, cell, node)
+	case in.temperature.exists() && r.material != nil && !math.IsNaN(r.material.ThermalExpansion):
+		rise := in.temperature.at(chunk, cell, node) - r.material.ReferenceTemperature
+		expansion := r.material.ThermalExpansion * rise
+		thermal = mesh.SymmetricTensor{expansion, expansion, expansion}
+	}
+	for i := range strain {
+		if !in.strainIsElastic || i == 2 && w.options.Idealisation == PlaneStrain && !in.strain.layout.Has(2) {
+			strain[i] -= thermal[i] + plastic[i]
+		}
+	}
+}
+
+// complete fills in what the file lacks, by the law: the other tensor where there is
+// only one, and the components out of the plane.
+func (w *worker) complete(r *region, stress, strain *mesh.SymmetricTensor) {
+	in := w.inputs
+	switch w.from {
+	case FromStressStrain:
+		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
+			stress[2] = r.law.StressZZ(stress, strain[2])
+		}
+		if w.options.Idealisation == PlaneStress && !in.strain.layout.Has(2) && r.law != nil {
+			strain[2] = r.law.Strain(stress)[2]
+		}
+	case FromStress:
+		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
+			stress[2] = r.law.StressZZ(stress, 0)
+		}
+		*strain = r.law.Strain(stress)
+	case FromStrain:
+		if w.options.Idealisation == PlaneStress {
+			strain[2] = r.law.PlaneStressStrainZZ(strain)
+		}
+		*stress = r.law.Stress(strain)
+		if w.options.Idealisation == PlaneStress {
+			stress[2] = 0 // but for rounding
+		}
+	}
+}
+
+// isFinite reports whether all values are finite.
+func isFinite(values ...float64) bool {
+	for _, value := range values {
+		if value-value != 0 {
+			return false
+		}
+	}
+	return true
+}
+
+// gather adds the columns of a chunk to the accounts, run by run of one region.
+func (w *worker) gather(chunk *mesh.Chunk) {
+	for low := 0; low < chunk.Count; {
+		number := w.region[low]
+		high := low + 1
+		for high < chunk.Count && w.region[high] == number {
+			high++
+		}
+		if number >= 0 {
+			w.gatherRun(chunk, int(number), low, high)
+		}
+		low = high
+	}
+}
+
+// gatherRun adds the cells [low, high), all of one region.
+func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
+	a := &w.part.accounts[number]
+	a.cells += int64(high - low)
+	a.volume.AddAll(w.measure[low:high])
+	a.energy.AddAll(w.energy[low:high])
+	a.volumetric.AddAll(w.volumetric[low:high])
+	for i := low; i < high; i++ {
+		p := place{source: chunk.Source, cell: chunk.First + int64(i)}
+		if w.isYielded[i] {
+			a.yieldedCells++
+		}
+		if density := w.density[i]; density < 0 {
+			w.part.negative[math.Float64bits(density)>>52&0x7ff]++
+		}
+		a.maxEquivalent = max(a.maxEquivalent, w.equivalent[i])
+		if a.maxDensity.takes(w.density[i], p) {
+			a.maxDensity = best{true, w.density[i], p, w.centroidOf(chunk, i)}
+		}
+		if at := (place{p.source, p.cell, w.peakNode[i]}); a.peak.takes(w.peak[i], at) {
+			a.peak = best{true, w.peak[i], at, w.peakPlace(chunk, i)}
+		}
+		w.rank(chunk, i, p, a)
+	}
+}
+
+// rank offers a cell to the lists and counts it where it is past its limit.
+func (w *worker) rank(chunk *mesh.Chunk, i int, p place, a *account) {
+	utilisation := w.utilisation[i]
+	if !math.IsNaN(utilisation) {
+		if a.maxUtilisation.takes(utilisation, p) {
+			a.maxUtilisation = best{true, utilisation, p, w.centroidOf(chunk, i)}
+		}
+		if utilisation > 1 {
+			a.pastCells++
+			a.pastVolume.Add(w.measure[i])
+			a.pastEnergy.Add(w.energy[i])
+			if w.options.ListAllPastLimit {
+				w.part.past = append(w.part.past, w.candidate(chunk, i, p, utilisation))
+			}
+			if w.part.worst.takes(utilisation, p) {
+				w.part.worst.add(w.candidate(chunk, i, p, utilisation))
+			}
+		}
+	}
+	key := w.density[i]
+	switch w.by {
+	case "utilisation":
+		key = utilisation
+	case "energy":
+		key = w.energy[i]
+	}
+	if !math.IsNaN(key) && w.part.hotspots.takes(key, p) {
+		w.part.hotspots.add(w.candidate(chunk, i, p, key))
+	}
+}
+
+// centroidOf returns the centroid of cell i of the chunk.
+func (w *worker) centroidOf(chunk *mesh.Chunk, i int) Vector {
+	chunk.Cell(i, &w.cell)
+	return centroid(&w.cell, w.options)
+}
+
+// peakPlace returns where the peak density of cell i was seen.
+func (w *worker) peakPlace(chunk *mesh.Chunk, i int) Vector {
+	if w.inputs.isPerCell() {
+		return w.centroidOf(chunk, i)
+	}
+	node := chunk.Nodes[int(chunk.Start[i])+int(w.peakNode[i])]
+	return Vector(chunk.Points[3*node : 3*node+3])
+}
+
+// candidate returns what the lists say of cell i.
+func (w *worker) candidate(chunk *mesh.Chunk, i int, p place, key float64) candidate {
+	c := candidate{
+		key: key, place: p, region: w.region[i], elementID: mesh.NoLabel, at: w.centroidOf(chunk, i),
+		measure: w.measure[i], energy: w.energy[i], density: w.density[i], peak: w.peak[i],
+		equivalent: w.equivalent[i], limitShare: w.utilisation[i],
+	}
+	if w.inputs.elementID >= 0 {
+		c.elementID = chunk.Labels[w.inputs.elementID][i]
+	}
+	return c
+}
