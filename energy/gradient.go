@@ -108,8 +108,8 @@ func (w *worker) stressOf(r *region, strain *mesh.SymmetricTensor) mesh.Symmetri
 	if w.options.Idealisation != PlaneStress {
 		return r.law.Stress(strain)
 	}
-	strain[2] = r.law.PlaneStressStrainZZ(strain)
+	r.law.CompletePlaneStress(strain)
 	stress := r.law.Stress(strain)
-	stress[2] = 0 // but for rounding
+	stress[2], stress[4], stress[5] = 0, 0, 0 // but for rounding
 	return stress
 }

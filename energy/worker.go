@@ -347,14 +347,14 @@ func (w *worker) complete(r *region, stress, strain *mesh.SymmetricTensor) {
 	switch w.from {
 	case FromStressStrain:
 		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
-			stress[2] = r.law.StressZZ(stress, strain[2])
+			r.law.CompletePlaneStrain(stress, strain[2])
 		}
 		if w.options.Idealisation == PlaneStress && !in.strain.layout.Has(2) && r.law != nil {
 			strain[2] = r.law.Strain(stress)[2]
 		}
 	case FromStress:
 		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
-			stress[2] = r.law.StressZZ(stress, 0)
+			r.law.CompletePlaneStrain(stress, 0)
 		}
 		*strain = r.law.Strain(stress)
 	case FromStrain:
