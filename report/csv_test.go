@@ -184,7 +184,7 @@ func TestColumnsDescribeEveryColumn(t *testing.T) {
 }
 
 func TestUnitsOfColumns(t *testing.T) {
-	full := &energy.UnitLabels{Length: "mm", Stress: "MPa", Energy: "mJ", EnergyDensity: "mJ/mm³", Mass: "kg"}
+	full := &energy.UnitLabels{Length: "mm", Stress: "MPa", Energy: "mJ", EnergyDensity: "mJ/mm^3", Mass: "kg"}
 	for _, test := range []struct{ key, stated, unstated string }{
 		{"name", "", ""},
 		{"max_density_cell", "", ""},
@@ -192,13 +192,13 @@ func TestUnitsOfColumns(t *testing.T) {
 		{"energy_share", "1", "1"},
 		{"utilisation", "1", "1"},
 		{"at", "mm", "not stated"},
-		{"volume", "mm³", "not stated"},
-		{"volume_past_limit", "mm³", "not stated"},
+		{"volume", "mm^3", "not stated"},
+		{"volume_past_limit", "mm^3", "not stated"},
 		{"mass", "kg", "not stated"},
 		{"energy", "mJ", "not stated"},
 		{"energy_past_limit", "mJ", "not stated"},
-		{"max_density", "mJ/mm³", "not stated"},
-		{"peak_density", "mJ/mm³", "not stated"},
+		{"max_density", "mJ/mm^3", "not stated"},
+		{"peak_density", "mJ/mm^3", "not stated"},
 		{"max_equivalent_stress", "MPa", "not stated"},
 		{"value", "that of the quantity", "that of the quantity"},
 	} {
@@ -210,7 +210,7 @@ func TestUnitsOfColumns(t *testing.T) {
 			t.Errorf("without units, the unit of %s is %q, want %q", test.key, got, test.unstated)
 		}
 	}
-	if got := inArea.unit(full); got != "mm²" {
+	if got := inArea.unit(full); got != "mm^2" {
 		t.Errorf("the unit of an area is %q", got)
 	}
 }

@@ -179,7 +179,7 @@ func TestJUnitOfTheBracket(t *testing.T) {
 	}
 	for _, want := range []string{
 		`<testsuite name="Mooring bracket, fillet R2" tests="4" failures="2" errors="1" skipped="0" time="0">`,
-		`<failure message="cells_past_limit of the whole model is 6, at most 0 required" type="cells_past_limit">`,
+		`<failure message="cells_past_limit of the whole model: 6, at most 0" type="cells_past_limit">`,
 		`<testcase name="corner stores little" classname="corner" time="0"></testcase>`,
 	} {
 		if !strings.Contains(text.String(), want) {

@@ -43,7 +43,7 @@ func writeJUnit(w io.Writer, ledger *energy.Ledger) error {
 	for i := range ledger.Requirements {
 		requirement := &ledger.Requirements[i]
 		entry := junitCase{Name: requirement.Name, Class: regionName(requirement.Region)}
-		outcome := &junitOutcome{Message: requirementSentence(requirement, &ledger.Units), Type: requirement.Quantity}
+		outcome := &junitOutcome{Message: requirementSubject(requirement) + ": " + requirementBasis(requirement, &ledger.Units), Type: requirement.Quantity}
 		switch {
 		case requirement.Met:
 		case requirement.Value.Exists():

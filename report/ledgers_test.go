@@ -83,7 +83,7 @@ func bracket() *energy.Ledger {
 	return &energy.Ledger{
 		Schema: energy.LedgerSchema,
 		Title:  "Mooring bracket, fillet R2",
-		Units:  energy.UnitLabels{Length: "mm", Stress: "MPa", Energy: "mJ", EnergyDensity: "mJ/mm³", Mass: "kg"},
+		Units:  energy.UnitLabels{Length: "mm", Stress: "MPa", Energy: "mJ", EnergyDensity: "mJ/mm^3", Mass: "kg"},
 		Model:  energy.ModelSummary{Idealisation: "solid", Points: "reference", EnergyFrom: "stress-strain", Criterion: "von-mises"},
 		Study:  &energy.StudyFile{Path: "bracket-r2.toml", SHA256: energy.Text(strings.Repeat("0f", 32))},
 		Sources: []energy.SourceFile{
@@ -116,17 +116,17 @@ func bracket() *energy.Ledger {
 			{Reason: "other-dimension", Dimension: 2, Cells: 4, Measure: 96},
 		},
 		Findings: []energy.Finding{
-			{Code: "one-value-per-cell", Severity: energy.Note, Cells: energy.None, Message: "Each cell has one value: its energy is a lower estimate of what the solution held. Refine, or export values at integration points."},
+			{Code: "hooke-mismatch", Severity: energy.Error, Cells: 14, Message: "Stress and strain of these cells do not belong together by Hooke's law. Look whether both are of the same state."},
+			{Code: "study-contradicted", Severity: energy.Error, Cells: energy.None, Message: "The study says engineering shear, the numbers say tensor. The study was obeyed; correct it or the export.", Accepted: "exporter checked by hand, report 12"},
 			{Code: "parts-not-accounted", Severity: energy.Warning, Cells: 4, Message: "Surface cells that are no faces of solid cells are in no account. Give them an account of their own, or state their energy under [[elsewhere]]."},
 			{Code: "ghost-cells", Severity: energy.Note, Cells: 8, Message: "Cells marked as duplicates were left out."},
-			{Code: "study-contradicted", Severity: energy.Error, Cells: energy.None, Message: "The study says engineering shear, the numbers say tensor. The study was obeyed; correct it or the export.", Accepted: "exporter checked by hand, report 12"},
-			{Code: "hooke-mismatch", Severity: energy.Error, Cells: 14, Message: "Stress and strain of these cells do not belong together by Hooke's law. Look whether both are of the same state."},
+			{Code: "one-value-per-cell", Severity: energy.Note, Cells: energy.None, Message: "Each cell has one value: its energy is a lower estimate of what the solution held. Refine, or export values at integration points."},
 		},
 		Requirements: []energy.RequirementResult{
 			{Name: "corner stores little", Quantity: "energy", Region: "corner", AtMost: 120, AtLeast: energy.None, Value: 102.2267979, Met: true},
 			{Name: "nothing past the limit", Quantity: "cells_past_limit", AtMost: 0, AtLeast: energy.None, Value: 6},
 			{Name: "stiff enough", Quantity: "energy", AtMost: 201.1642, AtLeast: energy.None, Value: 201.16420518},
-			{Name: "mesh is fine enough", Quantity: "error_estimate", AtMost: 0.05, AtLeast: energy.None, Value: energy.None, Why: "the study asks for no error estimate"},
+			{Name: "mesh is fine enough", Quantity: "error_estimate", AtMost: 0.05, AtLeast: energy.None, Value: energy.None, Why: "error_estimate of the whole model is not available"},
 		},
 		Caution:      energy.Caution,
 		Run:          energy.Run{Version: "v0.1.0", Started: "2026-01-02T03:04:05Z", Seconds: 0.25, Workers: 2},
@@ -170,7 +170,7 @@ func unlimited() *energy.Ledger {
 	ledger := bracket()
 	ledger.Title, ledger.Study, ledger.Repeated = "", nil, nil
 	ledger.Units = energy.UnitLabels{}
-	ledger.Model = energy.ModelSummary{Idealisation: "plane-strain", Thickness: 1.0, Points: "deformed", EnergyFrom: "stress", Criterion: "tresca"}
+	ledger.Model = energy.ModelSummary{Idealisation: "plane-strain", Thickness: energy.Number(1), Points: "deformed", EnergyFrom: "stress", Criterion: "tresca"}
 	ledger.Fields = energy.FieldsUsed{
 		Stress: &energy.FieldUsed{
 			Array: "sx sy txy", On: "point", Order: "xx yy xy", Sign: "compression", DecidedBy: "default",

@@ -67,24 +67,17 @@ func idealisationWords(model *energy.ModelSummary, units *energy.UnitLabels) str
 	switch thickness := model.Thickness.(type) {
 	case string:
 		words += ", thickness by cell array " + quoted(thickness)
-	case float64:
-		words += thicknessWords(energy.Number(thickness), units)
 	case energy.Number:
-		words += thicknessWords(thickness, units)
+		words += ", thickness " + withUnit(plain(thickness), inLength, units)
+		if thickness == 1 {
+			words += " (numbers are per unit thickness)"
+		}
 	}
 	if model.Axis != "" {
 		words += ", about the axis " + string(model.Axis)
 	}
 	if model.Points != "" {
 		words += "; points in their " + model.Points + " position"
-	}
-	return words
-}
-
-func thicknessWords(thickness energy.Number, units *energy.UnitLabels) string {
-	words := ", thickness " + withUnit(plain(thickness), inLength, units)
-	if thickness == 1 {
-		words += " (numbers are per unit thickness)"
 	}
 	return words
 }
@@ -115,7 +108,7 @@ func unitWords(units *energy.UnitLabels) string {
 		if label.text == "" {
 			unnamed = append(unnamed, label.of)
 		} else {
-			named = append(named, label.of+" "+string(label.text))
+			named = append(named, label.of+" "+unitSigns.Replace(string(label.text)))
 		}
 	}
 	switch {

@@ -14,7 +14,7 @@ func TestIdealisationWords(t *testing.T) {
 		want  string
 	}{
 		{energy.ModelSummary{Idealisation: "solid", Points: "reference"}, "solid; points in their reference position"},
-		{energy.ModelSummary{Idealisation: "plane-stress", Thickness: 8.0}, "plane stress, thickness 8 mm"},
+		{energy.ModelSummary{Idealisation: "plane-stress", Thickness: energy.Number(8)}, "plane stress, thickness 8 mm"},
 		{energy.ModelSummary{Idealisation: "plane-stress", Thickness: "t"}, `plane stress, thickness by cell array "t"`},
 		{energy.ModelSummary{Idealisation: "plane-strain", Thickness: energy.Number(1)}, "plane strain, thickness 1 mm (numbers are per unit thickness)"},
 		{energy.ModelSummary{Idealisation: "axisymmetric", Axis: "y", Points: "deformed"}, "axisymmetric, about the axis y; points in their deformed position"},
@@ -77,9 +77,13 @@ func TestUnitWords(t *testing.T) {
 		want  string
 	}{
 		{energy.UnitLabels{}, "not stated: all numbers are in the consistent units of the files"},
+		{
+			energy.UnitLabels{Length: "in", Stress: "psi", Energy: "lbf*in", EnergyDensity: "lbf*in/in^3"},
+			"length in, stress psi, energy lbf·in, energy density lbf·in/in³; not stated: mass",
+		},
 		{energy.UnitLabels{Length: "mm"}, "length mm; not stated: stress, energy, energy density, mass"},
 		{
-			energy.UnitLabels{Length: "m", Stress: "Pa", Energy: "J", EnergyDensity: "J/m³", Mass: "kg"},
+			energy.UnitLabels{Length: "m", Stress: "Pa", Energy: "J", EnergyDensity: "J/m^3", Mass: "kg"},
 			"length m, stress Pa, energy J, energy density J/m³, mass kg",
 		},
 	} {

@@ -109,6 +109,9 @@ func quantityOf(key string) quantity {
 	return quantity{key: key, name: key, kind: inRatios}
 }
 
+// unitSigns turns a unit's label, which is plain ASCII, into what people write.
+var unitSigns = strings.NewReplacer("^2", "²", "^3", "³", "*", "·", "uJ", "µJ")
+
 // unitNotStated stands where the study names no unit.
 const unitNotStated = "not stated"
 
@@ -125,9 +128,9 @@ func (k unitKind) unit(units *energy.UnitLabels) string {
 	case inLength:
 		return stated(units.Length)
 	case inArea:
-		return power(units.Length, "²")
+		return power(units.Length, "^2")
 	case inVolume:
-		return power(units.Length, "³")
+		return power(units.Length, "^3")
 	case inMass:
 		return stated(units.Mass)
 	case inEnergy:
@@ -165,6 +168,6 @@ func withUnit(text string, kind unitKind, units *energy.UnitLabels) string {
 	case "", "1", unitNotStated:
 		return text
 	default:
-		return text + " " + unit
+		return text + " " + unitSigns.Replace(unit)
 	}
 }

@@ -45,7 +45,7 @@ type column struct {
 // numbers returns the column for the numbers of a ledger key, headed as people know it.
 func numbers(key string, units *energy.UnitLabels) column {
 	quantity := quantityOf(key)
-	unit := quantity.kind.unit(units)
+	unit := unitSigns.Replace(quantity.kind.unit(units))
 	switch quantity.kind {
 	case inShares:
 		unit = "%"

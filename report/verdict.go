@@ -135,7 +135,7 @@ func limitWords(ledger *energy.Ledger) []string {
 	return words
 }
 
-// findingsSection lists the findings, the gravest first.
+// findingsSection lists the findings in the ledger's order, the gravest first.
 func findingsSection(findings []energy.Finding, units *energy.UnitLabels) section {
 	if len(findings) == 0 {
 		return sentenceSection("Findings", "None.")
@@ -146,22 +146,17 @@ func findingsSection(findings []energy.Finding, units *energy.UnitLabels) sectio
 		numbers("cells", units),
 		{kind: prose, heading: "what it means"},
 	}}
-	for _, severity := range []string{energy.Error, energy.Warning, energy.Note} {
-		for _, finding := range findings {
-			if finding.Severity != severity {
-				continue
-			}
-			message := finding.Message
-			if finding.Accepted != "" {
-				message += " Accepted: " + string(finding.Accepted)
-			}
-			cells := ""
-			if finding.Cells.Exists() {
-				cells = grouped(finding.Cells)
-			}
-			t.add(severity, finding.Code, cells, message)
-			t.mark(0, findingTone(&finding))
+	for _, finding := range findings {
+		message := finding.Message
+		if finding.Accepted != "" {
+			message += " Accepted: " + string(finding.Accepted)
 		}
+		cells := ""
+		if finding.Cells.Exists() {
+			cells = grouped(finding.Cells)
+		}
+		t.add(finding.Severity, finding.Code, cells, message)
+		t.mark(0, findingTone(&finding))
 	}
 	t.dropIdle()
 	return newSection("Findings", t)
@@ -187,6 +182,7 @@ func requirementsSection(ledger *energy.Ledger) section {
 	t := &table{columns: []column{
 		{kind: word, heading: "outcome"},
 		{kind: name, heading: "requirement"},
+		{kind: name, heading: "quantity"},
 		{kind: prose, heading: "value and bound"},
 	}}
 	for i := range ledger.Requirements {
@@ -195,35 +191,39 @@ func requirementsSection(ledger *energy.Ledger) section {
 		if requirement.Met {
 			outcome, tone = "met", plainTone
 		}
-		t.add(outcome, requirement.Name, requirementSentence(requirement, &ledger.Units))
+		t.add(outcome, requirement.Name, requirementSubject(requirement), requirementBasis(requirement, &ledger.Units))
 		t.mark(0, tone)
 	}
 	return newSection("Requirements", t)
 }
 
-// requirementSentence returns value and bound: "energy of web is 98.123 mJ, at most 120 mJ
-// required". A value that differs from its bound only beyond the usual digits is given in
-// full.
-func requirementSentence(requirement *energy.RequirementResult, units *energy.UnitLabels) string {
+// requirementSubject names what is judged: "energy of web".
+func requirementSubject(requirement *energy.RequirementResult) string {
+	return requirement.Quantity + " of " + regionName(requirement.Region)
+}
+
+// requirementBasis returns value and bound: "98.123 mJ, at most 120 mJ". A value
+// that differs from its bound only beyond the usual digits is given in full.
+func requirementBasis(requirement *energy.RequirementResult, units *energy.UnitLabels) string {
 	kind := quantityOf(requirement.Quantity).kind
-	subject := requirement.Quantity + " of " + regionName(requirement.Region)
-	value := "not available"
-	if requirement.Value.Exists() {
-		value = withUnit(requirementValue(requirement, kind), kind, units)
+	var parts []string
+	switch {
+	case requirement.Value.Exists():
+		parts = append(parts, withUnit(requirementValue(requirement, kind), kind, units))
+	case requirement.Why == "":
+		parts = append(parts, "not available")
 	}
-	words := subject + " is " + value
-	for _, bound := range []struct {
-		words string
-		value energy.Number
-	}{{"at most", requirement.AtMost}, {"at least", requirement.AtLeast}} {
-		if bound.value.Exists() {
-			words += ", " + bound.words + " " + withUnit(plain(bound.value), kind, units) + " required"
-		}
+	if requirement.AtMost.Exists() {
+		parts = append(parts, "at most "+withUnit(plain(requirement.AtMost), kind, units))
 	}
-	if requirement.Why != "" {
-		words += ": " + string(requirement.Why)
+	if requirement.AtLeast.Exists() {
+		parts = append(parts, "at least "+withUnit(plain(requirement.AtLeast), kind, units))
 	}
-	return words
+	basis := strings.Join(parts, ", ")
+	if requirement.Why == "" {
+		return basis
+	}
+	return strings.TrimPrefix(basis+": ", ": ") + string(requirement.Why)
 }
 
 // requirementValue prints the value as the bound is stated: shares as parts of 1.

@@ -120,41 +120,53 @@ func TestLimitsAreGivenWithTheirSource(t *testing.T) {
 
 func TestRequirementSentences(t *testing.T) {
 	none := energy.None
-	units := &energy.UnitLabels{Length: "mm", Stress: "MPa", Energy: "mJ", EnergyDensity: "mJ/mm³"}
+	units := &energy.UnitLabels{Length: "mm", Stress: "MPa", Energy: "mJ", EnergyDensity: "mJ/mm^3"}
 	for _, test := range []struct {
 		requirement energy.RequirementResult
 		want        string
 	}{
 		{
 			energy.RequirementResult{Quantity: "energy", Region: "web", AtMost: 120, AtLeast: none, Value: 98.12345},
-			"energy of web is 98.123 mJ, at most 120 mJ required",
+			"energy of web: 98.123 mJ, at most 120 mJ",
 		},
 		{
 			energy.RequirementResult{Quantity: "max_utilisation", AtMost: 1, AtLeast: 0.5, Value: 1.0000001},
-			"max_utilisation of the whole model is 1.0000001, at most 1 required, at least 0.5 required",
+			"max_utilisation of the whole model: 1.0000001, at most 1, at least 0.5",
 		},
 		{
 			energy.RequirementResult{Quantity: "energy_share", Region: "web", AtMost: 0.3, AtLeast: none, Value: 0.3},
-			"energy_share of web is 0.30000, at most 0.3 required",
+			"energy_share of web: 0.30000, at most 0.3",
 		},
 		{
 			energy.RequirementResult{Quantity: "cells_past_limit", AtMost: 0, AtLeast: none, Value: 1234567},
-			"cells_past_limit of the whole model is 1234567, at most 0 required",
+			"cells_past_limit of the whole model: 1234567, at most 0",
 		},
 		{
 			energy.RequirementResult{Quantity: "hotspot.1.density", AtMost: none, AtLeast: 0.1, Value: 0.25},
-			"hotspot.1.density of the whole model is 0.25000 mJ/mm³, at least 0.1 mJ/mm³ required",
+			"hotspot.1.density of the whole model: 0.25000 mJ/mm³, at least 0.1 mJ/mm³",
 		},
 		{
 			energy.RequirementResult{Quantity: "balance.gap", AtMost: 0.02, AtLeast: none, Value: none, Why: "no external work"},
-			"balance.gap of the whole model is not available, at most 0.02 required: no external work",
+			"balance.gap of the whole model: at most 0.02: no external work",
 		},
 		{
 			energy.RequirementResult{Quantity: "something_new", AtMost: 1e-9, AtLeast: none, Value: 2.5},
-			"something_new of the whole model is 2.5000, at most 1e-9 required",
+			"something_new of the whole model: 2.5000, at most 1e-9",
+		},
+		{
+			energy.RequirementResult{Quantity: "mass", AtMost: none, AtLeast: none, Value: none, Why: "no density"},
+			"mass of the whole model: no density",
+		},
+		{
+			energy.RequirementResult{Quantity: "mass", AtMost: 1, AtLeast: none, Value: none},
+			"mass of the whole model: not available, at most 1",
+		},
+		{
+			energy.RequirementResult{Quantity: "max_utilisation", AtMost: 1, AtLeast: none, Value: 0.5, Why: "3 cells have plastic strain"},
+			"max_utilisation of the whole model: 0.50000, at most 1: 3 cells have plastic strain",
 		},
 	} {
-		if got := requirementSentence(&test.requirement, units); got != test.want {
+		if got := requirementSubject(&test.requirement) + ": " + requirementBasis(&test.requirement, units); got != test.want {
 			t.Errorf("got  %s\nwant %s", got, test.want)
 		}
 	}
