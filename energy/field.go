@@ -13,25 +13,57 @@ type tensorInput struct {
 	on      mesh.Location // 0: the field is not there
 	layout  mesh.Layout
 	columns []int // positions in Chunk.Values or Chunk.PointValues; several hold one component each
+
+	order   mesh.Order
+	orderBy decider
+	shear   mesh.Shear
+	shearBy decider
 }
+
+// A decider is who settled how an array is read.
+type decider string
+
+// The deciders, as the ledger names them.
+const (
+	byStudy   decider = "study"
+	byAudit   decider = "audit" // from the numbers
+	byFile    decider = "file"  // the array's own component names
+	byDefault decider = "default"
+)
 
 func (in *tensorInput) exists() bool { return in.on != 0 }
 
 // at returns the tensor of a cell, or of a node where the field is on points.
 func (in *tensorInput) at(chunk *mesh.Chunk, cell int, node int32) mesh.SymmetricTensor {
-	values, index := chunk.Values, cell
-	if in.on == mesh.OnPoint {
-		values, index = chunk.PointValues, int(node)
+	if len(in.columns) > 1 {
+		tuple := in.stored(chunk, cell, node)
+		return in.layout.At(tuple[:])
 	}
+	values, index := in.values(chunk, cell, node)
+	n := in.layout.Components
+	return in.layout.At(values[in.columns[0]][index*n : index*n+n])
+}
+
+// values returns where the field's numbers are and the index of a place in them.
+func (in *tensorInput) values(chunk *mesh.Chunk, cell int, node int32) ([][]float64, int) {
+	if in.on == mesh.OnPoint {
+		return chunk.PointValues, int(node)
+	}
+	return chunk.Values, cell
+}
+
+// stored returns the numbers of a place as the file has them.
+func (in *tensorInput) stored(chunk *mesh.Chunk, cell int, node int32) (tuple [9]float64) {
+	values, index := in.values(chunk, cell, node)
 	if len(in.columns) == 1 {
 		n := in.layout.Components
-		return in.layout.At(values[in.columns[0]][index*n : index*n+n])
+		copy(tuple[:], values[in.columns[0]][index*n:index*n+n])
+		return tuple
 	}
-	var tuple [9]float64
 	for i, column := range in.columns {
 		tuple[i] = values[column][index]
 	}
-	return in.layout.At(tuple[:len(in.columns)])
+	return tuple
 }
 
 // A scalarInput reads one field of single numbers from a chunk.
@@ -55,10 +87,12 @@ type inputs struct {
 	stress, strain, thermalStrain, plasticStrain tensorInput
 	equivalentPlasticStrain, temperature         scalarInput
 	thickness                                    scalarInput
-	displacement                                 vectorInput // where the energy comes from it
+	displacement                                 vectorInput // read where the energy comes from it
 	elementID                                    int         // column of Chunk.Labels, or -1
 
 	strainIsElastic bool
+	kindBy          decider // byFile: the strain's name tells
+	rolesBy         decider // byDefault: the names do not tell stress from strain
 	used            FieldsUsed
 	want            mesh.Want
 }
@@ -278,7 +312,7 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 		if field.On == 0 {
 			f.noteSeveralLocations(key, array)
 		}
-		return array, "named in the study", nil
+		return array, "the study names it", nil
 	}
 	if field.On != 0 {
 		on = field.On
@@ -390,17 +424,20 @@ func (f *fieldFinder) locationOf(fits func(int) bool, roles ...role) mesh.Locati
 	return mesh.OnCell
 }
 
-// decideKind settles whether the strain is the total or the elastic one.
+// decideKind settles whether the strain is the total or the elastic one, as far as the
+// study and the array's name tell.
 func (f *fieldFinder) decideKind() {
-	used := f.in.used.Strain
-	if used == nil {
+	in := f.in
+	if in.used.Strain == nil {
 		return
 	}
-	f.in.strainIsElastic = f.options.Fields.Strain.Kind == "elastic" ||
-		f.options.Fields.Strain.Kind == "" && roleOf(used.Array) == elasticStrainRole
-	used.Kind = "total"
-	if f.in.strainIsElastic {
-		used.Kind = "elastic"
+	switch stated := f.options.Fields.Strain.Kind; {
+	case stated != "":
+		in.strainIsElastic, in.kindBy = stated == "elastic", byStudy
+	case roleOf(in.used.Strain.Array) == elasticStrainRole:
+		in.strainIsElastic, in.kindBy = true, byFile
+	default:
+		in.kindBy = byDefault
 	}
 }
 
@@ -416,7 +453,7 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 			return err
 		}
 	}
-	order, orderFrom, err := f.order(key, field, array, components)
+	order, orderBy, err := f.order(key, field, array, components)
 	if err != nil {
 		return err
 	}
@@ -437,7 +474,10 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 	if err != nil {
 		return inputError("[fields] %s: array %q: %w", key, array.Name, err)
 	}
-	*to = tensorInput{on: array.On, layout: layout}
+	*to = tensorInput{on: array.On, layout: layout, order: order, orderBy: orderBy, shear: shear, shearBy: byDefault}
+	if field.Shear != "" || key == "stress" {
+		to.shearBy = byStudy
+	}
 	names := []string{array.Name}
 	if len(field.Arrays) > 1 {
 		names = field.Arrays
@@ -445,66 +485,28 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 	for _, name := range names {
 		to.columns = append(to.columns, f.column(array.On, name))
 	}
-	record := &FieldUsed{
-		Array: strings.Join(names, " "), On: array.On.String(), Order: Text(order.String()), Sign: signName,
-		DecidedBy: "default", Why: why,
-	}
-	if key != "stress" || field.Shear != "" {
-		record.Shear = Text(shear.String())
-	}
-	f.recordDecision(record, key, field, orderFrom)
-	*used = record
+	*used = &FieldUsed{Array: strings.Join(names, " "), On: array.On.String(), Sign: signName, DecidedBy: string(byStudy), Why: why}
 	return nil
 }
 
-// recordDecision says who decided the order and the shear convention, and warns where
-// nobody did.
-func (f *fieldFinder) recordDecision(record *FieldUsed, key string, field *Field, orderFrom string) {
-	stated := field.Shear != "" || key == "stress"
-	switch {
-	case orderFrom == "study" && stated:
-		record.DecidedBy = "study"
-	case orderFrom == "file" && stated:
-		record.DecidedBy = "file"
-	}
-	record.Why += "; component order " + orderWords[orderFrom]
-	if key != "stress" {
-		if field.Shear != "" {
-			record.Why += ", shear as the study states"
-		} else {
-			record.Why += ", shear taken as tensor components"
-		}
-	}
-	if orderFrom == "default" {
-		f.findings.add("default-order", 0, "the component order of the %s is not stated; taken as %s: state [fields] %s = { order = ... } if it is another", plain(key), record.Order, key)
-	}
-	if !stated && record.Order != "xx yy zz" {
-		f.findings.add("shear-convention", 0, "the shear terms of the %s are not stated; taken as tensor components: state [fields] %s = { shear = \"engineering\" } if they are γ", plain(key), key)
-	}
-}
-
-var orderWords = map[string]string{
-	"study": "as the study states", "file": "from the array's component names", "default": "by default for its number of components",
-}
-
 // order returns the component order of an array and who decided it.
-func (f *fieldFinder) order(key string, field *Field, array *mesh.Array, components int) (mesh.Order, string, error) {
+func (f *fieldFinder) order(key string, field *Field, array *mesh.Array, components int) (mesh.Order, decider, error) {
 	if len(field.Order) > 0 {
 		if len(field.Order) != components {
 			return nil, "", inputError("[fields] %s: array %q has %d components, the order %q names %d", key, array.Name, components, field.Order, len(field.Order))
 		}
-		return field.Order, "study", nil
+		return field.Order, byStudy, nil
 	}
 	if len(array.ComponentNames) == components {
 		if order, err := mesh.ParseOrder(strings.Join(array.ComponentNames, " "), f.options.AxisX); err == nil && len(order) == components {
-			return order, "file", nil
+			return order, byFile, nil
 		}
 	}
 	order := mesh.DefaultOrder(components)
 	if order == nil {
 		return nil, "", inputError("[fields] %s: array %q has %d components, a tensor has 3, 4, 6 or 9; state its order", key, array.Name, components)
 	}
-	return order, "default", nil
+	return order, byDefault, nil
 }
 
 // componentArrays checks the arrays of a tensor that is stored component by component
@@ -533,16 +535,22 @@ func (f *fieldFinder) column(on mesh.Location, name string) int {
 	return wantColumn(&f.in.want.CellValues, name)
 }
 
+// neededComponents returns the places of a tensor that a file must have; the law
+// completes the others.
+func neededComponents(idealisation Idealisation) []int {
+	switch idealisation {
+	case Axisymmetric:
+		return []int{0, 1, 2, 3}
+	case Solid:
+		return []int{0, 1, 2, 3, 4, 5}
+	}
+	return []int{0, 1, 3}
+}
+
 // checkComponents refuses tensors that lack components which no law can complete.
 func (f *fieldFinder) checkComponents(source EnergySource) error {
 	in := f.in
-	needed := []int{0, 1, 3}
-	switch f.options.Idealisation {
-	case Axisymmetric:
-		needed = []int{0, 1, 2, 3}
-	case Solid:
-		needed = []int{0, 1, 2, 3, 4, 5}
-	}
+	needed := neededComponents(f.options.Idealisation)
 	names := []string{"xx", "yy", "zz", "xy", "yz", "xz"}
 	for _, field := range []struct {
 		key   string
@@ -607,6 +615,7 @@ func (f *fieldFinder) findDisplacement(source EnergySource) error {
 	if err != nil || array == nil {
 		return err
 	}
+	f.in.displacement = vectorInput{name: array.Name, components: array.Components}
 	f.in.used.Displacement = &FieldUsed{Array: array.Name, On: array.On.String(), DecidedBy: decidedBy(field), Why: why}
 	if source != FromDisplacement {
 		f.in.used.Displacement.Why += "; the energy does not use it"
@@ -615,7 +624,7 @@ func (f *fieldFinder) findDisplacement(source EnergySource) error {
 	if array.On != mesh.OnPoint || !isVector(array.Components) {
 		return inputError("[fields] displacement: array %s is no vector on points", describe(*array))
 	}
-	f.in.displacement = vectorInput{true, f.column(mesh.OnPoint, array.Name), array.Components}
+	f.in.displacement.column = f.column(mesh.OnPoint, array.Name)
 	return nil
 }
 
@@ -677,7 +686,7 @@ func (f *fieldFinder) scalar(key string, field *Field, on mesh.Location, to *sca
 // decidedBy tells a stated field from one that was found by its name.
 func decidedBy(field *Field) string {
 	if field.IsStated() {
-		return "study"
+		return string(byStudy)
 	}
-	return "default"
+	return string(byDefault)
 }

@@ -8,10 +8,12 @@ import (
 
 // A vectorInput reads a vector field on points: two or three components.
 type vectorInput struct {
-	isThere    bool
+	name       string // "": the field is not there
 	column     int
 	components int
 }
+
+func (in *vectorInput) exists() bool { return in.name != "" }
 
 // at returns the vector of a node; a third component that the file lacks is 0.
 func (in *vectorInput) at(chunk *mesh.Chunk, node int32) (v Vector) {
@@ -75,29 +77,37 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 func (w *worker) strainAt(rule *mesh.Tabulation, q int, values []float64) (strain mesh.SymmetricTensor) {
 	gradients := w.gradients[:w.cell.Shape.NodeCount]
 	w.cell.Gradients(rule, q, gradients)
-	var u Vector
-	for k := range gradients {
-		g, d := &gradients[k], &w.displacement[k]
+	strain = symmetricGradient(w.displacement[:len(gradients)], gradients)
+	if w.options.Idealisation == Axisymmetric {
+		radial := 0
+		if w.options.AxisX {
+			radial = 1
+		}
+		var u float64
+		for k, value := range values {
+			u += float64(value * w.displacement[k][radial])
+		}
+		strain[2] = u / w.cell.Place(rule, q)[radial]
+	}
+	for k, value := range values {
+		for c := range strain {
+			strain[c] -= float64(value * w.strain[k][c])
+		}
+	}
+	return strain
+}
+
+// symmetricGradient returns ½ (∇u + ∇uᵀ) from the displacement of a cell's nodes and the
+// gradients of its shape functions at one place.
+func symmetricGradient(displacement []Vector, gradients [][3]float64) (strain mesh.SymmetricTensor) {
+	for k := range displacement {
+		g, d := &gradients[k], &displacement[k]
 		strain[0] += float64(d[0] * g[0])
 		strain[1] += float64(d[1] * g[1])
 		strain[2] += float64(d[2] * g[2])
 		strain[3] += float64(0.5 * (float64(d[0]*g[1]) + float64(d[1]*g[0])))
 		strain[4] += float64(0.5 * (float64(d[1]*g[2]) + float64(d[2]*g[1])))
 		strain[5] += float64(0.5 * (float64(d[0]*g[2]) + float64(d[2]*g[0])))
-		u[0] += float64(values[k] * d[0])
-		u[1] += float64(values[k] * d[1])
-	}
-	if w.options.Idealisation == Axisymmetric {
-		radial := 0
-		if w.options.AxisX {
-			radial = 1
-		}
-		strain[2] = u[radial] / w.cell.Place(rule, q)[radial]
-	}
-	for k, value := range values {
-		for c := range strain {
-			strain[c] -= float64(value * w.strain[k][c])
-		}
 	}
 	return strain
 }

@@ -21,6 +21,8 @@ type plan struct {
 	hotspotCount int
 	listCount    int
 	bounds       mesh.Bounds
+	border       pointSet // points that regions share, where fields are on points
+	isUnknown    bool     // the energy cannot be told: inelastic strain and no law
 	findings     findings
 }
 
@@ -86,6 +88,9 @@ func newPlan(ctx context.Context, walk *mesh.Walk, model *mesh.Model, options *O
 		return nil, err
 	}
 	if err := p.checkRequirements(); err != nil {
+		return nil, err
+	}
+	if err := p.audit(ctx, walk); err != nil {
 		return nil, err
 	}
 	p.chooseLists()

@@ -208,6 +208,15 @@ var cellTypeRows = func() (rows [256]*cellTypeRow) {
 	return rows
 }()
 
+// Dimension returns the dimension of the cells of the type, -1 for a number that VTK
+// does not assign.
+func (t CellType) Dimension() int {
+	if row := cellTypeRows[t]; row != nil {
+		return row.dimension
+	}
+	return -1
+}
+
 func (t CellType) String() string {
 	if row := cellTypeRows[t]; row != nil {
 		return row.name
