@@ -111,25 +111,10 @@ func (p *plan) materials() []MaterialUsed {
 	list := []MaterialUsed{}
 	for i := range p.options.Materials {
 		m := &p.options.Materials[i]
-		law := "none"
-		isUsed := false
-		for j := range p.regions.regions {
-			if r := &p.regions.regions[j]; r.material == m {
-				isUsed = true
-				if r.law != nil {
-					law = "isotropic"
-				}
-			}
+		isUsed := slices.ContainsFunc(p.regions.regions, func(r region) bool { return r.material == m })
+		if isUsed {
+			list = append(list, m.used())
 		}
-		if !isUsed {
-			continue
-		}
-		list = append(list, MaterialUsed{
-			Name: m.Name, Law: law, YoungsModulus: Number(m.YoungsModulus), PoissonsRatio: Number(m.PoissonsRatio),
-			ProportionalLimit: Number(m.ProportionalLimit), ProportionalLimitCompression: Number(m.ProportionalLimitCompression),
-			Density: Number(m.Density), ThermalExpansion: Number(m.ThermalExpansion),
-			ReferenceTemperature: Number(m.ReferenceTemperature), Source: Text(m.Source),
-		})
 	}
 	return list
 }
@@ -161,7 +146,7 @@ func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 	var mass Sum
 	for i := range p.regions.regions {
 		r := &p.regions.regions[i]
-		account := p.layOut(&total.accounts[i], r.law != nil, !math.IsNaN(r.limit))
+		account := p.layOut(&total.accounts[i], r.law.IsIsotropic(), !math.IsNaN(r.limit))
 		account.VolumeWithoutLimit = 0
 		if math.IsNaN(r.limit) {
 			account.VolumeWithoutLimit = account.Volume
@@ -177,7 +162,7 @@ func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 			hasDensities = false
 		}
 		if total.accounts[i].cells > 0 {
-			hasLaws = hasLaws && r.law != nil
+			hasLaws = hasLaws && r.law.IsIsotropic()
 		}
 		ledger.Regions[i] = entry
 	}
@@ -215,9 +200,9 @@ func (p *plan) volumeWithoutLimit(total *part) Number {
 	return Number(volume.Float64())
 }
 
-// layOut turns one account into the ledger's form. Without a law there is no split,
-// without a limit no utilisation.
-func (p *plan) layOut(a *account, hasLaw, hasLimit bool) Account {
+// layOut turns one account into the ledger's form. Without an isotropic law there is no
+// split, without a limit no utilisation.
+func (p *plan) layOut(a *account, isIsotropic, hasLimit bool) Account {
 	account := Account{
 		Cells: a.cells, Volume: Number(a.volume.Float64()), Mass: None, Energy: Number(a.energy.Float64()), EnergyShare: None,
 		EnergyVolumetric: None, EnergyDistortional: None, MeanDensity: None,
@@ -234,7 +219,7 @@ func (p *plan) layOut(a *account, hasLaw, hasLimit bool) Account {
 	if account.Volume != 0 {
 		account.MeanDensity = account.Energy / account.Volume
 	}
-	if hasLaw {
+	if isIsotropic {
 		distortional := a.energy
 		distortional.Subtract(&a.volumetric)
 		account.EnergyVolumetric = Number(a.volumetric.Float64())

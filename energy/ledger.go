@@ -116,6 +116,14 @@ type MaterialUsed struct {
 	ThermalExpansion             Number `json:"thermal_expansion"`
 	ReferenceTemperature         Number `json:"reference_temperature"`
 	Source                       Text   `json:"source"`
+
+	// What an anisotropic law has instead of one modulus and one ratio.
+	YoungsModuli   *[3]float64    `json:"youngs_moduli"`
+	ShearModuli    *[3]float64    `json:"shear_moduli"`
+	PoissonsRatios *[3]float64    `json:"poissons_ratios"`
+	Stiffness      *[6][6]float64 `json:"stiffness"`
+	StiffnessOrder Text           `json:"stiffness_order"`
+	Axes           *[3]Vector     `json:"axes"`
 }
 
 // A Vector is a place or a direction in the model's axes: x, y, z.

@@ -111,10 +111,7 @@ func (r *region) setMaterial(rule *Region, options *Options) error {
 	}
 	r.material = &options.Materials[i]
 	r.limit = r.material.ProportionalLimit
-	if !Number(r.material.YoungsModulus).Exists() || !Number(r.material.PoissonsRatio).Exists() {
-		return nil
-	}
-	law, err := NewIsotropicLaw(r.material.YoungsModulus, r.material.PoissonsRatio)
+	law, err := r.material.Law()
 	if err != nil {
 		return studyError("material %q: %w", name, err)
 	}

@@ -203,6 +203,7 @@ func (r *reading) materials() {
 		material.Density = stated.numberOf(none, "density")
 		material.ThermalExpansion = stated.numberOf(none, "thermal_expansion")
 		material.ReferenceTemperature = stated.numberOf(none, "reference_temperature")
+		r.anisotropy(stated, &material)
 		r.to.Materials = append(r.to.Materials, material)
 	}
 }
