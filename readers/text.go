@@ -35,6 +35,10 @@ func newIndex(f *file, start, end int64, isWord bool) *index {
 	return &index{file: f, start: start, end: end, isWord: isWord, before: []int64{0}}
 }
 
+// most returns how many words the text has room for: each takes two characters with
+// the blank behind it.
+func (x *index) most() int64 { return (x.end - x.start + 1) / 2 }
+
 // page returns the page in which item n begins, and how many begin before the
 // page. Without such an item n, the total is returned and false.
 func (x *index) page(h *hand, scratch []byte, n int64) (page int64, before int64, found bool, err error) {

@@ -1,7 +1,6 @@
 package readers
 
 import (
-	"bytes"
 	"math"
 	"strconv"
 	"strings"
@@ -412,12 +411,9 @@ func (x *xmlFile) isSelected(e *element) bool {
 // one name once.
 func (x *xmlFile) columns(e *element, on mesh.Location, tuples int64) ([]*column, error) {
 	var columns []*column
-	if e == nil {
-		return nil, nil
-	}
 	seen := map[string]bool{}
-	for i, child := range e.children {
-		if !isArray(child) || !x.isSelected(child) {
+	for i, child := range e.arrays() {
+		if !x.isSelected(child) {
 			continue
 		}
 		a, err := x.column(child, on)
@@ -437,11 +433,4 @@ func (x *xmlFile) columns(e *element, on mesh.Location, tuples int64) ([]*column
 		columns = append(columns, a)
 	}
 	return columns, nil
-}
-
-// looksXML reports whether a file begins as XML does.
-func looksXML(head []byte) bool {
-	head = bytes.TrimPrefix(head, []byte("\xef\xbb\xbf"))
-	head = bytes.TrimLeft(head, " \t\r\n")
-	return len(head) > 0 && head[0] == '<'
 }
