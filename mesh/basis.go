@@ -2,11 +2,6 @@ package mesh
 
 import "strings"
 
-// MaxDegree is the highest degree of Lagrange and Bézier cells that is computed, in
-// each direction. Its product rule on a hexahedron has 15 × 15 × 15 points, and a table
-// of 37 MB.
-const MaxDegree = 6
-
 // A factor is the kind of polynomial in one barycentric coordinate b of which products
 // make shape functions.
 type factor uint8

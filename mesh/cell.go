@@ -2,8 +2,9 @@ package mesh
 
 import "math"
 
-// A Cell is a view of one cell of a chunk. Its methods allocate nothing and do their
-// arithmetic always in the same order.
+// A Cell is a view of one cell of a chunk, for one worker. Its methods allocate nothing,
+// but for working memory that polyhedra leave in it, and do their arithmetic always in
+// the same order.
 type Cell struct {
 	Shape *Shape
 	// Points holds x y z of each point of the piece, Nodes the positions of the
@@ -16,6 +17,8 @@ type Cell struct {
 	// RationalWeights has one number for each point of the piece, or is nil. Only
 	// Bézier cells look at it.
 	RationalWeights []float64
+
+	scratch polyhedronFaces
 }
 
 // An Orientation tells what the Jacobian determinants at a cell's corners have in
@@ -125,8 +128,8 @@ func (c *Cell) jacobianDeterminant(t *Tabulation, point int) float64 {
 	return determinant(xr, yr, zr, xs, ys, zs, xt, yt, zt)
 }
 
-// stretch returns the length or area in space per parametric length or area; for a
-// solid the size of the Jacobian determinant.
+// stretch returns the length or area in space per parametric length or area, for a
+// solid the Jacobian determinant.
 func (c *Cell) stretch(t *Tabulation, point int) float64 {
 	xr, yr, zr, xs, ys, zs, xt, yt, zt := c.jacobian(t, point)
 	switch c.Shape.Dimension {
@@ -145,6 +148,19 @@ func length(x, y, z float64) float64 {
 // cornerOrientation judges the Jacobian determinants at the corners. The apex of a
 // pyramid, where it vanishes, is not among them.
 func (c *Cell) cornerOrientation() Orientation {
+	if !c.IsRational() {
+		switch c.Shape.form {
+		case wedgeForm:
+			return c.wedgeOrientation()
+		case pyramidForm:
+			return c.pyramidOrientation()
+		}
+	}
+	return c.tabulatedOrientation()
+}
+
+// tabulatedOrientation judges the corners of a cell of any shape that interpolates.
+func (c *Cell) tabulatedOrientation() Orientation {
 	t := c.Shape.atCorners()
 	least, greatest := math.Inf(1), math.Inf(-1)
 	for i := range t.Points {

@@ -1,6 +1,10 @@
 package mesh
 
-import "fmt"
+import (
+	"fmt"
+	"math"
+	"strings"
+)
 
 // A CellType is VTK's number of a cell type.
 type CellType uint8
@@ -64,87 +68,142 @@ const (
 type family uint8
 
 const (
-	loosePoints family = iota + 1 // points, without measure
-	chain                         // lines in a row
-	strip                         // triangles in a row
-	fan                           // plane polygon: triangles about a point
-	middles                       // corners and the middles of edges, faces and the cell
-	lagrange                      // nodes on a lattice of any degree
-	bezier                        // control points on a lattice of any degree
-	prism                         // two polygons joined by quadrilaterals
-	polyhedron                    // bounded by polygons that the file lists
-	unsupported                   // recognised, but without functions and measure
+	middles     family = iota // corners and the middles of edges, faces and the cell
+	lagrange                  // nodes on a lattice of any degree
+	bezier                    // control points on a lattice of any degree
+	loosePoints               // points, without measure
+	chain                     // lines in a row
+	strip                     // triangles in a row
+	fan                       // plane polygon: triangles about its middle
+	prism                     // two polygons joined by quadrilaterals
+	polyhedral                // bounded by polygons that the file lists
+	unsupported               // recognised, but without functions and measure
 )
 
 // A cellTypeRow says what a cell type is.
 type cellTypeRow struct {
-	number    CellType
-	name      string
-	dimension int
-	family    family
-	unit      *unitCell // nil where the family has no unit cell
+	number CellType
+	name   string
+	family family
+	unit   *unitCell // of the families with shape functions
 	// middles lists the nodes after the corners, each by the corners in whose middle
 	// it lies. For Lagrange cells it is their one variant that is no lattice.
 	middles string
-	// least is the smallest node count of a family whose cells have any, the node
-	// count of a family whose cells have one.
-	least int
+	variant int // the number of corners and middles; not written in the table
+
+	dimension   int    // that of the unit cell is not written in the table
+	least, most int    // node count; that of corners and middles is not written
+	reason      string // why the type is unsupported
 }
 
+// many is the largest node count of cells that may have any.
+const many = math.MaxInt32
+
+// Lists of middles.
 const (
-	lineMiddle       = "01"
-	triangleMiddles  = "01 12 20"
-	quadMiddles      = "01 12 23 30"
-	tetraMiddles     = "01 12 20 03 13 23"
-	hexaMiddles      = "01 12 23 30 45 56 67 74 04 15 26 37"
-	hexaSideMiddles  = hexaMiddles + " 0347 1256 0145 2367"
-	wedgeEndMiddles  = "01 12 20 34 45 53"
-	wedgeMiddles     = wedgeEndMiddles + " 03 14 25"
-	wedgeSideMiddles = " 0134 1245 0235"
-	pyramidMiddles   = "01 12 23 30 04 14 24 34"
+	triangleMiddles = "01 12 20"
+	quadMiddles     = "01 12 23 30"
+	tetraMiddles    = "01 12 20 03 13 23"
+	hexaMiddles     = "01 12 23 30 45 56 67 74 04 15 26 37"
+	wedgeMiddles    = "01 12 20 34 45 53 03 14 25"
+	pyramidMiddles  = "01 12 23 30 04 14 24 34"
+	hexaSides       = " 0347 1256 0145 2367"
+	wedgeSides      = " 0134 1245 0235"
 )
 
-// cellTypes is everything the program knows about cell types.
+// Reasons not to compute a cell.
+const (
+	noHull     = "the hull of its points is not computed"
+	noClass    = "VTK reserves the number and defines no such cell"
+	notInFiles = "VTK defines no nodes for it in files"
+)
+
+// cellTypes is what the program knows about cell types.
 //
-// Source: VTK file formats and VTK's cell classes (vtkCellType.h).
+// Source: VTK's list of cell types (vtkCellType.h) and the documentation of its cell
+// classes, release 9.1.
 var cellTypes = [...]cellTypeRow{
-	{EmptyCell, "empty cell", 0, loosePoints, nil, "", 0},
-	{Vertex, "vertex", 0, loosePoints, nil, "", 1},
-	{PolyVertex, "poly-vertex", 0, loosePoints, nil, "", 1},
-	{Line, "line", 1, middles, &line, "", 0},
-	{PolyLine, "poly-line", 1, chain, nil, "", 2},
-	{Triangle, "triangle", 2, middles, &triangle, "", 0},
-	{TriangleStrip, "triangle strip", 2, strip, nil, "", 3},
-	{Polygon, "polygon", 2, fan, nil, "", 3},
-	{Pixel, "pixel", 2, middles, &pixel, "", 0},
-	{Quad, "quadrilateral", 2, middles, &quad, "", 0},
-	{Tetrahedron, "tetrahedron", 3, middles, &tetrahedron, "", 0},
-	{Voxel, "voxel", 3, middles, &voxel, "", 0},
-	{Hexahedron, "hexahedron", 3, middles, &hexahedron, "", 0},
-	{Wedge, "wedge", 3, middles, &wedge, "", 0},
-	{Pyramid, "pyramid", 3, middles, &pyramid, "", 0},
-	{PentagonalPrism, "pentagonal prism", 3, prism, nil, "", 10},
-	{HexagonalPrism, "hexagonal prism", 3, prism, nil, "", 12},
-	{QuadraticLine, "quadratic line", 1, middles, &line, lineMiddle, 0},
-	{QuadraticTriangle, "quadratic triangle", 2, middles, &triangle, triangleMiddles, 0},
-	{QuadraticQuad, "quadratic quadrilateral", 2, middles, &quad, quadMiddles, 0},
-	{QuadraticTetrahedron, "quadratic tetrahedron", 3, middles, &tetrahedron, tetraMiddles, 0},
-	{QuadraticHexahedron, "quadratic hexahedron", 3, middles, &hexahedron, hexaMiddles, 0},
-	{QuadraticWedge, "quadratic wedge", 3, middles, &wedge, wedgeMiddles, 0},
-	{QuadraticPyramid, "quadratic pyramid", 3, middles, &pyramid, pyramidMiddles, 0},
-	{BiquadraticQuad, "biquadratic quadrilateral", 2, middles, &quad, quadMiddles + " 0123", 0},
-	{TriquadraticHexahedron, "triquadratic hexahedron", 3, middles, &hexahedron, hexaSideMiddles + " 0123 4567 01234567", 0},
-	{QuadraticLinearQuad, "quadratic-linear quadrilateral", 2, middles, &quad, "01 23", 0},
-	{QuadraticLinearWedge, "quadratic-linear wedge", 3, middles, &wedge, wedgeEndMiddles, 0},
-	{BiquadraticWedge, "biquadratic-quadratic wedge", 3, middles, &wedge, wedgeMiddles + wedgeSideMiddles, 0},
-	{BiquadraticHexahedron, "biquadratic-quadratic hexahedron", 3, middles, &hexahedron, hexaSideMiddles, 0},
-	{BiquadraticTriangle, "biquadratic triangle", 2, middles, &triangle, triangleMiddles + " 012", 0},
+	{number: EmptyCell, name: "empty cell", family: loosePoints},
+	{number: Vertex, name: "vertex", family: loosePoints, least: 1, most: 1},
+	{number: PolyVertex, name: "poly-vertex", family: loosePoints, least: 1, most: many},
+	{number: Line, name: "line", unit: &line},
+	{number: PolyLine, name: "poly-line", family: chain, dimension: 1, least: 2, most: many},
+	{number: Triangle, name: "triangle", unit: &triangle},
+	{number: TriangleStrip, name: "triangle strip", family: strip, dimension: 2, least: 3, most: many},
+	{number: Polygon, name: "polygon", family: fan, dimension: 2, least: 3, most: many},
+	{number: Pixel, name: "pixel", unit: &pixel},
+	{number: Quad, name: "quadrilateral", unit: &quad},
+	{number: Tetrahedron, name: "tetrahedron", unit: &tetrahedron},
+	{number: Voxel, name: "voxel", unit: &voxel},
+	{number: Hexahedron, name: "hexahedron", unit: &hexahedron},
+	{number: Wedge, name: "wedge", unit: &wedge},
+	{number: Pyramid, name: "pyramid", unit: &pyramid},
+	{number: PentagonalPrism, name: "pentagonal prism", family: prism, dimension: 3, least: 10, most: 10},
+	{number: HexagonalPrism, name: "hexagonal prism", family: prism, dimension: 3, least: 12, most: 12},
+	{number: QuadraticLine, name: "quadratic line", unit: &line, middles: "01"},
+	{number: QuadraticTriangle, name: "quadratic triangle", unit: &triangle, middles: triangleMiddles},
+	{number: QuadraticQuad, name: "quadratic quadrilateral", unit: &quad, middles: quadMiddles},
+	{number: QuadraticTetrahedron, name: "quadratic tetrahedron", unit: &tetrahedron, middles: tetraMiddles},
+	{number: QuadraticHexahedron, name: "quadratic hexahedron", unit: &hexahedron, middles: hexaMiddles},
+	{number: QuadraticWedge, name: "quadratic wedge", unit: &wedge, middles: wedgeMiddles},
+	{number: QuadraticPyramid, name: "quadratic pyramid", unit: &pyramid, middles: pyramidMiddles},
+	{number: BiquadraticQuad, name: "biquadratic quadrilateral", unit: &quad, middles: quadMiddles + " 0123"},
+	{number: TriquadraticHexahedron, name: "triquadratic hexahedron", unit: &hexahedron, middles: hexaMiddles + hexaSides + " 0123 4567 01234567"},
+	{number: QuadraticLinearQuad, name: "quadratic-linear quadrilateral", unit: &quad, middles: "01 23"},
+	{number: QuadraticLinearWedge, name: "quadratic-linear wedge", unit: &wedge, middles: "01 12 20 34 45 53"},
+	{number: BiquadraticWedge, name: "biquadratic-quadratic wedge", unit: &wedge, middles: wedgeMiddles + wedgeSides},
+	{number: BiquadraticHexahedron, name: "biquadratic-quadratic hexahedron", unit: &hexahedron, middles: hexaMiddles + hexaSides},
+	{number: BiquadraticTriangle, name: "biquadratic triangle", unit: &triangle, middles: triangleMiddles + " 012"},
+	{number: CubicLine, name: "cubic line", family: lagrange, unit: &line, least: 4, most: 4},
+	{number: QuadraticPolygon, name: "quadratic polygon", family: fan, dimension: 2, least: 6, most: many},
+	{number: TriquadraticPyramid, name: "triquadratic pyramid", unit: &pyramid, middles: pyramidMiddles + " 0123 014 124 234 034 01234"},
+	{number: ConvexPointSet, name: "convex point set", family: unsupported, dimension: 3, most: many, reason: noHull},
+	{number: Polyhedron, name: "polyhedron", family: polyhedral, dimension: 3, least: 4, most: many},
+	{number: 51, name: "parametric curve", family: unsupported, dimension: 1, most: many, reason: notInFiles},
+	{number: 52, name: "parametric surface", family: unsupported, dimension: 2, most: many, reason: notInFiles},
+	{number: 53, name: "parametric triangular surface", family: unsupported, dimension: 2, most: many, reason: notInFiles},
+	{number: 54, name: "parametric quadrilateral surface", family: unsupported, dimension: 2, most: many, reason: notInFiles},
+	{number: 55, name: "parametric tetrahedral region", family: unsupported, dimension: 3, most: many, reason: notInFiles},
+	{number: 56, name: "parametric hexahedral region", family: unsupported, dimension: 3, most: many, reason: notInFiles},
+	{number: 60, name: "higher-order edge", family: unsupported, dimension: 1, most: many, reason: notInFiles},
+	{number: 61, name: "higher-order triangle", family: unsupported, dimension: 2, most: many, reason: notInFiles},
+	{number: 62, name: "higher-order quadrilateral", family: unsupported, dimension: 2, most: many, reason: notInFiles},
+	{number: 63, name: "higher-order polygon", family: unsupported, dimension: 2, most: many, reason: notInFiles},
+	{number: 64, name: "higher-order tetrahedron", family: unsupported, dimension: 3, most: many, reason: notInFiles},
+	{number: 65, name: "higher-order wedge", family: unsupported, dimension: 3, most: many, reason: notInFiles},
+	{number: 66, name: "higher-order pyramid", family: unsupported, dimension: 3, most: many, reason: notInFiles},
+	{number: 67, name: "higher-order hexahedron", family: unsupported, dimension: 3, most: many, reason: notInFiles},
+	{number: LagrangeCurve, name: "Lagrange curve", family: lagrange, unit: &line, most: many},
+	{number: LagrangeTriangle, name: "Lagrange triangle", family: lagrange, unit: &triangle, middles: triangleMiddles + " 012", most: many},
+	{number: LagrangeQuad, name: "Lagrange quadrilateral", family: lagrange, unit: &quad, most: many},
+	{number: LagrangeTetrahedron, name: "Lagrange tetrahedron", family: lagrange, unit: &tetrahedron, middles: tetraMiddles + " 012 013 123 023 0123", most: many},
+	{number: LagrangeHexahedron, name: "Lagrange hexahedron", family: lagrange, unit: &hexahedron, most: many},
+	{number: LagrangeWedge, name: "Lagrange wedge", family: lagrange, unit: &wedge, middles: wedgeMiddles + " 012 345" + wedgeSides + " 012345", most: many},
+	{number: LagrangePyramid, name: "Lagrange pyramid", family: unsupported, dimension: 3, most: many, reason: noClass},
+	{number: BezierCurve, name: "Bézier curve", family: bezier, unit: &line, most: many},
+	{number: BezierTriangle, name: "Bézier triangle", family: bezier, unit: &triangle, most: many},
+	{number: BezierQuad, name: "Bézier quadrilateral", family: bezier, unit: &quad, most: many},
+	{number: BezierTetrahedron, name: "Bézier tetrahedron", family: bezier, unit: &tetrahedron, most: many},
+	{number: BezierHexahedron, name: "Bézier hexahedron", family: bezier, unit: &hexahedron, most: many},
+	{number: BezierWedge, name: "Bézier wedge", family: bezier, unit: &wedge, most: many},
+	{number: BezierPyramid, name: "Bézier pyramid", family: unsupported, dimension: 3, most: many, reason: noClass},
 }
 
 // cellTypeRows finds the row of a type; nil for a number that VTK does not assign.
 var cellTypeRows = func() (rows [256]*cellTypeRow) {
 	for i := range cellTypes {
-		rows[cellTypes[i].number] = &cellTypes[i]
+		row := &cellTypes[i]
+		rows[row.number] = row
+		if row.unit == nil {
+			continue
+		}
+		for _, dimension := range row.unit.simplices {
+			row.dimension += dimension
+		}
+		row.variant = len(row.unit.corners) + len(strings.Fields(row.middles))
+		if row.family == middles {
+			row.least, row.most = row.variant, row.variant
+		}
 	}
 	return rows
 }()
@@ -154,4 +213,17 @@ func (t CellType) String() string {
 		return row.name
 	}
 	return fmt.Sprintf("CellType(%d)", uint8(t))
+}
+
+// checkCount reports a node count that no cell of the type has.
+func (row *cellTypeRow) checkCount(nodeCount int) error {
+	switch {
+	case row.least == row.most && nodeCount != row.least:
+		return fmt.Errorf("%s (cell type %d) has %d nodes, needs %d", row.name, row.number, nodeCount, row.least)
+	case nodeCount < row.least || nodeCount > row.most:
+		return fmt.Errorf("%s (cell type %d) has %d nodes, needs %d or more", row.name, row.number, nodeCount, row.least)
+	case row.number == QuadraticPolygon && nodeCount%2 == 1:
+		return fmt.Errorf("%s (cell type %d) has %d nodes, needs an even number", row.name, row.number, nodeCount)
+	}
+	return nil
 }

@@ -89,7 +89,8 @@ func (c *Cell) tetrahedronVolume() float64 {
 // Source: J. Grandy, Efficient computation of volume of hexahedral cells, Lawrence
 // Livermore National Laboratory UCRL-ID-128886 (1997), equation 17: three determinants
 // of the vectors from two opposite corners.
-func (c *Cell) hexahedronVolume(order *[8]uint8) (volume, least, greatest float64) {
+func (c *Cell) hexahedronVolume() (volume, least, greatest float64) {
+	order := &c.Shape.order
 	x0, y0, z0 := c.point(int(order[0]))
 	x1, y1, z1 := c.point(int(order[1]))
 	x2, y2, z2 := c.point(int(order[2]))

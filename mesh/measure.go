@@ -4,26 +4,37 @@ import "math"
 
 // Volume returns the volume of a solid cell, negative where it is mirrored, and its
 // orientation. It is exact for every map of polynomials. A wedge is lawful in both
-// orders: numbered the other way round it has a positive volume and is Regular.
+// orders: numbered the other way round it has a positive volume and is Regular. So has
+// a polyhedron, NaN where its faces do not close; so have cells that are not Supported.
 func (c *Cell) Volume() (volume float64, orientation Orientation) {
 	s := c.Shape
 	switch {
-	case s.form == tetrahedronForm && !c.IsRational():
+	case !s.Supported:
+		return math.NaN(), Regular
+	case s.row.family == polyhedral:
+		volume, _ = c.polyhedronMoments()
+		return volume, Regular
+	case s.row.family == prism:
+		volume, _ = c.prismMoments()
+		return volume, c.prismOrientation()
+	}
+	form := s.form
+	if c.IsRational() {
+		form = noClosedForm
+	}
+	switch form {
+	case tetrahedronForm:
 		volume = c.tetrahedronVolume()
 		return volume, orientationOf(volume, volume)
-	case s.form == hexahedronForm && !c.IsRational():
-		volume, least, greatest := c.hexahedronVolume(&s.order)
+	case hexahedronForm:
+		volume, least, greatest := c.hexahedronVolume()
 		return volume, orientationOf(least, greatest)
-	case s.form == wedgeForm && !c.IsRational():
-		volume, _, _ = c.hexahedronVolume(&s.order)
-		orientation = c.wedgeOrientation()
-	case s.form == pyramidForm:
-		volume, _, _ = c.hexahedronVolume(&s.order)
-		return volume, c.pyramidOrientation()
+	case wedgeForm, pyramidForm:
+		volume, _, _ = c.hexahedronVolume()
 	default:
 		volume = c.integratedDeterminant()
-		orientation = c.cornerOrientation()
 	}
+	orientation = c.cornerOrientation()
 	if s.row.unit == &wedge && orientation == Mirrored {
 		return -volume, Regular
 	}
@@ -51,6 +62,12 @@ func (c *Cell) integratedDeterminant() float64 {
 // PlaneArea returns the signed area of a plane cell in x and y, positive where it turns
 // from x to y, and its orientation.
 func (c *Cell) PlaneArea() (area float64, orientation Orientation) {
+	switch {
+	case !c.Shape.Supported:
+		return math.NaN(), Regular
+	case c.pieceCount() > 0:
+		return c.piecePlaneArea()
+	}
 	if form := c.Shape.form; (form == triangleForm || form == quadForm) && !c.IsRational() {
 		area, least, greatest := c.planeArea()
 		return area, orientationOf(least, greatest)
@@ -63,12 +80,20 @@ func (c *Cell) PlaneArea() (area float64, orientation Orientation) {
 // orientation.
 func (c *Cell) RingVolume(axisX bool) (volume, smallestRadius float64, orientation Orientation) {
 	smallestRadius = c.smallestRadius(axisX)
-	t := c.productRule()
-	for i, weight := range t.Weights {
-		element := float64(weight * c.jacobianDeterminant(t, i))
-		volume += float64(element * radius(c.Place(t, i), axisX))
+	volume, orientation = c.PlaneArea()
+	switch {
+	case !c.Shape.Supported:
+		return volume, smallestRadius, orientation
+	case c.pieceCount() > 0:
+		volume, _ = c.pieceRing(axisX)
+	default:
+		t := c.productRule()
+		volume = 0
+		for i, weight := range t.Weights {
+			element := float64(weight * c.jacobianDeterminant(t, i))
+			volume += float64(element * radius(c.Place(t, i), axisX))
+		}
 	}
-	_, orientation = c.PlaneArea()
 	return 2 * math.Pi * volume, smallestRadius, orientation
 }
 
@@ -90,12 +115,17 @@ func (c *Cell) productRule() *Tabulation {
 }
 
 // Measure returns the length, area in space or volume of a cell. A volume is without
-// its sign, except where the cell is Tangled. Points have 0.
+// its sign, except where the cell is Tangled. Points have 0; cells that are not
+// Supported have NaN.
 func (c *Cell) Measure() float64 {
-	switch c.Shape.Dimension {
-	case 0:
+	switch {
+	case c.Shape.Dimension == 0:
 		return 0
-	case 3:
+	case !c.Shape.Supported:
+		return math.NaN()
+	case c.pieceCount() > 0:
+		return c.pieceMeasure()
+	case c.Shape.Dimension == 3:
 		volume, orientation := c.Volume()
 		if orientation == Tangled {
 			return volume
@@ -124,9 +154,18 @@ func (c *Cell) spaceRule() *Tabulation {
 }
 
 // Centroid returns the centroid of the length, area in space or volume of a cell; that
-// of a cell without measure is the mean of its points.
+// of a cell without measure, or not Supported, is the mean of its points.
 func (c *Cell) Centroid() [3]float64 {
-	if c.Shape.Dimension == 0 {
+	switch family := c.Shape.row.family; {
+	case family == polyhedral:
+		volume, first := c.polyhedronMoments()
+		return c.centroidFromMiddle(first, volume)
+	case family == prism:
+		volume, first := c.prismMoments()
+		return c.centroidFromMiddle(first, volume)
+	case c.pieceCount() > 0:
+		return c.pieceCentroid()
+	case c.Shape.basis == nil:
 		return c.Middle()
 	}
 	t := c.spaceRule()
@@ -146,6 +185,10 @@ func (c *Cell) Centroid() [3]float64 {
 // RingCentroid returns the centroid of the volume of a plane cell turned about the y
 // axis, or about the x axis, in the plane of the cell.
 func (c *Cell) RingCentroid(axisX bool) [3]float64 {
+	if c.Shape.basis == nil {
+		whole, first := c.pieceRing(axisX)
+		return c.centroidOf(first, whole)
+	}
 	t := c.productRule()
 	var first [3]float64
 	whole := 0.0
@@ -162,8 +205,17 @@ func (c *Cell) RingCentroid(axisX bool) [3]float64 {
 
 // centroidOf divides the first moments by the measure, where that is possible.
 func (c *Cell) centroidOf(first [3]float64, whole float64) [3]float64 {
-	if whole == 0 {
+	if whole == 0 || math.IsNaN(whole) {
 		return c.Middle()
 	}
 	return [3]float64{first[0] / whole, first[1] / whole, first[2] / whole}
+}
+
+// centroidFromMiddle is centroidOf for first moments about the cell's middle.
+func (c *Cell) centroidFromMiddle(first [3]float64, whole float64) [3]float64 {
+	centroid := c.Middle()
+	if whole != 0 && !math.IsNaN(whole) {
+		add(&centroid, 1/whole, first)
+	}
+	return centroid
 }

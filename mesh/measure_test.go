@@ -161,7 +161,7 @@ func TestClosedFormsAreTheIntegrals(t *testing.T) {
 				points = append(points, p)
 			}
 			c := testCell(t, s.Type, [3]int{}, points)
-			want, orientation := c.integratedDeterminant(), c.cornerOrientation()
+			want, orientation := c.integratedDeterminant(), c.tabulatedOrientation()
 			var got float64
 			var found Orientation
 			if s.Dimension == 3 {

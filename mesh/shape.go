@@ -3,7 +3,6 @@ package mesh
 import (
 	"fmt"
 	"slices"
-	"strings"
 	"sync"
 )
 
@@ -22,6 +21,7 @@ type Shape struct {
 
 	row   *cellTypeRow
 	basis *basis // nil where nothing is interpolated
+	piece *Shape // what poly-lines, strips and polygons are made of
 	form  closedForm
 	order [8]uint8 // of the nodes in the closed form
 
@@ -34,8 +34,11 @@ type Shape struct {
 	atCorners   func() *Tabulation
 }
 
-// shapes holds the shapes made so far by their key.
-var shapes sync.Map
+// shapes holds the shapes made so far.
+var shapes = struct {
+	sync.RWMutex
+	byKey map[shapeKey]*Shape
+}{byKey: map[shapeKey]*Shape{}}
 
 type shapeKey struct {
 	cellType  CellType
@@ -54,45 +57,58 @@ func ShapeOf(cellType CellType, nodeCount int, degrees [3]int) (*Shape, error) {
 	if row == nil {
 		return nil, fmt.Errorf("cell type %d is none of VTK's", uint8(cellType))
 	}
-	if err := row.checkCount(nodeCount); err != nil {
+	key := shapeKey{cellType: cellType, nodeCount: nodeCount}
+	isLattice := row.family == lagrange || row.family == bezier
+	err := row.checkCount(nodeCount)
+	if err == nil && isLattice {
+		key.degrees, isLattice, err = row.latticeDegrees(nodeCount, degrees)
+	}
+	if err != nil {
 		return nil, err
 	}
-	key := shapeKey{cellType, nodeCount, degrees}
-	if known, ok := shapes.Load(key); ok {
-		return known.(*Shape), nil
+	shapes.RLock()
+	s := shapes.byKey[key]
+	shapes.RUnlock()
+	if s != nil {
+		return s, nil
 	}
-	known, _ := shapes.LoadOrStore(key, newShape(row, nodeCount, degrees))
-	return known.(*Shape), nil
+	made := newShape(row, key, isLattice)
+	shapes.Lock()
+	defer shapes.Unlock()
+	if s := shapes.byKey[key]; s != nil { // made by another in the meantime
+		return s, nil
+	}
+	shapes.byKey[key] = made
+	return made, nil
 }
 
-// checkCount reports a node count that cells of the type cannot have.
-func (row *cellTypeRow) checkCount(nodeCount int) error {
-	switch row.family {
-	case middles:
-		if want := len(row.unit.corners) + len(strings.Fields(row.middles)); nodeCount != want {
-			return fmt.Errorf("%s (cell type %d) has %d nodes, needs %d", row.name, row.number, nodeCount, want)
-		}
-	}
-	return nil
-}
-
-func newShape(row *cellTypeRow, nodeCount int, degrees [3]int) *Shape {
+func newShape(row *cellTypeRow, key shapeKey, isLattice bool) *Shape {
 	s := &Shape{
 		Type:        row.number,
 		Name:        row.name,
 		Dimension:   row.dimension,
-		NodeCount:   nodeCount,
-		CornerCount: nodeCount,
-		Degrees:     degrees,
-		Supported:   true,
+		NodeCount:   key.nodeCount,
+		CornerCount: key.nodeCount,
+		Degrees:     key.degrees,
 		row:         row,
+		Reason:      row.reason,
 	}
-	if row.unit != nil {
+	switch {
+	case row.unit != nil:
 		s.CornerCount = len(row.unit.corners)
+	case row.number == QuadraticPolygon:
+		s.CornerCount = key.nodeCount / 2
 	}
-	if row.family == middles {
+	switch degree := max(key.degrees[0], key.degrees[1], key.degrees[2]); {
+	case degree > MaxDegree:
+		s.Reason = fmt.Sprintf("its degree %d is above %d", degree, MaxDegree)
+	case isLattice:
+		s.basis = latticeBasis(row.unit, row.family, row.unit.simplexDegrees(key.degrees))
+	case row.unit != nil:
 		s.basis = middleBasis(row.unit, row.middles)
 	}
+	s.Supported = s.Reason == ""
+	s.piece = pieceShape(row)
 	s.form, s.order = closedFormOf(s)
 	s.faces = sync.OnceValue(s.findFaces)
 	s.faceCorners = sync.OnceValue(s.findFaceCorners)
@@ -140,27 +156,58 @@ func (s *Shape) Faces() [][]int { return s.faces() }
 func (s *Shape) FaceCorners() [][]int { return s.faceCorners() }
 
 func (s *Shape) findFaceCorners() [][]int {
-	if s.row.unit == nil {
-		return nil
-	}
 	var faces [][]int
-	for _, corners := range s.row.unit.faces {
-		var face []int
-		for _, number := range corners {
-			face = append(face, int(number-'0'))
+	switch n := s.CornerCount; s.row.family {
+	case fan:
+		for i := range n {
+			faces = append(faces, []int{i, (i + 1) % n})
 		}
-		faces = append(faces, face)
+	case strip: // along one side and back along the other
+		faces = append(faces, []int{0, 1})
+		for i := 1; i+2 < n; i += 2 {
+			faces = append(faces, []int{i, i + 2})
+		}
+		if n%2 == 1 {
+			faces = append(faces, []int{n - 2, n - 1})
+		} else {
+			faces = append(faces, []int{n - 1, n - 2})
+		}
+		for i := (n - 1) / 2 * 2; i >= 2; i -= 2 {
+			faces = append(faces, []int{i, i - 2})
+		}
+	case prism:
+		n /= 2
+		bottom, top := []int{}, []int{}
+		for i := range n {
+			bottom, top = append(bottom, (n-i)%n), append(top, n+i)
+			faces = append(faces, []int{i, (i + 1) % n, n + (i+1)%n, n + i})
+		}
+		faces = append(faces, bottom, top)
+	default:
+		if s.row.unit == nil {
+			return nil
+		}
+		for _, corners := range s.row.unit.faces {
+			var face []int
+			for _, number := range corners {
+				face = append(face, int(number-'0'))
+			}
+			faces = append(faces, face)
+		}
 	}
 	return faces
 }
 
 // findFaces adds to the corners of each face the nodes between them.
 func (s *Shape) findFaces() [][]int {
-	faces := make([][]int, 0, len(s.faceCorners()))
-	for _, corners := range s.faceCorners() {
+	if s.basis == nil && s.row.number != QuadraticPolygon {
+		return s.faceCorners()
+	}
+	var faces [][]int
+	for i, corners := range s.faceCorners() {
 		face := slices.Clone(corners)
 		for node := s.CornerCount; node < s.NodeCount; node++ {
-			if s.onFace(node, corners) {
+			if s.basis == nil && node == s.CornerCount+i || s.basis != nil && s.onFace(node, corners) {
 				face = append(face, node)
 			}
 		}

@@ -16,14 +16,19 @@ type unitCell struct {
 	corners []string
 	// faces lists the corners of the faces, for a plane cell of the edges, in cyclic
 	// order, outwards where the Jacobian determinant is positive.
-	faces  []string
-	folded bool // into an apex
+	faces []string
+	// lattice lists the parts of the cell in the order in which a lattice's nodes are
+	// numbered, each by its part of each simplex; nil where the cell is one simplex
+	// of two dimensions or more.
+	lattice []string
+	folded  bool // into an apex
 }
 
 var (
 	line = unitCell{
 		simplices: []int{1},
 		corners:   []string{"0", "1"},
+		lattice:   []string{"0", "1", "-"},
 	}
 	triangle = unitCell{
 		simplices: []int{2},
@@ -34,6 +39,7 @@ var (
 		simplices: []int{1, 1},
 		corners:   []string{"00", "10", "11", "01"},
 		faces:     []string{"01", "12", "23", "30"},
+		lattice:   []string{"00", "10", "11", "01", "-0", "1-", "-1", "0-", "--"},
 	}
 	pixel = unitCell{
 		simplices: []int{1, 1},
@@ -49,6 +55,11 @@ var (
 		simplices: []int{1, 1, 1},
 		corners:   []string{"000", "100", "110", "010", "001", "101", "111", "011"},
 		faces:     []string{"0473", "1265", "0154", "3762", "0321", "4567"},
+		lattice: []string{
+			"000", "100", "110", "010", "001", "101", "111", "011",
+			"-00", "1-0", "-10", "0-0", "-01", "1-1", "-11", "0-1", "00-", "10-", "11-", "01-",
+			"0--", "1--", "-0-", "-1-", "--0", "--1", "---",
+		},
 	}
 	voxel = unitCell{
 		simplices: []int{1, 1, 1},
@@ -59,6 +70,11 @@ var (
 		simplices: []int{2, 1},
 		corners:   []string{"00", "10", "20", "01", "11", "21"},
 		faces:     []string{"021", "345", "0143", "1254", "2035"},
+		lattice: []string{
+			"00", "10", "20", "01", "11", "21",
+			"a0", "b0", "c0", "a1", "b1", "c1", "0-", "1-", "2-",
+			"-0", "-1", "a-", "b-", "c-", "--",
+		},
 	}
 	pyramid = unitCell{
 		simplices: []int{1, 1, 1},
