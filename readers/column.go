@@ -68,11 +68,11 @@ func (a *column) need(tuples int64, what string) error {
 	case tuples == 0 || a.number.size() == 0:
 	case a.form == textForm:
 		if most := a.text.most(); values > most {
-			return a.fail(truncated("%d %s with %d components need %d values, found room for %d",
-				tuples, what, a.Components, values, most))
+			return a.fail(truncated("%d %s with %s need %d values, found room for %d",
+				tuples, what, counted(a.Components, "component"), values, most))
 		}
 	case bytes > a.length:
-		return a.fail(truncated("%d %s with %d components need %d bytes, found %d", tuples, what, a.Components, bytes, a.length))
+		return a.fail(truncated("%d %s with %s need %d bytes, found %d", tuples, what, counted(a.Components, "component"), bytes, a.length))
 	}
 	a.Tuples = tuples
 	return nil
@@ -338,5 +338,5 @@ func (a *column) labels(c *cursor, low, high int64) ([]int64, error) {
 
 // describe says what the array is, for messages.
 func (a *column) describe() string {
-	return fmt.Sprintf("%s with %d components", a.number, a.Components)
+	return fmt.Sprintf("%s with %s", a.number, counted(a.Components, "component"))
 }

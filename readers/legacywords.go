@@ -238,7 +238,7 @@ func (l *legacyFile) binaryValues(a *column, count int64) error {
 	}
 	a.start = l.window.offset()
 	if found := l.file.size - a.start; bytes > found {
-		return a.fail(truncated("%d tuples with %d components need %d bytes, found %d", a.Tuples, a.Components, bytes, found))
+		return a.fail(truncated("%d tuples with %s need %d bytes, found %d", a.Tuples, counted(a.Components, "component"), bytes, found))
 	}
 	if a.number != bitNumber {
 		a.payload = payload{form: plainForm, length: bytes, stored: stored{file: l.file, start: a.start}}
@@ -250,7 +250,7 @@ func (l *legacyFile) binaryValues(a *column, count int64) error {
 // textValues passes over words and keeps the index that counting them makes.
 func (l *legacyFile) textValues(a *column, count int64) error {
 	if room := (l.file.size - a.start + 1) / 2; count > room {
-		return a.fail(truncated("%d tuples with %d components need %d values, found room for %d", a.Tuples, a.Components, count, room))
+		return a.fail(truncated("%d tuples with %s need %d values, found room for %d", a.Tuples, counted(a.Components, "component"), count, room))
 	}
 	text := newIndex(l.file, a.start, l.file.size, true)
 	c := l.cursor
@@ -259,7 +259,7 @@ func (l *legacyFile) textValues(a *column, count int64) error {
 		return a.fail(err)
 	}
 	if !found {
-		return a.fail(truncated("%d tuples with %d components need %d values, found %d", a.Tuples, a.Components, count, before))
+		return a.fail(truncated("%d tuples with %s need %d values, found %d", a.Tuples, counted(a.Components, "component"), count, before))
 	}
 	words := &words{hand: &c.hand}
 	if err := words.seek(text, page, before, count-1); err != nil {

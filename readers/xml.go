@@ -1,6 +1,7 @@
 package readers
 
 import (
+	"bytes"
 	"math"
 	"strconv"
 	"strings"
@@ -191,11 +192,11 @@ func (x *xmlFile) skip(e *element, w *window) error {
 		if err := w.jump(start + length); err != nil {
 			return err
 		}
-		c, found, err := w.blanks()
+		isEnd, err := w.ends(e.name)
 		if err != nil {
 			return err
 		}
-		if found && c == '<' {
+		if isEnd {
 			e.payload = p
 			return nil
 		}
@@ -212,6 +213,25 @@ func (x *xmlFile) skip(e *element, w *window) error {
 		place.Array = e.attribute("Name")
 	}
 	return err
+}
+
+// ends reports whether the end tag of an element or the start of an information key
+// comes next.
+func (w *window) ends(name string) (bool, error) {
+	if _, _, err := w.blanks(); err != nil {
+		return false, err
+	}
+	for _, mark := range []string{"</" + name, "<InformationKey"} {
+		if len(w.buffer)-w.at < len(mark) {
+			if _, err := w.more(); err != nil {
+				return false, err
+			}
+		}
+		if bytes.HasPrefix(w.buffer[w.at:], []byte(mark)) {
+			return true, nil
+		}
+	}
+	return false, nil
 }
 
 // binary takes apart the length words of an array in binary form that begins at
@@ -267,11 +287,11 @@ func (x *xmlFile) binary(start, stop int64, isBase64 bool, wrapped *index) (*pay
 
 // plain takes apart an array that is not compressed. Its length word stands in one
 // run of base64 with the values, or in one of its own, which its padding tells.
-func (x *xmlFile) plain(run stored, bytes uint64, available int64) (*payload, int64, error) {
-	if bytes > math.MaxInt64 || int64(bytes) > available-x.wordSize+2 {
-		return nil, 0, x.file.fail(run.start, truncated("%d bytes of values by the length word, found at most %d to the end", bytes, max(0, available-x.wordSize)))
+func (x *xmlFile) plain(run stored, length uint64, available int64) (*payload, int64, error) {
+	if length > math.MaxInt64 || int64(length) > available-x.wordSize+2 {
+		return nil, 0, x.file.fail(run.start, truncated("%d bytes of values by the length word, found at most %d to the end", length, max(0, available-x.wordSize)))
 	}
-	p := &payload{form: plainForm, length: int64(bytes), stored: run}
+	p := &payload{form: plainForm, length: int64(length), stored: run}
 	p.stored.shift = x.wordSize
 	if !run.isBase64 {
 		return p, x.wordSize + p.length, nil
