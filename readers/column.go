@@ -83,9 +83,10 @@ type slot struct {
 	owner     *column
 	low, high int64 // range of the column's bytes in memory
 	buffer    []uint64
-	data      []byte // the buffer as bytes; data[0] is byte low
-	words     words  // text: where reading goes on
-	next      int64  // text: number of the word that comes next
+	data      []byte      // the buffer as bytes; data[0] is byte low
+	stream    blockStream // large blocks
+	words     words       // text: where reading goes on
+	next      int64       // text: number of the word that comes next
 	swapped   []byte
 	floats    []float64
 	labels    []int64
@@ -162,15 +163,18 @@ func (a *column) load(c *cursor, s *slot, low, high int64) error {
 	return truncated("found no values, need %d bytes", high)
 }
 
-// unpackBlocks decodes the blocks that cover [low, high) and are not yet in memory.
+// unpackBlocks decodes the blocks that cover [low, high) and are not yet in memory; of
+// large blocks the range alone.
 func (a *column) unpackBlocks(c *cursor, s *slot, low, high int64) error {
-	size := a.blocks.size
 	if high > a.length {
 		return truncated("%d bytes needed, found %d", high, a.length)
 	}
-	first, behind := low/size, (high+size-1)/size
-	start := first * size
-	end := min(behind*size, a.length)
+	size := a.blocks.size
+	isStream := size > streamSize && a.blocks.compressor != lz4Blocks
+	start, end := low, high
+	if !isStream {
+		start, end = low/size*size, min((high+size-1)/size*size, a.length)
+	}
 	kept := int64(0)
 	if start >= s.low && start < s.high {
 		kept = s.high - start
@@ -178,7 +182,10 @@ func (a *column) unpackBlocks(c *cursor, s *slot, low, high int64) error {
 	}
 	s.reserve(end-start, kept)
 	s.low, s.high = start, end
-	return a.blocks.decode(c, s.data[kept:], first+(kept+size-1)/size, behind)
+	if isStream {
+		return s.stream.read(c, a.blocks, s.data[kept:], start+kept)
+	}
+	return a.blocks.decode(c, s.data[kept:], (start+kept+size-1)/size, (end+size-1)/size)
 }
 
 // parse reads the words that hold [low, high).

@@ -5,7 +5,7 @@ import "math"
 // Limits is what files may claim. Each zero value stands for the default.
 type Limits struct {
 	Decoded    int64 // bytes that compressed content may decode to, over all files; default 2⁴⁰ (1 TiB)
-	Block      int64 // bytes of one compressed block that is decoded as a whole; default 2³⁰ (1 GiB)
+	Block      int64 // bytes of one LZ4 block, which is decoded as a whole; default 2³⁰ (1 GiB)
 	Points     int64 // points of one piece, which are held in memory; default 2²⁸, at most 2³¹-1
 	GridPoints int64 // points of a grid whose coordinates are not stored; default 2²² and 64 for each byte of its file
 	Pieces     int64 // pieces of all files; default 100,000
