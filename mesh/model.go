@@ -52,12 +52,13 @@ func (a Array) IsInteger() bool {
 	return false
 }
 
-// A Source is one file that holds cells.
+// A Source is one file of the model. One that only names others (a parallel file, a
+// collection) has no points and cells of its own and stands before them.
 type Source struct {
 	Path   string // as the caller or the referring file gave it
 	Bytes  int64
-	Points int64
-	Cells  int64
+	Points int64   // those on the border of two structured pieces counted once
+	Cells  int64   // ghosts included
 	Time   float64 // NaN when the file gives none
 }
 
@@ -70,6 +71,8 @@ type Piece struct {
 	PointCount int64
 	Arrays     []Array // point and cell arrays in file order
 	RunCells   int     // cells that are best read in one go; 0: no preference
+
+	Grid *Grid // of a structured piece, else nil
 
 	// RationalWeights names the point array that weighs the control points of
 	// Bézier cells; "" when there is none.
@@ -99,10 +102,29 @@ type Model struct {
 	Sources []Source
 	Blocks  []string  // nested names joined by a slash; a plain file's is its base name
 	Pieces  []Piece   // in file order, whatever the container
-	Fields  []Array   // arrays of the data set as a whole
+	Fields  []Array   // arrays of the data set as a whole, of one name once
+	Texts   []Text    // field arrays that hold text
 	Times   []float64 // all states that the files hold, rising
 	Remarks []Remark
 	Open    func() Cursor // one for each worker
+	Close   func() error  // lets go of temporary files, after the cursors; nil: there are none
+}
+
+// A Text is the content of a field array that holds text: strings, or small whole
+// numbers that are the characters of one.
+type Text struct {
+	Name    string
+	Strings []string
+}
+
+// Text returns the first string of a field array, "" when there is none.
+func (m *Model) Text(name string) string {
+	for _, text := range m.Texts {
+		if text.Name == name && len(text.Strings) > 0 {
+			return text.Strings[0]
+		}
+	}
+	return ""
 }
 
 // CellCount returns the number of cells in all pieces, ghosts included.
@@ -140,6 +162,7 @@ type Span struct {
 type Want struct {
 	CellValues  []string // cell arrays as numbers, in the order of Chunk.Values
 	Labels      []string // cell arrays as whole numbers, in the order of Chunk.Labels
+	FieldValues []string // field arrays with some tuples for each cell, in the order of Chunk.FieldValues
 	PointValues []string // point arrays, in the order of Chunk.PointValues
 	NoNodes     bool     // types, ghost marks and cell arrays, but neither nodes nor points
 }
@@ -182,6 +205,10 @@ type Chunk struct {
 
 	Values [][]float64 // Count tuples for each of Want.CellValues
 	Labels [][]int64   // Count numbers for each of Want.Labels
+
+	// FieldValues holds for each of Want.FieldValues the tuples of the chunk's cells,
+	// those of one cell (its integration points) in a row.
+	FieldValues [][]float64
 }
 
 // Cell sets the view to cell i of the chunk.

@@ -73,7 +73,7 @@ func (b *blocks) check(limits Limits) error {
 	if b.size <= 0 || b.last <= 0 || b.last > b.size {
 		return malformed("found compressed blocks of %d bytes and a last one of %d, need positive sizes and the last no larger", b.size, b.last)
 	}
-	if b.size > limits.Block {
+	if b.size > limits.Block && (b.compressor == lz4Blocks || b.size > limits.Decoded) {
 		return overLimit("found compressed blocks of %d bytes; need at most the limit of %d for a block", b.size, limits.Block)
 	}
 	if b.count > limits.Decoded/b.size {

@@ -1,7 +1,7 @@
 package readers
 
 import (
-	"math"
+	"slices"
 	"sync"
 
 	"strainledger/mesh"
@@ -12,7 +12,6 @@ import (
 // tell; marks keeps the place of every 8,192nd cell, as far as was asked.
 type cellList struct {
 	column *column
-	cells  int64
 
 	lock  sync.Mutex
 	marks []int64 // marks[i]: position of cell i × chunkCells in the list
@@ -96,7 +95,8 @@ type listPlace struct {
 	cell, place int64
 }
 
-// read appends starts and nodes of the cells [low, high) of a section.
+// read appends the cells [low, high) of a section, with their types where the
+// section's rule tells them.
 func (l *cellList) read(c *cursor, p *piece, s *section, types []mesh.CellType, low, high int64) error {
 	walk := listWalk{list: l, cursor: c, piece: p, place: c.stopped.place}
 	if c.stopped.list != l || c.stopped.cell != low {
@@ -104,21 +104,29 @@ func (l *cellList) read(c *cursor, p *piece, s *section, types []mesh.CellType, 
 			return err
 		}
 	}
+	hasFaces := slices.Contains(types, mesh.Polyhedron)
+	if hasFaces {
+		c.beginFaces()
+	}
 	for cell := low; cell < high; cell++ {
 		entries, err := walk.next(cell)
 		if err != nil {
 			return err
 		}
-		for _, id := range entries {
-			if id < 0 || id >= p.pointCount {
-				return p.cellError(l.column, s.first+cell, malformed("found point number %d, need 0 to %d", id, p.pointCount-1))
-			}
-			c.nodes = append(c.nodes, int32(id))
+		var cellType mesh.CellType
+		if s.types != nil {
+			cellType = types[cell-low]
+		} else {
+			cellType = s.rule.cellType(int64(len(entries)))
+			c.types = append(c.types, cellType)
 		}
-		if len(c.nodes) > math.MaxInt32 {
-			return p.cellError(l.column, s.first+cell, unsupported("found more than 2³¹ entries in one chunk"))
+		err = c.addCell(cellType, entries, p)
+		if err == nil && hasFaces {
+			err = c.endFaces()
 		}
-		c.start = append(c.start, int32(len(c.nodes)))
+		if err != nil {
+			return p.cellError(l.column, s.first+cell, err)
+		}
 	}
 	c.stopped = listPlace{l, high, walk.place}
 	return nil

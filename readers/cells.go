@@ -2,6 +2,7 @@ package readers
 
 import (
 	"math"
+	"slices"
 
 	"strainledger/mesh"
 )
@@ -14,11 +15,22 @@ type section struct {
 	offsets      *column   // where each cell ends in connectivity
 	isLed        bool      // offsets begin with a 0 before the first cell's end
 	list         *cellList // in place of connectivity and offsets
-	types        *column
+	hasStreams   bool      // polyhedra stand as face streams in place of their nodes
+	types        *column   // nil: the rule tells the types
+	rule         polygonRule
 }
 
 // chunkCells is the number of cells after which indexes keep a mark.
 const chunkCells = 8192
+
+// columns returns the columns that the section is made of.
+func (s *section) columns() []*column {
+	columns := []*column{s.types, s.offsets, s.connectivity}
+	if s.list != nil {
+		columns = append(columns, s.list.column)
+	}
+	return slices.DeleteFunc(columns, func(a *column) bool { return a == nil })
+}
 
 // cellError makes an error about one cell of a piece.
 func (p *piece) cellError(a *column, cell int64, err error) error {
@@ -32,45 +44,55 @@ func (p *piece) cellError(a *column, cell int64, err error) error {
 // read appends the cells [low, high) of the section, counted in the section, to the
 // cursor's buffers.
 func (s *section) read(c *cursor, p *piece, low, high int64, noNodes bool) error {
-	types, err := s.cellTypes(c, p, low, high)
-	if err != nil || noNodes {
-		return err
+	begin := len(c.types)
+	if s.types != nil {
+		if err := s.readTypes(c, p, low, high); err != nil || noNodes {
+			return err
+		}
 	}
+	types := c.types[begin:]
 	if s.list != nil {
 		return s.list.read(c, p, s, types, low, high)
 	}
-	first, err := s.starts(c, p, low, high)
+	first, err := s.readStarts(c, p, low, high)
 	if err != nil {
 		return err
 	}
-	return s.nodes(c, p, types, first, low)
+	switch {
+	case s.types == nil && noNodes:
+		return nil
+	case s.hasStreams && slices.Contains(types, mesh.Polyhedron):
+		return s.readStreams(c, p, types, first, low)
+	}
+	return s.readNodes(c, p, first, low, int(high-low))
 }
 
-// cellTypes appends the types of the cells and returns them.
-func (s *section) cellTypes(c *cursor, p *piece, low, high int64) ([]mesh.CellType, error) {
-	begin := len(c.types)
-	data, err := s.types.bytes(c, low*s.types.number.size(), high*s.types.number.size())
+// readTypes appends the types of the cells.
+func (s *section) readTypes(c *cursor, p *piece, low, high int64) error {
+	size := s.types.number.size()
+	data, err := s.types.bytes(c, low*size, high*size)
 	if err != nil {
-		return nil, err
+		return err
 	}
-	if s.types.number.size() == 1 {
+	if size == 1 {
 		c.types = append(c.types, typeView(data)...)
-		return c.types[begin:], nil
+		return nil
 	}
 	c.integers = grown(c.integers, int(high-low))
 	s.types.number.integers(c.integers, data)
 	for i, value := range c.integers {
 		if value < 0 || value > math.MaxUint8 {
-			return nil, p.cellError(s.types, s.first+low+int64(i), malformed("found cell type %d, need one of VTK's", value))
+			return p.cellError(s.types, s.first+low+int64(i), malformed("found cell type %d, need one of VTK's", value))
 		}
 		c.types = append(c.types, mesh.CellType(value))
 	}
-	return c.types[begin:], nil
+	return nil
 }
 
-// starts appends where each cell of the section ends in the cursor's nodes and
-// returns where the first begins in the section's connectivity.
-func (s *section) starts(c *cursor, p *piece, low, high int64) (int64, error) {
+// readStarts appends where each cell of the section ends in the cursor's nodes, and
+// the types where the rule tells them. It returns where the first cell begins in the
+// section's connectivity; the cursor's integers hold that and the ends there.
+func (s *section) readStarts(c *cursor, p *piece, low, high int64) (int64, error) {
 	from := low - 1 // the end of the cell before
 	if s.isLed {
 		from = low
@@ -88,8 +110,7 @@ func (s *section) starts(c *cursor, p *piece, low, high int64) (int64, error) {
 	ends[0] = 0
 	s.offsets.number.integers(ends[skip:], data)
 	first, origin := ends[0], int64(len(c.nodes))
-	signs := first
-	previous := first
+	signs, previous := first, first
 	for _, end := range ends[1:] {
 		signs |= end - previous
 		previous = end
@@ -98,9 +119,14 @@ func (s *section) starts(c *cursor, p *piece, low, high int64) (int64, error) {
 	if signs < 0 || origin+previous-first > math.MaxInt32 {
 		return 0, s.startFault(p, ends, low)
 	}
-	if s.connectivity.form != textForm && previous*s.connectivity.number.size() > s.connectivity.length {
+	if s.connectivity.form != textForm && previous > s.connectivity.length/s.connectivity.number.size() {
 		return 0, p.cellError(s.offsets, s.first+high-1, malformed("found the end of the cell at %d, connectivity has %d entries",
 			previous, s.connectivity.length/s.connectivity.number.size()))
+	}
+	if s.types == nil {
+		for i, end := range ends[1:] {
+			c.types = append(c.types, s.rule.cellType(end-ends[i]))
+		}
 	}
 	return first, nil
 }
@@ -114,15 +140,12 @@ func (s *section) startFault(p *piece, ends []int64, low int64) error {
 		if end < ends[i] {
 			return p.cellError(s.offsets, s.first+low+int64(i), malformed("found offset %d after %d, need offsets that do not fall", end, ends[i]))
 		}
-		if end-ends[0] > math.MaxInt32 {
-			break
-		}
 	}
 	return p.cellError(s.offsets, s.first+low, unsupported("found %d entries in %d cells, need fewer than 2³¹", ends[len(ends)-1]-ends[0], len(ends)-1))
 }
 
-// nodes appends the point numbers of the cells whose ends have just been appended.
-func (s *section) nodes(c *cursor, p *piece, types []mesh.CellType, first, low int64) error {
+// readNodes appends the point numbers of the cells whose starts were appended last.
+func (s *section) readNodes(c *cursor, p *piece, first, low int64, cells int) error {
 	begin := len(c.nodes)
 	end := int(c.start[len(c.start)-1])
 	c.nodes = extended(c.nodes, end-begin)
@@ -134,16 +157,67 @@ func (s *section) nodes(c *cursor, p *piece, types []mesh.CellType, first, low i
 	if s.connectivity.number.nodes(c.nodes[begin:], data, p.pointCount) {
 		return nil
 	}
-	starts := c.start[len(c.start)-1-len(types):]
-	for i := range types {
-		for k := starts[i]; k < starts[i+1]; k++ {
-			var id [1]int64
-			s.connectivity.number.integers(id[:], data[(int64(k)-int64(begin))*size:])
-			if id[0] < 0 || id[0] >= p.pointCount {
-				return p.cellError(s.connectivity, s.first+low+int64(i), malformed("found point number %d, need 0 to %d", id[0], p.pointCount-1))
+	ids := grown(c.list, end-begin)
+	s.connectivity.number.integers(ids, data)
+	starts := c.start[len(c.start)-1-cells:]
+	for i := range cells {
+		for _, id := range ids[int(starts[i])-begin : int(starts[i+1])-begin] {
+			if id < 0 || id >= p.pointCount {
+				return p.cellError(s.connectivity, s.first+low+int64(i), p.nodeFault(id))
 			}
 		}
 	}
+	return s.connectivity.fail(malformed("found a point number that is out of range"))
+}
+
+// nodeFault says which number is no point of the piece.
+func (p *piece) nodeFault(id int64) error {
+	if p.pointCount == 0 {
+		return malformed("found point number %d in a piece without points", id)
+	}
+	return malformed("found point number %d, need 0 to %d", id, p.pointCount-1)
+}
+
+// readStreams appends nodes and faces of cells among which there are polyhedra, and
+// sets their starts anew, for the nodes are fewer than the entries.
+func (s *section) readStreams(c *cursor, p *piece, types []mesh.CellType, first, low int64) error {
+	ends := c.integers
+	entries, err := s.connectivity.wholes(c, first, ends[len(ends)-1])
+	if err != nil {
+		return err
+	}
+	c.beginFaces()
+	c.start = c.start[:len(c.start)-len(types)]
+	for i, cellType := range types {
+		if err := c.addCell(cellType, entries[ends[i]-first:ends[i+1]-first], p); err != nil {
+			return p.cellError(s.connectivity, s.first+low+int64(i), err)
+		}
+		if err := c.endFaces(); err != nil {
+			return p.cellError(s.connectivity, s.first+low+int64(i), err)
+		}
+	}
+	return nil
+}
+
+// addCell appends one cell whose entries are its nodes or, for a polyhedron, its face
+// stream.
+func (c *cursor) addCell(cellType mesh.CellType, entries []int64, p *piece) error {
+	if cellType == mesh.Polyhedron {
+		if err := c.stream(entries, p.pointCount, true); err != nil {
+			return err
+		}
+	} else {
+		for _, id := range entries {
+			if id < 0 || id >= p.pointCount {
+				return p.nodeFault(id)
+			}
+			c.nodes = append(c.nodes, int32(id))
+		}
+	}
+	if len(c.nodes) > math.MaxInt32 {
+		return unsupported("found more than 2³¹ entries in one chunk")
+	}
+	c.start = append(c.start, int32(len(c.nodes)))
 	return nil
 }
 

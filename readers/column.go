@@ -2,6 +2,7 @@ package readers
 
 import (
 	"fmt"
+	"math"
 	"unsafe"
 
 	"strainledger/mesh"
@@ -25,6 +26,9 @@ type column struct {
 	bigEndian bool
 	file      *file
 	start     int64 // where its values begin in the file
+	isLevel   bool  // ghost levels of old files: above 0 means duplicate
+	isColour  bool  // text of 0 to 1 for bytes of 0 to 255
+	perCell   int64 // of a field array: tuples for each cell of the file
 	payload
 	slot int // position among the kept buffers of a cursor
 }
@@ -63,13 +67,12 @@ func (a *column) need(tuples int64, what string) error {
 	switch {
 	case tuples == 0 || a.number.size() == 0:
 	case a.form == textForm:
-		// a value and the blank behind it take two characters
-		if most := (a.text.end - a.text.start + 1) / 2; values > most {
-			return a.fail(truncated("%d %s with %d components need %d values, found room for %d",
-				tuples, what, a.Components, values, most))
+		if most := a.text.most(); values > most {
+			return a.fail(truncated("%d %s with %s need %d values, found room for %d",
+				tuples, what, counted(a.Components, "component"), values, most))
 		}
 	case bytes > a.length:
-		return a.fail(truncated("%d %s with %d components need %d bytes, found %d", tuples, what, a.Components, bytes, a.length))
+		return a.fail(truncated("%d %s with %s need %d bytes, found %d", tuples, what, counted(a.Components, "component"), bytes, a.length))
 	}
 	a.Tuples = tuples
 	return nil
@@ -80,12 +83,15 @@ type slot struct {
 	owner     *column
 	low, high int64 // range of the column's bytes in memory
 	buffer    []uint64
-	data      []byte // the buffer as bytes; data[0] is byte low
-	words     words  // text: where reading goes on
-	next      int64  // text: number of the word that comes next
+	data      []byte      // the buffer as bytes; data[0] is byte low
+	stream    blockStream // large blocks
+	words     words       // text: where reading goes on
+	next      int64       // text: number of the word that comes next
 	swapped   []byte
 	floats    []float64
 	labels    []int64
+	near      []int64 // some values about the one that was asked for last
+	nearLow   int64
 }
 
 // room makes a scratch buffer of n bytes from a kept one. What it held is lost.
@@ -116,7 +122,7 @@ func (a *column) bytes(c *cursor, low, high int64) ([]byte, error) {
 	}
 	s := &c.slots[a.slot]
 	if s.owner != a {
-		s.owner, s.low, s.high, s.words.file = a, 0, 0, nil
+		s.owner, s.low, s.high, s.words.file, s.near = a, 0, 0, nil, s.near[:0]
 	}
 	if low < s.low || high > s.high {
 		if err := a.load(c, s, low, high); err != nil {
@@ -137,6 +143,9 @@ func (a *column) bytes(c *cursor, low, high int64) ([]byte, error) {
 func (a *column) load(c *cursor, s *slot, low, high int64) error {
 	switch a.form {
 	case plainForm:
+		if high > a.length {
+			return truncated("%d bytes needed, found %d", high, a.length)
+		}
 		s.reserve(high-low, 0)
 		s.low, s.high = low, high
 		if err := a.stored.read(c, s.data, low); err != nil {
@@ -154,15 +163,18 @@ func (a *column) load(c *cursor, s *slot, low, high int64) error {
 	return truncated("found no values, need %d bytes", high)
 }
 
-// unpackBlocks decodes the blocks that cover [low, high) and are not yet in memory.
+// unpackBlocks decodes the blocks that cover [low, high) and are not yet in memory; of
+// large blocks the range alone.
 func (a *column) unpackBlocks(c *cursor, s *slot, low, high int64) error {
-	size := a.blocks.size
 	if high > a.length {
 		return truncated("%d bytes needed, found %d", high, a.length)
 	}
-	first, behind := low/size, (high+size-1)/size
-	start := first * size
-	end := min(behind*size, a.length)
+	size := a.blocks.size
+	isStream := size > streamSize && a.blocks.compressor != lz4Blocks
+	start, end := low, high
+	if !isStream {
+		start, end = low/size*size, min((high+size-1)/size*size, a.length)
+	}
 	kept := int64(0)
 	if start >= s.low && start < s.high {
 		kept = s.high - start
@@ -170,12 +182,18 @@ func (a *column) unpackBlocks(c *cursor, s *slot, low, high int64) error {
 	}
 	s.reserve(end-start, kept)
 	s.low, s.high = start, end
-	return a.blocks.decode(c, s.data[kept:], first+(kept+size-1)/size, behind)
+	if isStream {
+		return s.stream.read(c, a.blocks, s.data[kept:], start+kept)
+	}
+	return a.blocks.decode(c, s.data[kept:], (start+kept+size-1)/size, (end+size-1)/size)
 }
 
 // parse reads the words that hold [low, high).
 func (a *column) parse(c *cursor, s *slot, low, high int64) error {
 	size := a.number.size()
+	if most := a.text.most(); high/size > most {
+		return truncated("%d values needed, found room for %d", high/size, most)
+	}
 	first := low / size
 	if s.words.file == nil || first < s.next || first > s.next+pageSize {
 		page, before, found, err := a.text.page(&c.hand, room(&c.page, pageSize+1), first)
@@ -214,21 +232,98 @@ func (a *column) values(c *cursor, low, high int64) ([]float64, error) {
 		s.floats = make([]float64, count)
 	}
 	s.floats = s.floats[:count]
-	a.number.widen(s.floats, data)
+	a.widen(s.floats, data)
 	return s.floats, nil
+}
+
+// widen writes numbers as float64, ghost levels as marks.
+func (a *column) widen(to []float64, data []byte) {
+	a.number.widen(to, data)
+	if a.isLevel {
+		for i, level := range to {
+			to[i] = min(level, mesh.DuplicateCell)
+		}
+	}
+	if a.isColour {
+		for i, part := range to {
+			to[i] = math.Floor(float64(255*part) + 0.5)
+		}
+	}
 }
 
 // valuesTo writes the tuples [low, high) as float64.
 func (a *column) valuesTo(c *cursor, low, high int64, to []float64) error {
-	to = to[:(high-low)*int64(a.Components)]
+	components := int64(a.Components)
+	to = to[:(high-low)*components]
 	if a.form == plainForm && a.number == float64Number && littleHost && !a.bigEndian {
-		return a.stored.read(c, byteView(to), low*a.width()) // straight into place
+		if high*a.width() > a.length {
+			return a.fail(truncated("%d bytes needed, found %d", high*a.width(), a.length))
+		}
+		err := a.stored.read(c, byteView(to), low*a.width()) // straight into place
+		if err != nil {
+			return a.fail(err)
+		}
+		return nil
 	}
-	data, err := a.bytes(c, low*a.width(), high*a.width())
-	if err == nil {
-		a.number.widen(to, data)
+	const step = 32 << 10 // tuples that are decoded together
+	for ; low < high; low += step {
+		behind := min(low+step, high)
+		data, err := a.bytes(c, low*a.width(), behind*a.width())
+		if err != nil {
+			return err
+		}
+		n := (behind - low) * components
+		a.widen(to[:n], data)
+		to = to[n:]
 	}
-	return err
+	return nil
+}
+
+// wholes returns the values [low, high) of an array of whole numbers with one
+// component, valid until the worker's next call for the same array.
+func (a *column) wholes(c *cursor, low, high int64) ([]int64, error) {
+	if most := int64(1) << 59; low > most || high > most {
+		return nil, a.fail(truncated("value %d needed", high-1))
+	}
+	data, err := a.bytes(c, low*a.number.size(), high*a.number.size())
+	if err != nil {
+		return nil, err
+	}
+	s := &c.slots[a.slot]
+	s.labels = grown(s.labels, int(high-low))
+	a.number.integers(s.labels, data)
+	return s.labels, nil
+}
+
+// nearStep is how many values near reads together.
+const nearStep = 1024
+
+// near is wholes for ranges that are short and close to each other.
+func (a *column) near(c *cursor, low, high int64) ([]int64, error) {
+	s := &c.slots[a.slot]
+	if s.owner != a || low < s.nearLow || high > s.nearLow+int64(len(s.near)) {
+		values, err := a.wholes(c, low, max(high, min(low+nearStep, a.Tuples)))
+		if err != nil {
+			return nil, err
+		}
+		s.near, s.nearLow = append(s.near[:0], values...), low
+	}
+	return s.near[low-s.nearLow : high-s.nearLow], nil
+}
+
+// countTuples sets the number of tuples of an array of which it is not declared.
+func (a *column) countTuples(c *cursor) error {
+	switch {
+	case a.form == textForm:
+		_, words, _, err := a.text.page(&c.hand, room(&c.page, pageSize+1), math.MaxInt64)
+		if err != nil {
+			return a.fail(err)
+		}
+		a.Tuples = words / int64(a.Components)
+	case a.width() > 0:
+		a.Tuples = a.length / a.width()
+	}
+	return nil
 }
 
 // labels returns the tuples [low, high), of one component, as whole numbers.
@@ -238,15 +333,17 @@ func (a *column) labels(c *cursor, low, high int64) ([]int64, error) {
 		return nil, err
 	}
 	s := &c.slots[a.slot]
-	if count := int(high - low); cap(s.labels) < count {
-		s.labels = make([]int64, count)
-	}
-	s.labels = s.labels[:high-low]
+	s.labels = grown(s.labels, int(high-low))
 	a.number.label(s.labels, data)
+	if a.isLevel {
+		for i, level := range s.labels {
+			s.labels[i] = min(level, mesh.DuplicateCell)
+		}
+	}
 	return s.labels, nil
 }
 
 // describe says what the array is, for messages.
 func (a *column) describe() string {
-	return fmt.Sprintf("%s with %d components", a.number, a.Components)
+	return fmt.Sprintf("%s with %s", a.number, counted(a.Components, "component"))
 }

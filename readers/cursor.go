@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"slices"
 
 	"strainledger/mesh"
 )
@@ -13,12 +14,57 @@ type piece struct {
 	file       *file
 	cellCount  int64
 	pointCount int64
-	points     *column // x y z
+	firstCell  int64   // number of its first cell in the file
+	points     *column // x y z; nil where the grid tells them
+	grid       *grid   // of structured data, else nil
 	sections   []section
+	faces      *faceArrays
 	arrays     []*column // in the order of mesh.Piece.Arrays
+	fields     []*column // arrays of the data set that have tuples for its cells
 	ghosts     *column   // ghost marks of cells
-	isLevel    bool      // the ghost marks are levels: above 0 means duplicate
-	degrees    *column   // orders of Lagrange and Bézier cells
+	degrees    *column   // of Lagrange and Bézier cells
+	weights    string    // point array of rational weights
+	isOldOrder bool      // Lagrange and Bézier hexahedra have their edges in the old order
+}
+
+// columns returns all columns of the piece.
+func (p *piece) columns() []*column {
+	columns := slices.Concat(p.arrays, p.fields, p.faces.columns())
+	if p.points != nil {
+		columns = append(columns, p.points)
+	}
+	if p.grid != nil {
+		columns = append(columns, p.grid.columns()...)
+	}
+	for i := range p.sections {
+		columns = append(columns, p.sections[i].columns()...)
+	}
+	return columns
+}
+
+// numberSlots gives each column of the piece its place among a cursor's buffers and
+// returns their number.
+func (p *piece) numberSlots() int {
+	columns := p.columns()
+	for i, a := range columns {
+		a.slot = i
+	}
+	return len(columns)
+}
+
+// runCells returns how many cells are best read in one go: enough that the blocks
+// at the ends of a run, which two workers decode, do not matter.
+func (p *piece) runCells() int {
+	cells := int64(0)
+	for _, a := range p.columns() {
+		if a.form != blockForm || a.On != mesh.OnCell || p.cellCount == 0 {
+			continue
+		}
+		const blocksInRun = 6
+		perCell := max(1, a.length/p.cellCount)
+		cells = max(cells, 4*chunkCells, blocksInRun*a.blocks.size/perCell)
+	}
+	return int(min(cells, p.cellCount))
 }
 
 // find returns a point or cell array of the piece.
@@ -43,17 +89,22 @@ type cursor struct {
 
 	text, page, decoded, packed []byte // scratch of the decoders, each with one user at a time
 
-	types    []mesh.CellType
-	shapes   []*mesh.Shape
-	known    [256]knownShape // the last of each cell type
-	start    []int32
-	nodes    []int32
-	hidden   []uint8
-	integers []int64
-	list     []int64 // entries of a cell list
-	stopped  listPlace
-	values   [][]float64
-	labels   [][]int64
+	types     []mesh.CellType
+	shapes    []*mesh.Shape
+	known     [256]knownShape // the last of each cell type
+	start     []int32
+	nodes     []int32
+	hidden    []uint8
+	faces     []int32
+	faceStart []int32
+	seen      map[int32]bool // nodes of one polyhedron
+	degrees   []int64
+	integers  []int64
+	list      []int64 // entries of a cell list
+	stopped   listPlace
+	values    [][]float64
+	labels    [][]int64
+	fields    [][]float64
 }
 
 func newCursor(pieces []*piece, slots int) *cursor {
@@ -71,6 +122,9 @@ func (c *cursor) Points(ctx context.Context, piece int, low, high int64, to []fl
 	}
 	if err := ctx.Err(); err != nil || low == high {
 		return err
+	}
+	if p.points == nil {
+		return c.hand.located(p.grid.pointsTo(c, low, high, to))
 	}
 	return c.hand.located(p.points.valuesTo(c, low, high, to))
 }
@@ -106,29 +160,35 @@ func (c *cursor) Cells(ctx context.Context, span mesh.Span, want *mesh.Want, to 
 func (c *cursor) fill(p *piece, span mesh.Span, want *mesh.Want, to *mesh.Chunk) error {
 	to.Count = int(span.High - span.Low)
 	to.Types, to.Shapes, to.Start, to.Nodes, to.Hidden = nil, nil, nil, nil, nil
-	to.Faces, to.FaceStart, to.Values, to.Labels = nil, nil, nil, nil
+	to.Faces, to.FaceStart, to.Values, to.Labels, to.FieldValues = nil, nil, nil, nil, nil
 	if err := c.topology(p, span, want.NoNodes); err != nil {
 		return err
 	}
 	to.Types = c.types
-	if err := c.ghosts(p, span, to); err != nil {
+	var err error
+	if to.Hidden, err = c.marks(p, span); err != nil {
 		return err
 	}
-	if want.NoNodes {
-		return c.cellArrays(p, span, want, to)
+	if !want.NoNodes {
+		if err := c.finishNodes(p, span); err != nil {
+			return err
+		}
+		to.Start, to.Nodes, to.Shapes = c.start, c.nodes, c.shapes
+		if len(c.faceStart) == to.Count+1 {
+			to.Faces, to.FaceStart = c.faces, c.faceStart
+		}
 	}
-	to.Start, to.Nodes = c.start, c.nodes
-	if err := c.findShapes(p, span); err != nil {
-		return err
-	}
-	to.Shapes = c.shapes
 	return c.cellArrays(p, span, want, to)
 }
 
 // topology fills types, starts and nodes.
 func (c *cursor) topology(p *piece, span mesh.Span, noNodes bool) error {
-	c.types, c.nodes = c.types[:0], c.nodes[:0]
+	c.types, c.nodes, c.faceStart = c.types[:0], c.nodes[:0], c.faceStart[:0]
 	c.start = append(c.start[:0], 0)
+	if p.grid != nil {
+		p.grid.read(c, span.Low, span.High, noNodes)
+		return nil
+	}
 	for i := range p.sections {
 		s := &p.sections[i]
 		low, high := max(span.Low, s.first)-s.first, min(span.High, s.first+s.count)-s.first
@@ -142,46 +202,74 @@ func (c *cursor) topology(p *piece, span mesh.Span, noNodes bool) error {
 	return nil
 }
 
-// ghosts fills the marks of cells that are not to be counted.
-func (c *cursor) ghosts(p *piece, span mesh.Span, to *mesh.Chunk) error {
-	if p.ghosts == nil {
-		return nil
+// marks returns the marks of cells that are not to be counted, nil without any.
+func (c *cursor) marks(p *piece, span mesh.Span) ([]uint8, error) {
+	var marks []uint8
+	if p.ghosts != nil {
+		labels, err := p.ghosts.labels(c, span.Low, span.High)
+		if err != nil {
+			return nil, err
+		}
+		c.hidden = c.hidden[:0]
+		for _, label := range labels {
+			c.hidden = append(c.hidden, uint8(label))
+		}
+		marks = c.hidden
 	}
-	marks, err := p.ghosts.labels(c, span.Low, span.High)
+	if p.grid != nil {
+		return p.grid.hide(c, span.Low, span.High, marks)
+	}
+	return marks, nil
+}
+
+// finishNodes adds the faces of polyhedra, brings nodes into order and finds shapes.
+func (c *cursor) finishNodes(p *piece, span mesh.Span) error {
+	if len(c.faceStart) == 0 && slices.Contains(c.types, mesh.Polyhedron) {
+		if err := p.faces.read(c, p, c.types, span.Low, span.High); err != nil {
+			return err
+		}
+	}
+	degrees, err := c.readDegrees(p, span)
 	if err != nil {
 		return err
 	}
-	c.hidden = c.hidden[:0]
-	for _, mark := range marks {
-		if p.isLevel {
-			mark = min(mark, 1) // a level above 0 is a duplicate
-		}
-		c.hidden = append(c.hidden, uint8(mark))
+	if p.isOldOrder {
+		c.reorder(degrees)
 	}
-	to.Hidden = c.hidden
-	return nil
+	return c.findShapes(p, span, degrees)
 }
 
-// findShapes looks up what each cell is by its type and node count.
-func (c *cursor) findShapes(p *piece, span mesh.Span) error {
+// findShapes looks up what each cell is by its type, node count and degrees.
+func (c *cursor) findShapes(p *piece, span mesh.Span, degrees []int64) error {
 	if cap(c.shapes) < len(c.types) {
 		c.shapes = make([]*mesh.Shape, len(c.types))
 	}
 	c.shapes = c.shapes[:len(c.types)]
 	for i, cellType := range c.types {
 		known, count := &c.known[cellType], c.start[i+1]-c.start[i]
-		if known.shape == nil || known.nodes != count {
-			shape, err := mesh.ShapeOf(cellType, int(count), [3]int{})
+		hasDegrees := degrees != nil && isHigherOrder(cellType)
+		if known.shape == nil || known.nodes != count || hasDegrees {
+			var own [3]int
+			if hasDegrees {
+				own = [3]int{int(degrees[3*i]), int(degrees[3*i+1]), int(degrees[3*i+2])}
+			}
+			shape, err := mesh.ShapeOf(cellType, int(count), own)
 			if err != nil {
 				return p.cellError(nil, span.Low+int64(i), malformed("%v", err))
 			}
 			*known = knownShape{shape, count}
+			if hasDegrees {
+				known.shape = nil // the next cell may differ
+			}
+			c.shapes[i] = shape
+			continue
 		}
 		c.shapes[i] = known.shape
 	}
 	return nil
 }
 
+// A knownShape is a shape with the node count for which it was looked up.
 type knownShape struct {
 	shape *mesh.Shape
 	nodes int32
@@ -216,5 +304,29 @@ func (c *cursor) cellArrays(p *piece, span mesh.Span, want *mesh.Want, to *mesh.
 		c.labels = append(c.labels, labels)
 	}
 	to.Values, to.Labels = c.values, c.labels
+	if len(want.FieldValues) == 0 {
+		return nil
+	}
+	c.fields = c.fields[:0]
+	for _, name := range want.FieldValues {
+		values, err := c.fieldValues(p, span, name)
+		if err != nil {
+			return err
+		}
+		c.fields = append(c.fields, values)
+	}
+	to.FieldValues = c.fields
 	return nil
+}
+
+// fieldValues returns the tuples of a field array that belong to the cells of a span.
+// The array has as many for each cell of the file.
+func (c *cursor) fieldValues(p *piece, span mesh.Span, name string) ([]float64, error) {
+	for _, a := range p.fields {
+		if a.Name == name {
+			tuples := a.perCell
+			return a.values(c, (p.firstCell+span.Low)*tuples, (p.firstCell+span.High)*tuples)
+		}
+	}
+	return nil, &Error{Path: p.file.path, Array: name, Err: malformed("found no such field array with tuples for each cell")}
 }

@@ -81,3 +81,11 @@ func placed(path string, err error) error {
 	}
 	return &Error{Path: path, Err: err}
 }
+
+// reasonOf returns the reason behind an error's place, or the error itself.
+func reasonOf(err error) error {
+	if place, ok := err.(*Error); ok {
+		return place.Err
+	}
+	return err
+}

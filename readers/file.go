@@ -13,6 +13,7 @@ type file struct {
 	path    string // as given, for messages
 	disk    string // what the system opens
 	size    int64
+	bytes   int64 // of the file on disk, which may be compressed
 	text    int64 // bytes at the beginning that are text, for line numbers in messages
 	content io.ReaderAt
 }

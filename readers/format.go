@@ -9,6 +9,14 @@ import (
 // formatCount writes a whole number.
 func formatCount(n int64) string { return strconv.FormatInt(n, 10) }
 
+// counted writes a number of things.
+func counted(n int, thing string) string {
+	if n == 1 {
+		return "1 " + thing
+	}
+	return strconv.Itoa(n) + " " + thing + "s"
+}
+
 // formatNumber writes the shortest text that reads back to the number.
 func formatNumber(value float64) string { return strconv.FormatFloat(value, 'g', -1, 64) }
 

@@ -12,37 +12,49 @@ import (
 // title it is a stream of words; in binary files the values between them are
 // big-endian and begin behind the end of the line.
 type legacyFile struct {
-	file     *file
-	window   *window
-	cursor   *cursor
-	limits   Limits
-	isBinary bool
-	version  int // 100 × major + minor
-	kind     string
-	piece    *piece
-	fields   []*column
-	ends     bool // no more words
+	file      *file
+	window    *window
+	cursor    *cursor
+	limits    Limits
+	isBinary  bool
+	version   int // 100 × major + minor
+	kind      string
+	piece     *piece
+	sections  map[string]*section // by keyword
+	types     *column
+	grid      legacyGrid
+	fields    []*column
+	texts     map[*column][]string // strings of field arrays
+	textBytes int64
+	ends      bool // no more words
 }
 
 // readLegacy reads a legacy file as one block.
-func (o *opener) readLegacy(f *file, name string) error {
+func (o *opener) readLegacy(f *file, at branch) error {
+	if at.kind != "" {
+		return f.fail(0, malformed("found a legacy file as a piece, need an XML file of type %s", at.kind))
+	}
 	l := &legacyFile{
 		file: f, window: newWindow(&o.cursor.hand, f), cursor: o.cursor, limits: o.limits,
-		piece: &piece{file: f},
+		piece: &piece{file: f}, sections: map[string]*section{}, texts: map[*column][]string{},
 	}
 	if err := l.read(); err != nil {
 		return err
 	}
-	source := mesh.Source{Path: f.path, Bytes: f.size, Time: math.NaN()}
+	source := mesh.Source{Path: f.path, Bytes: f.bytes, Time: math.NaN()}
 	for _, a := range l.fields {
-		o.model.Fields = append(o.model.Fields, a.Array)
-		if err := o.takeTime(a, &source); err != nil {
+		if err := o.addField(a, &source, l.texts[a]); err != nil {
 			return err
 		}
 	}
-	if err := o.addPiece(l.piece, &source, o.block(name)); err != nil {
-		return err
+	if !math.IsNaN(at.time) {
+		source.Time = at.time
 	}
+	set := o.newSet(at.name)
+	if err := o.addPiece(l.piece, &source, set); err != nil {
+		return placed(f.path, err)
+	}
+	o.shareFields([]*piece{l.piece}, l.fields, source.Cells)
 	o.model.Sources = append(o.model.Sources, source)
 	return nil
 }
@@ -52,23 +64,47 @@ func (l *legacyFile) read() error {
 	if err := l.begin(); err != nil {
 		return err
 	}
-	keyword, err := l.keyword()
+	if err := l.readKind(); err != nil {
+		return err
+	}
+	keyword, err := l.geometry()
 	if err != nil {
 		return err
 	}
-	if keyword != "DATASET" {
-		return l.window.fail(malformed("found %.40q, need DATASET", keyword))
-	}
-	if l.kind, err = l.keyword(); err != nil {
+	if err := l.closeGeometry(); err != nil {
 		return err
 	}
-	if l.kind != "UNSTRUCTURED_GRID" {
-		return l.window.fail(unsupported("found data set of kind %.40q", l.kind))
+	if keyword != "" {
+		return l.attributes(keyword)
 	}
-	if err := l.geometry(); err != nil {
-		return err
+	return nil
+}
+
+// readKind reads DATASET and its kind, before which FIELD may stand.
+func (l *legacyFile) readKind() error {
+	for {
+		keyword, err := l.keyword()
+		if err != nil {
+			return err
+		}
+		switch keyword {
+		case "FIELD":
+			if err := l.field(mesh.OnField, -1); err != nil {
+				return err
+			}
+			continue
+		case "DATASET":
+		default:
+			return l.window.fail(malformed("found %.40q, need DATASET", keyword))
+		}
+		if l.kind, err = l.keyword(); err != nil {
+			return err
+		}
+		if legacyKinds[l.kind] == nil {
+			return l.window.fail(unsupported("found data set of kind %.40q, need UNSTRUCTURED_GRID, POLYDATA, STRUCTURED_GRID, RECTILINEAR_GRID or STRUCTURED_POINTS", l.kind))
+		}
+		return nil
 	}
-	return l.check()
 }
 
 // begin reads the three lines before the words.
@@ -101,56 +137,102 @@ func (l *legacyFile) begin() error {
 	return nil
 }
 
-// geometry reads the sections of the file one by one.
-func (l *legacyFile) geometry() error {
+// legacyKinds lists the keywords that describe the geometry of each kind of data set.
+var legacyKinds = map[string]map[string]func(*legacyFile, string) error{
+	"UNSTRUCTURED_GRID": {
+		"POINTS": (*legacyFile).points, "CELLS": (*legacyFile).cells, "CELL_TYPES": (*legacyFile).cellTypes,
+	},
+	"POLYDATA": {
+		"POINTS": (*legacyFile).points, "VERTICES": (*legacyFile).cells, "LINES": (*legacyFile).cells,
+		"POLYGONS": (*legacyFile).cells, "TRIANGLE_STRIPS": (*legacyFile).cells,
+	},
+	"STRUCTURED_GRID": {
+		"DIMENSIONS": (*legacyFile).dimensions, "POINTS": (*legacyFile).points, "BLANKING": (*legacyFile).blanking,
+	},
+	"RECTILINEAR_GRID": {
+		"DIMENSIONS": (*legacyFile).dimensions, "X_COORDINATES": (*legacyFile).coordinates,
+		"Y_COORDINATES": (*legacyFile).coordinates, "Z_COORDINATES": (*legacyFile).coordinates,
+	},
+	"STRUCTURED_POINTS": {
+		"DIMENSIONS": (*legacyFile).dimensions, "ORIGIN": (*legacyFile).origin,
+		"SPACING": (*legacyFile).spacing, "ASPECT_RATIO": (*legacyFile).spacing,
+	},
+}
+
+// geometry reads the sections before point and cell data, in any order, and returns
+// the keyword with which those begin.
+func (l *legacyFile) geometry() (string, error) {
 	for {
 		keyword, err := l.keyword()
 		if err != nil || l.ends {
-			return err
+			return "", err
 		}
-		switch keyword {
-		case "POINTS":
-			err = l.points()
-		case "CELLS":
-			err = l.cells()
-		case "CELL_TYPES":
-			err = l.cellTypes()
-		case "FIELD":
+		read := legacyKinds[l.kind][keyword]
+		switch {
+		case keyword == "POINT_DATA" || keyword == "CELL_DATA":
+			return keyword, nil
+		case keyword == "FIELD":
 			err = l.field(mesh.OnField, -1)
-		case "METADATA":
+		case keyword == "METADATA":
 			err = l.metadata(nil)
-		case "POINT_DATA", "CELL_DATA":
-			return l.attributes(keyword)
+		case read != nil:
+			err = read(l, keyword)
 		default:
-			err = l.window.fail(malformed("found %.40q, need POINTS, CELLS, CELL_TYPES, FIELD, POINT_DATA or CELL_DATA", keyword))
+			err = l.window.fail(malformed("found %.40q, need a keyword of %s, FIELD, POINT_DATA or CELL_DATA", keyword, l.kind))
 		}
 		if err != nil {
-			return err
+			return "", err
 		}
 	}
 }
 
-// check compares the parts with each other.
-func (l *legacyFile) check() error {
-	p := l.piece
-	if len(p.sections) == 0 {
+// closeGeometry compares the parts with each other and makes the cells.
+func (l *legacyFile) closeGeometry() error {
+	l.piece.isOldOrder = l.version < 501
+	switch l.kind {
+	case "UNSTRUCTURED_GRID":
+		return l.closeUnstructured()
+	case "POLYDATA":
+		l.closePolygons()
 		return nil
 	}
-	s := &p.sections[0]
-	if s.types == nil && p.cellCount > 0 {
-		return l.file.fail(l.file.size, truncated("found %d cells and no CELL_TYPES", p.cellCount))
+	return l.closeGrid()
+}
+
+func (l *legacyFile) closeUnstructured() error {
+	p := l.piece
+	if len(l.sections) == 0 && l.types == nil {
+		return nil
 	}
-	if s.types != nil && s.types.Tuples != p.cellCount {
-		return s.types.fail(malformed("found types of %d cells, need %d", s.types.Tuples, p.cellCount))
+	s := l.sections["CELLS"]
+	switch {
+	case s == nil && l.types.Tuples > 0:
+		return l.types.fail(malformed("found types of %d cells and no CELLS", l.types.Tuples))
+	case s == nil || l.types == nil && s.count == 0:
+		return nil
+	case l.types == nil:
+		return l.file.fail(l.window.offset(), malformed("found %d cells and no CELL_TYPES", s.count))
+	case l.types.Tuples != s.count:
+		return l.types.fail(malformed("found types of %d cells, need %d", l.types.Tuples, s.count))
 	}
-	if s.connectivity == nil && s.list == nil && p.cellCount > 0 {
-		return l.file.fail(l.file.size, truncated("found types of %d cells and no CELLS", p.cellCount))
-	}
+	s.types, s.hasStreams = l.types, true
+	p.sections, p.cellCount = []section{*s}, s.count
 	return nil
 }
 
+// closePolygons orders the cells as they are numbered: by kind.
+func (l *legacyFile) closePolygons() {
+	for rule, keyword := range []string{"VERTICES", "LINES", "POLYGONS", "TRIANGLE_STRIPS"} {
+		if s := l.sections[keyword]; s != nil {
+			s.first, s.rule = l.piece.cellCount, polygonRule(rule)
+			l.piece.sections = append(l.piece.sections, *s)
+			l.piece.cellCount += s.count
+		}
+	}
+}
+
 // points reads POINTS n type.
-func (l *legacyFile) points() error {
+func (l *legacyFile) points(string) error {
 	count, err := l.count("points")
 	if err != nil {
 		return err
@@ -163,44 +245,38 @@ func (l *legacyFile) points() error {
 	return err
 }
 
-// section returns the one run of cells of an unstructured grid.
-func (l *legacyFile) section() *section {
-	if len(l.piece.sections) == 0 {
-		l.piece.sections = []section{{}}
-	}
-	return &l.piece.sections[0]
-}
-
-// cells reads CELLS in the layout of the file's version: before 5 a list with the
-// node count before each cell's nodes, from 5 on two arrays.
-func (l *legacyFile) cells() error {
-	first, err := l.count("cells")
+// cells reads a list of cells in the layout of the file's version: before 5 a list
+// with the node count before each cell's nodes, from 5 on two arrays.
+func (l *legacyFile) cells(keyword string) error {
+	cells, err := l.count("cells")
 	if err != nil {
 		return err
 	}
-	size, err := l.count("entries")
+	entries, err := l.count("entries")
 	if err != nil {
 		return err
 	}
-	s := l.section()
+	if l.sections[keyword] != nil {
+		return l.window.fail(malformed("found %s twice", keyword))
+	}
+	s := &section{count: cells}
+	l.sections[keyword] = s
 	if l.version >= 500 {
-		return l.cellArrays(s, first, size)
+		return l.cellArrays(s, cells, entries)
 	}
-	if first > size {
-		return l.window.fail(malformed("found %d cells in %d entries, need an entry for each cell and each node", first, size))
+	if cells > entries {
+		return l.window.fail(malformed("found %d cells in %d entries, need an entry for each cell and each node", cells, entries))
 	}
-	s.count, l.piece.cellCount = first, first
-	a, err := l.values("CELLS", mesh.OnCell, int32Number, 1, size)
-	s.list = &cellList{column: a, cells: first}
+	a, err := l.values(keyword, mesh.OnCell, int32Number, 1, entries)
+	s.list = &cellList{column: a}
 	return err
 }
 
 // cellArrays reads OFFSETS and CONNECTIVITY.
 func (l *legacyFile) cellArrays(s *section, offsets, entries int64) error {
-	if offsets == 0 {
+	if s.count = max(0, offsets-1); offsets == 0 {
 		return nil
 	}
-	s.count, l.piece.cellCount = offsets-1, offsets-1
 	s.isLed = true
 	for _, part := range []struct {
 		name  string
@@ -224,12 +300,12 @@ func (l *legacyFile) cellArrays(s *section, offsets, entries int64) error {
 	return nil
 }
 
-func (l *legacyFile) cellTypes() error {
+func (l *legacyFile) cellTypes(string) error {
 	count, err := l.count("cell types")
 	if err != nil {
 		return err
 	}
-	l.section().types, err = l.values("CELL_TYPES", mesh.OnCell, int32Number, 1, count)
+	l.types, err = l.values("CELL_TYPES", mesh.OnCell, int32Number, 1, count)
 	return err
 }
 
@@ -287,14 +363,13 @@ func (l *legacyFile) keep(a *column) {
 			return
 		}
 	}
-	isLevel := a.Name == "vtkGhostLevels" && l.version < 400
-	if a.On == mesh.OnCell && a.Components == 1 && a.number.isInteger() && (isLevel || a.Name == "vtkGhostType") {
-		p.ghosts, p.isLevel = a, isLevel
-	}
 	if a.On == mesh.OnCell && a.Name == "HigherOrderDegrees" && a.Components == 3 {
 		p.degrees = a
 	}
-	p.arrays = append(p.arrays, a)
+	if a.On == mesh.OnPoint && a.Name == "RationalWeights" && a.Components == 1 {
+		p.weights = a.Name
+	}
+	p.keep(a, l.version < 400)
 }
 
 // scalars reads SCALARS name type [components], which may be followed by the name
@@ -355,15 +430,23 @@ func (l *legacyFile) sized(keyword string, on mesh.Location, tuples int64) error
 	if err != nil {
 		return err
 	}
-	n := legacyNumber{uint8Number, false}
+	n := legacyNumber{number: uint8Number}
 	if keyword == "TEXTURE_COORDINATES" {
 		if n, err = l.numberType(); err != nil {
 			return err
 		}
 	} else if !l.isBinary {
-		n.number = float32Number // 0 to 1
+		n.number = float32Number
 	}
-	return l.kept(name, on, n, components, tuples)
+	a, err := l.typed(name, on, n, components, tuples)
+	if err != nil {
+		return err
+	}
+	if keyword == "COLOR_SCALARS" && !l.isBinary {
+		a.Type, a.isColour = uint8Number.String(), true
+	}
+	l.keep(a)
+	return l.trailing(a)
 }
 
 func (l *legacyFile) kept(name string, on mesh.Location, n legacyNumber, components, tuples int64) error {

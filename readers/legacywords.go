@@ -109,20 +109,21 @@ func (l *legacyFile) sameLine() bool {
 }
 
 // A legacyNumber is a number type of the legacy format. Long has 8 bytes or, from
-// some systems, 4.
+// some systems, 4. The numbers that VTK keeps as its own integers take 4 bytes.
 type legacyNumber struct {
 	number number
 	isLong bool
+	isID   bool
 }
 
 var legacyNumbers = map[string]legacyNumber{
-	"bit": {bitNumber, false}, "char": {int8Number, false}, "signed_char": {int8Number, false},
-	"unsigned_char": {uint8Number, false}, "short": {int16Number, false}, "unsigned_short": {uint16Number, false},
-	"int": {int32Number, false}, "unsigned_int": {uint32Number, false},
-	"long": {int64Number, true}, "unsigned_long": {uint64Number, true},
-	"vtktypeint64": {int64Number, false}, "vtktypeuint64": {uint64Number, false},
-	"vtkidtype": {int32Number, false}, "float": {float32Number, false}, "double": {float64Number, false},
-	"string": {stringNumber, false}, "utf8_string": {stringNumber, false},
+	"bit": {number: bitNumber}, "char": {number: int8Number}, "signed_char": {number: int8Number},
+	"unsigned_char": {number: uint8Number}, "short": {number: int16Number}, "unsigned_short": {number: uint16Number},
+	"int": {number: int32Number}, "unsigned_int": {number: uint32Number},
+	"long": {number: int64Number, isLong: true}, "unsigned_long": {number: uint64Number, isLong: true},
+	"vtktypeint64": {number: int64Number}, "vtktypeuint64": {number: uint64Number},
+	"vtkidtype": {number: int32Number, isID: true}, "float": {number: float32Number}, "double": {number: float64Number},
+	"string": {number: stringNumber}, "utf8_string": {number: stringNumber},
 }
 
 // numberType returns the next word as a number type.
@@ -154,6 +155,16 @@ func (l *legacyFile) array(name string, on mesh.Location, components, tuples int
 // typed passes over the values of an array. Where long may have two sizes, that is
 // taken which makes a word follow the values.
 func (l *legacyFile) typed(name string, on mesh.Location, n legacyNumber, components, tuples int64) (*column, error) {
+	if n.isID {
+		if !l.isBinary {
+			n.number = int64Number
+		}
+		a, err := l.values(name, on, n.number, components, tuples)
+		if err == nil {
+			a.Type = int64Number.String()
+		}
+		return a, err
+	}
 	start := l.window.offset()
 	a, err := l.values(name, on, n.number, components, tuples)
 	if !n.isLong || !l.isBinary || tuples == 0 {
@@ -227,7 +238,7 @@ func (l *legacyFile) binaryValues(a *column, count int64) error {
 	}
 	a.start = l.window.offset()
 	if found := l.file.size - a.start; bytes > found {
-		return a.fail(truncated("%d tuples with %d components need %d bytes, found %d", a.Tuples, a.Components, bytes, found))
+		return a.fail(truncated("%d tuples with %s need %d bytes, found %d", a.Tuples, counted(a.Components, "component"), bytes, found))
 	}
 	if a.number != bitNumber {
 		a.payload = payload{form: plainForm, length: bytes, stored: stored{file: l.file, start: a.start}}
@@ -239,7 +250,7 @@ func (l *legacyFile) binaryValues(a *column, count int64) error {
 // textValues passes over words and keeps the index that counting them makes.
 func (l *legacyFile) textValues(a *column, count int64) error {
 	if room := (l.file.size - a.start + 1) / 2; count > room {
-		return a.fail(truncated("%d tuples with %d components need %d values, found room for %d", a.Tuples, a.Components, count, room))
+		return a.fail(truncated("%d tuples with %s need %d values, found room for %d", a.Tuples, counted(a.Components, "component"), count, room))
 	}
 	text := newIndex(l.file, a.start, l.file.size, true)
 	c := l.cursor
@@ -248,7 +259,7 @@ func (l *legacyFile) textValues(a *column, count int64) error {
 		return a.fail(err)
 	}
 	if !found {
-		return a.fail(truncated("%d tuples with %d components need %d values, found %d", a.Tuples, a.Components, count, before))
+		return a.fail(truncated("%d tuples with %s need %d values, found %d", a.Tuples, counted(a.Components, "component"), count, before))
 	}
 	words := &words{hand: &c.hand}
 	if err := words.seek(text, page, before, count-1); err != nil {
@@ -273,11 +284,21 @@ func (l *legacyFile) textStrings(a *column, count int64) error {
 		return a.fail(truncated("%d strings needed, found %d bytes", count, found))
 	}
 	for range count {
-		if _, err := l.line(); err != nil {
+		line, err := l.line()
+		if err != nil {
 			return err
 		}
+		l.keepText(a, decodePercent(line))
 	}
 	return nil
+}
+
+// keepText notes a string of a field array, of long ones the first.
+func (l *legacyFile) keepText(a *column, text string) {
+	if a.On == mesh.OnField && l.textBytes+int64(len(text)) <= l.limits.Text {
+		l.textBytes += int64(len(text)) + 16
+		l.texts[a] = append(l.texts[a], strings.ToValidUTF8(text, "\ufffd"))
+	}
 }
 
 // binaryStrings passes over strings, each behind its length in 1, 2, 4 or 8 bytes,
@@ -305,6 +326,13 @@ func (l *legacyFile) binaryStrings(a *column, count int64) error {
 		offset += size
 		if found := l.file.size - offset; length > uint64(found) {
 			return a.fail(truncated("string %d of %d has %d bytes by its length, found %d", i, count, length, found))
+		}
+		if a.On == mesh.OnField && int64(length) <= l.limits.Text {
+			text := make([]byte, length)
+			if err := l.cursor.hand.readAt(l.file, text, offset); err != nil {
+				return a.fail(err)
+			}
+			l.keepText(a, string(text))
 		}
 		offset += int64(length)
 	}

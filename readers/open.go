@@ -1,9 +1,11 @@
 // Package readers turns result files into streams of cells: bytes to mesh, nothing
 // computed.
 //
-// It reads VTK's open formats: the XML family and the legacy format. Files are told
-// apart by their content, never by their names. [Open] reads headers alone; arrays
-// come chunk by chunk through the model's cursors, and only those that are asked for.
+// It reads VTK's open formats: the XML family with its parallel and composite files
+// and collections, and the legacy format; each also compressed as a whole (gzip,
+// Zstandard, xz). Files are told apart by their content, never by their names. [Open]
+// reads headers alone; arrays come chunk by chunk through the model's cursors, and
+// only those that are asked for.
 //
 // A file is never believed. Counts are compared with what the file can hold before
 // anything is allocated for them, every point number and every cell is checked
@@ -14,12 +16,11 @@ package readers
 import (
 	"bytes"
 	"context"
-	"errors"
+	"io"
 	"math"
 	"os"
 	"path/filepath"
 	"slices"
-	"strconv"
 
 	"strainledger/mesh"
 )
@@ -28,281 +29,239 @@ import (
 type Options struct {
 	Limits       Limits
 	Time         Time
-	AllowOutside bool // follow references that leave the folder of the file that makes them
+	AllowOutside bool      // follow references that leave the folder of the file that was named
+	Stdin        io.Reader // what the path "-" stands for; nil: the process's own
 }
 
-// A Choice is a way to pick one state of several.
-type Choice uint8
-
-// The choices of a state.
-const (
-	Last Choice = iota
-	First
-	AtNumber
-)
-
-// A Time says which state is read. The zero value is the last.
-type Time struct {
-	Choice Choice
-	Number float64 // for AtNumber; must agree with a state's time to 1e-9 of it
-}
-
-// pick returns the index of the state among the times, which rise.
-func (t Time) pick(times []float64) (int, error) {
-	switch {
-	case t.Choice == First:
-		return 0, nil
-	case t.Choice == Last:
-		return len(times) - 1, nil
+// Open reads the headers of the files, which are blocks of one model, and returns
+// what they hold. The path "-" is standard input. Close the model after use.
+func Open(ctx context.Context, paths []string, options Options) (*mesh.Model, error) {
+	o := &opener{
+		ctx: ctx, options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, 1),
+		model: &mesh.Model{}, taken: map[string]bool{},
 	}
-	for i, time := range times {
-		if math.Abs(time-t.Number) <= 1e-9*math.Abs(t.Number) {
-			return i, nil
+	defer o.cursor.Close()
+	for _, path := range paths {
+		if err := o.add(path); err != nil {
+			o.close()
+			return nil, o.cursor.hand.located(placed(path, err))
 		}
 	}
-	return 0, &reason{ErrTime, "found no state at time " + formatNumber(t.Number) + ", need one of " + formatNumbers(times)}
+	if err := o.finish(); err != nil {
+		o.close()
+		return nil, placed(paths[0], err)
+	}
+	return o.model, nil
 }
 
 // An opener gathers a model from files.
 type opener struct {
+	ctx     context.Context
 	options Options
 	limits  Limits
 	cursor  *cursor // reads what headers need
 	model   *mesh.Model
 	pieces  []*piece
-	seen    map[string]bool // files named on the command line
+	taken   map[string]bool // files that are in the model, by clean path
+	root    string          // folder of the file that the call names
+	spools  []spoolFile     // temporary files
+	decoded int64           // bytes that compressed content decodes to
 }
 
-// Open reads the headers of the files, which are blocks of one model, and returns
-// what they hold.
-func Open(ctx context.Context, paths []string, options Options) (*mesh.Model, error) {
-	o := &opener{
-		options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, 1),
-		model: &mesh.Model{}, seen: map[string]bool{},
+// A branch is the place in the model at which a file is read.
+type branch struct {
+	name  string    // of the block, or what comes before the names of blocks
+	set   *pieceSet // to which the pieces belong; nil: they make one of their own
+	stack []string  // the files that led here, by clean path
+	time  float64   // that a collection gives, or NaN
+	kind  string    // the type of data set that must come; "" for any
+}
+
+// below returns the branch for something inside that has a name.
+func (b branch) below(name string) branch {
+	if b.name != "" {
+		name = b.name + "/" + name
 	}
-	defer o.cursor.Close()
-	for _, path := range paths {
-		if err := ctx.Err(); err != nil {
-			return nil, err
-		}
-		if err := o.add(path); err != nil {
-			return nil, o.cursor.hand.located(placed(path, err))
-		}
-	}
-	return o.finish(), nil
+	b.name = name
+	return b
 }
 
 // add reads one file of the call.
 func (o *opener) add(path string) error {
-	clean := filepath.Clean(path)
-	if o.seen[clean] {
-		return &reason{ErrReference, "file is named twice"}
+	if o.taken[filepath.Clean(path)] {
+		return &reason{ErrReference, "the file is named twice; name each block once"}
 	}
-	o.seen[clean] = true
-	f, err := openFile(path)
+	f, err := o.openFile(path)
 	if err != nil {
 		return err
 	}
+	o.root = filepath.Dir(path)
 	name := filepath.Base(path)
 	if slices.Contains(o.model.Blocks, name) {
 		name = filepath.ToSlash(path)
 	}
-	return o.read(f, name)
+	return o.read(f, branch{name: name, time: math.NaN()})
 }
 
-// openFile finds out how long a file is.
-func openFile(path string) (*file, error) {
+// openFile finds a file of the call.
+func (o *opener) openFile(path string) (*file, error) {
+	if path == "-" {
+		return o.spoolStdin()
+	}
 	info, err := os.Stat(path)
 	switch {
 	case err != nil:
-		return nil, errors.Unwrap(err)
+		return nil, pathReason(err)
 	case !info.Mode().IsRegular():
-		return nil, unsupported("found no regular file")
+		return nil, unsupported("found no regular file, need one; name standard input as -")
 	}
-	return &file{path: path, disk: path, size: info.Size()}, nil
+	return &file{path: path, disk: path, size: info.Size(), bytes: info.Size()}, nil
 }
 
 // headSize is how much of a file tells its form.
 const headSize = 1024
 
-// read reads a file of any form as blocks below a name.
-func (o *opener) read(f *file, name string) error {
-	head := make([]byte, min(headSize, f.size))
-	if err := o.cursor.hand.readAt(f, head, 0); err != nil {
+// read reads a file of any form.
+func (o *opener) read(f *file, at branch) error {
+	if err := o.ctx.Err(); err != nil {
+		return err
+	}
+	clean := filepath.Clean(f.path)
+	if slices.Contains(at.stack, clean) {
+		return f.fail(0, &reason{ErrReference, "the file refers to itself, directly or through others"})
+	}
+	at.stack = append(slices.Clone(at.stack), clean)
+	if len(at.stack) > o.limits.Depth {
+		return f.fail(0, overLimit("found files that refer to files more than %d deep", o.limits.Depth))
+	}
+	o.taken[clean] = true
+	f, err := o.unpack(f)
+	if err != nil {
+		return err
+	}
+	head, err := o.head(f)
+	if err != nil {
 		return err
 	}
 	switch {
 	case len(head) == 0:
 		return f.fail(0, truncated("found an empty file"))
 	case looksXML(head):
-		return o.readXML(f, name)
+		return o.readXML(f, at)
 	case bytes.HasPrefix(head, []byte("# vtk")):
-		return o.readLegacy(f, name)
+		return o.readLegacy(f, at)
+	case bytes.HasPrefix(head, []byte("\x89HDF\r\n\x1a\n")):
+		return f.fail(0, unsupported("found an HDF5 file; write the results as .vtu, .vtm or legacy .vtk"))
 	}
-	return f.fail(0, unsupported("found neither XML nor \"# vtk DataFile Version\" at its beginning; need a VTK file"))
+	return f.fail(0, unsupported("found neither XML nor \"# vtk DataFile Version\" at the beginning; need a VTK file"))
 }
 
-// readXML reads a file of the XML family.
-func (o *opener) readXML(f *file, name string) error {
+func (o *opener) head(f *file) ([]byte, error) {
+	head := make([]byte, min(headSize, f.size))
+	return head, o.cursor.hand.readAt(f, head, 0)
+}
+
+// looksXML reports whether a file begins as XML does.
+func looksXML(head []byte) bool {
+	head = bytes.TrimPrefix(head, []byte("\xef\xbb\xbf"))
+	head = bytes.TrimLeft(head, " \t\r\n")
+	return len(head) > 0 && head[0] == '<'
+}
+
+// readXML reads a file of the XML family by its type.
+func (o *opener) readXML(f *file, at branch) error {
 	x, err := readXML(f, o.cursor, o.limits)
 	if err != nil {
 		return err
 	}
-	if x.kind != "UnstructuredGrid" {
-		return placedAt(f, x.root, unsupported("found data set of type %.40q", x.kind))
-	}
 	if x.data = x.root.child(x.kind); x.data == nil {
-		return placedAt(f, x.root, malformed("found no element %s", x.kind))
+		return placedAt(f, x.root, malformed("found type=%.40q and no element of that name", x.kind))
 	}
-	return o.readSerial(x, name)
+	if at.kind != "" && x.kind != at.kind {
+		return placedAt(f, x.root, malformed("found a piece of type %.40q, need %s", x.kind, at.kind))
+	}
+	switch x.kind {
+	case "UnstructuredGrid", "PolyData", "ImageData", "RectilinearGrid", "StructuredGrid":
+		return o.readSerial(x, at)
+	case "PUnstructuredGrid", "PPolyData", "PImageData", "PRectilinearGrid", "PStructuredGrid":
+		return o.readParallel(x, at)
+	case "vtkMultiBlockDataSet", "vtkPartitionedDataSet", "vtkPartitionedDataSetCollection":
+		return o.readComposite(x, at)
+	case "Collection":
+		return o.readCollection(x, at)
+	}
+	return placedAt(f, x.root, unsupported("found data set of type %.40q, need grids, polygonal data, or files that refer to such", x.kind))
 }
 
-// readSerial reads a data set that is in one file.
-func (o *opener) readSerial(x *xmlFile, name string) error {
-	source := mesh.Source{Path: x.file.path, Bytes: x.file.size, Time: math.NaN()}
-	if err := o.fields(x, &source); err != nil {
-		return err
-	}
-	block := o.block(name)
-	for _, e := range x.data.children {
-		if e.name != "Piece" {
-			continue
-		}
-		p, err := x.unstructured(e)
-		if err != nil {
-			return err
-		}
-		if err := o.addPiece(p, &source, block); err != nil {
-			return placedAt(x.file, e, err)
-		}
-	}
-	o.model.Sources = append(o.model.Sources, source)
-	return nil
-}
-
-// block returns the index of a block, which is made when it is new.
-func (o *opener) block(name string) int {
-	o.model.Blocks = append(o.model.Blocks, name)
-	return len(o.model.Blocks) - 1
-}
-
-// fields reads the arrays of the data set as a whole, and the time among them.
-func (o *opener) fields(x *xmlFile, source *mesh.Source) error {
-	for _, e := range append(x.data.child("FieldData").arrays(), x.root.child("FieldData").arrays()...) {
-		a, err := x.column(e, mesh.OnField)
-		if err != nil {
-			return err
-		}
-		if tuples, ok := e.get("NumberOfTuples"); ok {
-			a.Tuples, err = strconv.ParseInt(tuples, 10, 64)
-			if err != nil || a.Tuples < 0 {
-				return placedAt(x.file, e, attributeError(e, "NumberOfTuples", tuples, "a count"))
-			}
-			if err := a.need(a.Tuples, "tuples"); err != nil {
-				return err
-			}
-		} else if a.width() > 0 {
-			a.Tuples = a.length / a.width()
-		}
-		o.model.Fields = append(o.model.Fields, a.Array)
-		if err := o.takeTime(a, source); err != nil {
-			return err
-		}
-	}
-	return nil
-}
-
-// takeTime notes the time of a state.
-func (o *opener) takeTime(a *column, source *mesh.Source) error {
-	if a.Name != "TimeValue" || a.Components != 1 || a.Tuples != 1 || a.number.size() == 0 {
-		return nil
-	}
-	values, err := a.values(o.cursor, 0, 1)
-	if err != nil {
-		return err
-	}
-	source.Time = values[0]
-	return nil
-}
-
-// addPiece puts a piece into the model.
-func (o *opener) addPiece(p *piece, source *mesh.Source, block int) error {
+// addPiece puts a piece into the model. Its source is the one that comes next.
+func (o *opener) addPiece(p *piece, source *mesh.Source, set *pieceSet) error {
 	if int64(len(o.pieces)) >= o.limits.Pieces {
 		return overLimit("found more than %d pieces; need at most the limit", o.limits.Pieces)
 	}
-	described := mesh.Piece{
-		Source: len(o.model.Sources), Block: block, FirstCell: source.Cells,
-		CellCount: p.cellCount, PointCount: p.pointCount, RunCells: p.runCells(),
+	p.firstCell = source.Cells
+	if p.cellCount > maxCells-source.Cells {
+		return malformed("found %d cells, need fewer", p.cellCount)
 	}
-	for _, a := range p.arrays {
-		described.Arrays = append(described.Arrays, a.Array)
+	for _, a := range p.columns() {
+		if a.form == blockForm {
+			if o.decoded += a.length; o.decoded > o.limits.Decoded {
+				return a.fail(overLimit("found compressed arrays of more than %d bytes; need at most the limit", o.limits.Decoded))
+			}
+		}
+	}
+	described := mesh.Piece{
+		Source: len(o.model.Sources), Block: set.block, FirstCell: p.firstCell,
+		CellCount: p.cellCount, PointCount: p.pointCount, RationalWeights: p.weights,
+	}
+	if p.grid != nil {
+		if err := set.lattice.add(p.grid); err != nil {
+			return err
+		}
+		described.Grid = &p.grid.Grid
 	}
 	source.Cells += p.cellCount
-	source.Points += p.pointCount
+	source.Points += p.pointCount - described.Grid.SharedCount()
+	set.pieces = append(set.pieces, len(o.pieces))
 	o.model.Pieces = append(o.model.Pieces, described)
 	o.pieces = append(o.pieces, p)
 	return nil
 }
 
+// remark notes something that does not stop the work.
+func (o *opener) remark(code, message string) {
+	o.model.Remarks = append(o.model.Remarks, mesh.Remark{Code: code, Message: message})
+}
+
 // finish closes the gathering.
-func (o *opener) finish() *mesh.Model {
+func (o *opener) finish() error {
 	slots := 0
-	for _, p := range o.pieces {
+	for i, p := range o.pieces {
 		slots = max(slots, p.numberSlots())
+		o.model.Pieces[i].RunCells = p.runCells()
+		for _, a := range p.arrays {
+			o.model.Pieces[i].Arrays = append(o.model.Pieces[i].Arrays, a.Array)
+		}
 	}
 	for _, source := range o.model.Sources {
-		if !math.IsNaN(source.Time) && !slices.Contains(o.model.Times, source.Time) {
-			o.model.Times = append(o.model.Times, source.Time)
-		}
+		o.addTimes(source.Time)
 	}
 	slices.Sort(o.model.Times)
+	if o.options.Time.Choice == AtNumber {
+		if _, err := o.options.Time.pick(o.model.Times); err != nil {
+			return err
+		}
+	}
 	pieces := o.pieces
 	o.model.Open = func() mesh.Cursor { return newCursor(pieces, slots) }
-	return o.model
+	o.model.Close = o.close
+	return nil
 }
 
-// numberSlots gives each column of the piece its place among a cursor's buffers and
-// returns their number.
-func (p *piece) numberSlots() int {
-	slots := 0
-	for _, a := range p.columns() {
-		a.slot = slots
-		slots++
-	}
-	return slots
-}
-
-// columns returns all columns of the piece.
-func (p *piece) columns() []*column {
-	columns := slices.Clone(p.arrays)
-	if p.points != nil {
-		columns = append(columns, p.points)
-	}
-	for i := range p.sections {
-		s := &p.sections[i]
-		for _, a := range []*column{s.types, s.offsets, s.connectivity} {
-			if a != nil {
-				columns = append(columns, a)
-			}
-		}
-		if s.list != nil {
-			columns = append(columns, s.list.column)
+// addTimes notes times of states that the files hold.
+func (o *opener) addTimes(times ...float64) {
+	for _, time := range times {
+		if !math.IsNaN(time) && !slices.Contains(o.model.Times, time) {
+			o.model.Times = append(o.model.Times, time)
 		}
 	}
-	return columns
-}
-
-// runCells returns how many cells are best read in one go: enough that the blocks
-// at the ends of a run, which two workers decode, do not matter.
-func (p *piece) runCells() int {
-	cells := int64(0)
-	for _, a := range p.columns() {
-		if a.form != blockForm || a.On != mesh.OnCell || p.cellCount == 0 {
-			continue
-		}
-		const blocksInRun = 6
-		perCell := max(1, a.length/p.cellCount)
-		cells = max(cells, 4*chunkCells, blocksInRun*a.blocks.size/perCell)
-	}
-	return int(min(cells, p.cellCount))
 }

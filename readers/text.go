@@ -35,6 +35,10 @@ func newIndex(f *file, start, end int64, isWord bool) *index {
 	return &index{file: f, start: start, end: end, isWord: isWord, before: []int64{0}}
 }
 
+// most returns how many words the text has room for: each takes two characters with
+// the blank behind it.
+func (x *index) most() int64 { return (x.end - x.start + 1) / 2 }
+
 // page returns the page in which item n begins, and how many begin before the
 // page. Without such an item n, the total is returned and false.
 func (x *index) page(h *hand, scratch []byte, n int64) (page int64, before int64, found bool, err error) {
@@ -232,36 +236,56 @@ func (w *words) numbers(n number, to []byte) error {
 var powers = [...]float64{1, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18,
 	1e19, 1e20, 1e21, 1e22}
 
-// floats takes words in memory while they are plain decimals of which mantissa and
-// power of ten are both exact in a double, so that one rounding gives the nearest
-// double (W. D. Clinger, How to read floating point numbers accurately, 1990). It
-// returns how many it took and stops at the first of another kind.
+// floats takes words in memory while they are plain decimals. It returns how many it
+// took and stops at the first of another kind, or that may go on behind the memory.
 func (w *words) floats(n number, to []byte) int {
 	text, size := w.text, int(n.size())
 	taken, end := 0, 0
-	for i := 0; taken < len(to)/size; {
+	for i := 0; taken < len(to)/size; taken++ {
 		for i < len(text) && text[i] <= ' ' {
 			i++
 		}
-		value, next, ok := plainDecimal(text, i)
-		if !ok {
-			break
+		start := i
+		value, i2, isExact := exactDecimal(text, i)
+		i = i2
+		if !isExact {
+			for i < len(text) && isDecimal[text[i]] {
+				i++
+			}
+			if i == start || i == len(text) || text[i] > ' ' || i-start > wordLimit {
+				break
+			}
+			var err error
+			if value, err = strconv.ParseFloat(unsafe.String(&text[start], i-start), 64); err != nil {
+				break
+			}
 		}
-		i, end = next, next
 		if n == float64Number {
 			binary.LittleEndian.PutUint64(to[8*taken:], math.Float64bits(value))
+		} else if narrow := float32(value); math.IsInf(float64(narrow), 0) {
+			break
 		} else {
-			binary.LittleEndian.PutUint32(to[4*taken:], math.Float32bits(float32(value)))
+			binary.LittleEndian.PutUint32(to[4*taken:], math.Float32bits(narrow))
 		}
-		taken++
+		end = i
 	}
 	w.drop(end)
 	return taken
 }
 
-// plainDecimal reads the number at text[i] that ends before white space in the
-// text and returns the place behind it; false for everything but exact decimals.
-func plainDecimal(text []byte, i int) (value float64, next int, ok bool) {
+// isDecimal holds the characters of plain decimals.
+var isDecimal = func() (set [256]bool) {
+	for _, c := range []byte("0123456789+-.eE") {
+		set[c] = true
+	}
+	return set
+}()
+
+// exactDecimal reads the number at text[i] if it ends before white space in the text
+// and mantissa and power of ten are both exact in a double, so that one rounding gives
+// the nearest double (W. D. Clinger, How to read floating point numbers accurately,
+// 1990). It returns the value and the place where reading stopped.
+func exactDecimal(text []byte, i int) (value float64, next int, isExact bool) {
 	isNegative := i < len(text) && text[i] == '-'
 	if isNegative || i < len(text) && text[i] == '+' {
 		i++
@@ -276,12 +300,23 @@ func plainDecimal(text []byte, i int) (value float64, next int, ok bool) {
 	if i < len(text) && text[i] == '.' {
 		i++
 		point := i
+		if mantissa == 0 { // zeros before the first digit take no room in the mantissa
+			for i < len(text) && text[i] == '0' {
+				i++
+			}
+		}
+		significant := i
 		for i < len(text) && text[i]-'0' <= 9 {
 			mantissa = mantissa*10 + uint64(text[i]-'0')
 			i++
 		}
-		digits += i - point
 		exponent = point - i
+		if digits += i - significant; i == point && digits == 0 {
+			return 0, i, false
+		}
+		if mantissa == 0 && digits == 0 {
+			digits = 1 // nothing but zeros
+		}
 	}
 	if digits == 0 || digits > 19 || mantissa >= 1<<53 {
 		return 0, i, false

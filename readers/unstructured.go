@@ -8,13 +8,16 @@ import (
 func (x *xmlFile) unstructured(e *element) (*piece, error) {
 	points, err := count(e, "NumberOfPoints")
 	if err != nil {
-		return nil, placedAt(x.file, e, err)
+		return nil, err
 	}
 	cells, err := count(e, "NumberOfCells")
 	if err != nil {
-		return nil, placedAt(x.file, e, err)
+		return nil, err
 	}
-	p := &piece{file: x.file, pointCount: points, cellCount: cells}
+	if cells > maxCells {
+		return nil, attributeError(e, "NumberOfCells", e.attribute("NumberOfCells"), "fewer cells")
+	}
+	p := &piece{file: x.file, pointCount: points, cellCount: cells, isOldOrder: x.version < 201}
 	if err := x.pointsOf(p, e); err != nil {
 		return nil, err
 	}
@@ -30,7 +33,7 @@ func (x *xmlFile) pointsOf(p *piece, e *element) error {
 		return nil
 	}
 	if p.pointCount > x.limits.Points {
-		return placedAt(x.file, e, overLimit("found %d points in one piece; need at most the limit of %d", p.pointCount, x.limits.Points))
+		return overLimit("found %d points in one piece; need at most the limit of %d", p.pointCount, x.limits.Points)
 	}
 	for _, child := range e.child("Points").arrays() {
 		if !x.isSelected(child) {
@@ -49,7 +52,7 @@ func (x *xmlFile) pointsOf(p *piece, e *element) error {
 		p.points = a
 		return a.need(p.pointCount, "points")
 	}
-	return placedAt(x.file, e, malformed("found %d points and no array in an element Points", p.pointCount))
+	return malformed("found %d points and no array in an element Points", p.pointCount)
 }
 
 // arraysOf finds point and cell arrays.
@@ -68,22 +71,32 @@ func (x *xmlFile) arraysOf(p *piece, e *element) error {
 			return err
 		}
 		for _, a := range columns {
-			x.takeGhosts(p, a)
+			p.keep(a, x.version < 200)
 			if on == mesh.OnCell && a.Name == child.attribute("HigherOrderDegrees") && a.Components == 3 {
 				p.degrees = a
 			}
+			if on == mesh.OnPoint && a.Name == child.attribute("RationalWeights") && a.Components == 1 {
+				p.weights = a.Name
+			}
 		}
-		p.arrays = append(p.arrays, columns...)
 	}
 	return nil
 }
 
-// takeGhosts notes the array that marks ghost cells.
-func (x *xmlFile) takeGhosts(p *piece, a *column) {
-	isLevel := a.Name == "vtkGhostLevels" && x.version < 200
-	if a.On == mesh.OnCell && a.Components == 1 && a.number.isInteger() && (isLevel || a.Name == "vtkGhostType") {
-		p.ghosts, p.isLevel = a, isLevel
+// keep takes a point or cell array into the piece and notes those that mark ghosts.
+func (p *piece) keep(a *column, hasLevels bool) {
+	if a.Name == "vtkGhostLevels" && hasLevels {
+		a.Name, a.isLevel = "vtkGhostType", true
 	}
+	if a.Name == "vtkGhostType" && a.Components == 1 && a.number.isInteger() {
+		switch {
+		case a.On == mesh.OnCell:
+			p.ghosts = a
+		case p.grid != nil && !a.isLevel:
+			p.grid.hiddenPoints = a
+		}
+	}
+	p.arrays = append(p.arrays, a)
 }
 
 // cellsOf finds the arrays that make up the cells.
@@ -93,21 +106,96 @@ func (x *xmlFile) cellsOf(p *piece, e *element) error {
 	}
 	cells := e.child("Cells")
 	if cells == nil {
-		return placedAt(x.file, e, malformed("found %d cells and no element Cells", p.cellCount))
+		return malformed("found %d cells and no element Cells", p.cellCount)
 	}
 	s := section{count: p.cellCount}
 	var err error
 	if s.types, err = x.cellColumn(cells, "types", p.cellCount); err != nil {
 		return err
 	}
-	if s.offsets, err = x.cellColumn(cells, "offsets", p.cellCount); err != nil {
+	if err := x.connect(&s, cells, p.cellCount); err != nil {
+		return err
+	}
+	p.sections = []section{s}
+	return x.facesOf(p, cells)
+}
+
+// connect finds the two arrays that tell the nodes of cells.
+func (x *xmlFile) connect(s *section, cells *element, count int64) error {
+	var err error
+	if s.offsets, err = x.cellColumn(cells, "offsets", count); err != nil {
 		return err
 	}
 	if s.connectivity, err = x.cellColumn(cells, "connectivity", 0); err != nil {
 		return err
 	}
-	p.sections = []section{s}
+	s.isLed, err = x.isLed(s, count)
+	return err
+}
+
+// isLed reports whether offsets tell where cells begin and not where they end: there
+// is one more than cells, the first is 0 and the last is the length of connectivity.
+func (x *xmlFile) isLed(s *section, count int64) (bool, error) {
+	if s.offsets.form != textForm && s.offsets.length/s.offsets.width() != count+1 {
+		return false, nil
+	}
+	first, err := s.offsets.wholes(x.cursor, 0, 1)
+	if err != nil || first[0] != 0 {
+		return false, err
+	}
+	for _, a := range []*column{s.offsets, s.connectivity} {
+		tuples := a.Tuples
+		if err := a.countTuples(x.cursor); err != nil {
+			return false, err
+		}
+		defer func() { a.Tuples = tuples }()
+	}
+	if s.offsets.Tuples != count+1 {
+		return false, nil
+	}
+	last, err := s.offsets.wholes(x.cursor, count, count+1)
+	return err == nil && last[0] == s.connectivity.Tuples, err
+}
+
+// facesOf finds the faces of polyhedra in either layout.
+func (x *xmlFile) facesOf(p *piece, cells *element) error {
+	f := &faceArrays{}
+	for _, part := range []struct {
+		name   string
+		tuples int64
+		to     **column
+	}{
+		{"faces", 0, &f.faces}, {"faceoffsets", p.cellCount, &f.ends},
+		{"face_connectivity", 0, &f.connectivity}, {"face_offsets", 0, &f.faceEnds},
+		{"polyhedron_to_faces", 0, &f.cellFaces}, {"polyhedron_offsets", p.cellCount, &f.cellEnds},
+	} {
+		if !x.hasArray(cells, part.name) {
+			continue
+		}
+		a, err := x.cellColumn(cells, part.name, part.tuples)
+		if err != nil {
+			return err
+		}
+		if part.tuples == 0 {
+			if err := a.countTuples(x.cursor); err != nil {
+				return err
+			}
+		} else if a.form == emptyForm { // no polyhedra
+			return nil
+		}
+		*part.to = a
+		p.faces = f
+	}
 	return nil
+}
+
+func (x *xmlFile) hasArray(e *element, name string) bool {
+	for _, child := range e.arrays() {
+		if child.attribute("Name") == name && x.isSelected(child) {
+			return true
+		}
+	}
+	return false
 }
 
 // cellColumn finds one of the arrays of whole numbers that make up cells.
@@ -123,6 +211,7 @@ func (x *xmlFile) cellColumn(cells *element, name string, tuples int64) (*column
 		if !a.number.isInteger() || a.Components != 1 {
 			return nil, a.fail(malformed("found %s, need whole numbers with 1 component", a.describe()))
 		}
+		a.Name = name
 		return a, a.need(tuples, "cells")
 	}
 	return nil, &Error{Path: x.file.path, Offset: cells.offset, Array: name, Err: malformed("found no such array in the element Cells"), file: x.file}

@@ -192,11 +192,11 @@ func (x *xmlFile) skip(e *element, w *window) error {
 		if err := w.jump(start + length); err != nil {
 			return err
 		}
-		c, found, err := w.blanks()
+		isEnd, err := w.ends(e.name)
 		if err != nil {
 			return err
 		}
-		if found && c == '<' {
+		if isEnd {
 			e.payload = p
 			return nil
 		}
@@ -213,6 +213,25 @@ func (x *xmlFile) skip(e *element, w *window) error {
 		place.Array = e.attribute("Name")
 	}
 	return err
+}
+
+// ends reports whether the end tag of an element or the start of an information key
+// comes next.
+func (w *window) ends(name string) (bool, error) {
+	if _, _, err := w.blanks(); err != nil {
+		return false, err
+	}
+	for _, mark := range []string{"</" + name, "<InformationKey"} {
+		if len(w.buffer)-w.at < len(mark) {
+			if _, err := w.more(); err != nil {
+				return false, err
+			}
+		}
+		if bytes.HasPrefix(w.buffer[w.at:], []byte(mark)) {
+			return true, nil
+		}
+	}
+	return false, nil
 }
 
 // binary takes apart the length words of an array in binary form that begins at
@@ -268,11 +287,11 @@ func (x *xmlFile) binary(start, stop int64, isBase64 bool, wrapped *index) (*pay
 
 // plain takes apart an array that is not compressed. Its length word stands in one
 // run of base64 with the values, or in one of its own, which its padding tells.
-func (x *xmlFile) plain(run stored, bytes uint64, available int64) (*payload, int64, error) {
-	if bytes > math.MaxInt64 || int64(bytes) > available-x.wordSize+2 {
-		return nil, 0, x.file.fail(run.start, truncated("%d bytes of values by the length word, found at most %d to the end", bytes, max(0, available-x.wordSize)))
+func (x *xmlFile) plain(run stored, length uint64, available int64) (*payload, int64, error) {
+	if length > math.MaxInt64 || int64(length) > available-x.wordSize+2 {
+		return nil, 0, x.file.fail(run.start, truncated("%d bytes of values by the length word, found at most %d to the end", length, max(0, available-x.wordSize)))
 	}
-	p := &payload{form: plainForm, length: int64(bytes), stored: run}
+	p := &payload{form: plainForm, length: int64(length), stored: run}
 	p.stored.shift = x.wordSize
 	if !run.isBase64 {
 		return p, x.wordSize + p.length, nil
@@ -412,12 +431,9 @@ func (x *xmlFile) isSelected(e *element) bool {
 // one name once.
 func (x *xmlFile) columns(e *element, on mesh.Location, tuples int64) ([]*column, error) {
 	var columns []*column
-	if e == nil {
-		return nil, nil
-	}
 	seen := map[string]bool{}
-	for i, child := range e.children {
-		if !isArray(child) || !x.isSelected(child) {
+	for i, child := range e.arrays() {
+		if !x.isSelected(child) {
 			continue
 		}
 		a, err := x.column(child, on)
@@ -437,11 +453,4 @@ func (x *xmlFile) columns(e *element, on mesh.Location, tuples int64) ([]*column
 		columns = append(columns, a)
 	}
 	return columns, nil
-}
-
-// looksXML reports whether a file begins as XML does.
-func looksXML(head []byte) bool {
-	head = bytes.TrimPrefix(head, []byte("\xef\xbb\xbf"))
-	head = bytes.TrimLeft(head, " \t\r\n")
-	return len(head) > 0 && head[0] == '<'
 }

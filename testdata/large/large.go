@@ -216,7 +216,11 @@ func (a *array) text(w io.Writer) error {
 		a.fill(i, tuple)
 		line = line[:0]
 		for _, value := range tuple {
-			line = strconv.AppendFloat(append(line, ' '), value, 'g', -1, 64)
+			if line = append(line, ' '); a.format == "Float64" {
+				line = strconv.AppendFloat(line, value, 'g', -1, 64)
+			} else {
+				line = strconv.AppendInt(line, int64(value), 10)
+			}
 		}
 		if _, err := w.Write(append(line, '\n')); err != nil {
 			return err
