@@ -139,7 +139,7 @@ func commonArrays(model *mesh.Model) []mesh.Array {
 			return other == nil || other.Components != a.Components
 		})
 	}
-	return slices.DeleteFunc(common, func(a mesh.Array) bool { return a.Type == "String" })
+	return slices.DeleteFunc(common, func(a mesh.Array) bool { return !isNumeric(a) })
 }
 
 // findInputs resolves every field of the study and of the file. The energy's source

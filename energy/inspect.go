@@ -155,6 +155,9 @@ func (r *arrayRange) add(tuple []float64) {
 	}
 }
 
+// isNumeric reports whether an array holds numbers that can be read.
+func isNumeric(array mesh.Array) bool { return array.Type != "String" && array.Type != "Bit" }
+
 // isHidden reports whether a cell is marked as a duplicate or hidden.
 func isHidden(chunk *mesh.Chunk, i int) bool {
 	return chunk.Hidden != nil && chunk.Hidden[i]&(mesh.DuplicateCell|mesh.HiddenCell) != 0
@@ -203,7 +206,7 @@ func (i *inspector) readCells(ctx context.Context, piece int) error {
 	want := &mesh.Want{}
 	var at []int
 	for a, array := range i.arrays {
-		if found := i.model.Pieces[piece].Find(mesh.OnCell, array.Name); array.On == mesh.OnCell && found != nil && found.Type != "String" {
+		if found := i.model.Pieces[piece].Find(mesh.OnCell, array.Name); array.On == mesh.OnCell && found != nil && isNumeric(array) {
 			want.CellValues = append(want.CellValues, array.Name)
 			at = append(at, a)
 		}
@@ -248,7 +251,7 @@ func (i *inspector) readPoints(ctx context.Context) error {
 	defer cursor.Close()
 	part := i.parts[0]
 	for a, array := range i.arrays {
-		if array.On != mesh.OnPoint || array.Type == "String" {
+		if array.On != mesh.OnPoint || !isNumeric(array) {
 			continue
 		}
 		room := make([]float64, pointStep*array.Components)
@@ -256,15 +259,17 @@ func (i *inspector) readPoints(ctx context.Context) error {
 			if i.model.Pieces[piece].Find(mesh.OnPoint, array.Name) == nil {
 				continue
 			}
-			count := i.model.Pieces[piece].PointCount
+			count, grid := i.model.Pieces[piece].PointCount, i.model.Pieces[piece].Grid
 			for low := int64(0); low < count; low += pointStep {
 				high := min(low+pointStep, count)
 				values := room[:int(high-low)*array.Components]
 				if err := cursor.PointValues(ctx, piece, array.Name, low, high, values); err != nil {
 					return err
 				}
-				for tuple := range slices.Chunk(values, array.Components) {
-					part.ranges[a].add(tuple)
+				for k, tuple := range slices.Collect(slices.Chunk(values, array.Components)) {
+					if !grid.IsShared(low + int64(k)) {
+						part.ranges[a].add(tuple)
+					}
 				}
 			}
 		}
@@ -286,7 +291,9 @@ func (i *inspector) describe(total *inspected) InspectedFile {
 	points := make([]int64, len(m.Blocks))
 	for piece := range m.Pieces {
 		points[m.Pieces[piece].Block] += m.Pieces[piece].PointCount
-		file.Points += m.Pieces[piece].PointCount
+	}
+	for _, source := range m.Sources {
+		file.Points += source.Points
 	}
 	for block, name := range m.Blocks {
 		file.Blocks = append(file.Blocks, InspectedBlock{name, points[block], total.blocks[block]})
@@ -325,7 +332,7 @@ func boxOf(bounds *mesh.Bounds) *Bounds {
 // fillRanges lays out the ranges of the arrays whose values were read.
 func (i *inspector) fillRanges(to []InspectedArray, total *inspected) {
 	for a := range to {
-		if i.arrays[a].On == mesh.OnField || i.arrays[a].Type == "String" {
+		if i.arrays[a].On == mesh.OnField || !isNumeric(i.arrays[a]) {
 			continue
 		}
 		r := &total.ranges[a]
