@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"strainledger/mesh"
@@ -194,7 +195,7 @@ func (a *audit) readings(isFree bool) []reading {
 	}
 	swaps := []bool{false}
 	if in.rolesBy == byDefault {
-		swaps = append(swaps, true)
+		swaps = a.swaps()
 	}
 	var list []reading
 	seen := map[string]bool{}
@@ -204,7 +205,7 @@ func (a *audit) readings(isFree bool) []reading {
 				for _, stressOrder := range a.ordersOf(&in.stress, isFree) {
 					for _, strainOrder := range a.ordersOf(&in.strain, isFree) {
 						r := reading{stressOrder: stressOrder, strainOrder: strainOrder, shear: shear, isElastic: kind, isSwapped: swapped}
-						if key := r.key(); !seen[key] && a.lay(&r) {
+						if key := r.key(a.namesMatter()); !seen[key] && a.lay(&r) {
 							seen[key] = true
 							list = append(list, r)
 						}
@@ -216,11 +217,44 @@ func (a *audit) readings(isFree bool) []reading {
 	return list
 }
 
+// swaps returns whether the two arrays whose names say nothing may be exchanged: the
+// materials' moduli tell; without them the larger numbers are taken for the stress, as
+// they are in any unit but that of the modulus itself.
+func (a *audit) swaps() []bool {
+	for i := range a.regions.regions {
+		if a.regions.regions[i].law != nil {
+			return []bool{false, true}
+		}
+	}
+	var stress, strain float64
+	for i := range a.sample {
+		for c := range a.sample[i].stress {
+			stress += a.sample[i].stress[c] * a.sample[i].stress[c]
+			strain += a.sample[i].strain[c] * a.sample[i].strain[c]
+		}
+	}
+	return []bool{strain > stress}
+}
+
+// namesMatter reports whether it can be seen which shear term is which: an isotropic
+// law, the energy and the von Mises stress do not tell, an anisotropic law does, and so
+// does the displacement beside a strain alone.
+func (a *audit) namesMatter() bool {
+	for i := range a.regions.regions {
+		if law := a.regions.regions[i].law; law != nil && !law.IsIsotropic() {
+			return true
+		}
+	}
+	return !a.inputs.stress.exists()
+}
+
 // key names what a reading does to the numbers: which are paired, which are normal
-// terms. The names of the shear terms among themselves do not matter to Hooke's law,
-// to the energy or to the von Mises stress.
-func (r *reading) key() string {
+// terms, and, where that matters, which shear term is which.
+func (r *reading) key(namesMatter bool) string {
 	text := fmt.Sprintf("%v %v %v", r.shear, r.isElastic, r.isSwapped)
+	if namesMatter {
+		return fmt.Sprint(text, r.stressOrder, r.strainOrder)
+	}
 	for position, name := range r.stressOrder {
 		partner := -1
 		for i, other := range r.strainOrder {
@@ -229,11 +263,6 @@ func (r *reading) key() string {
 			}
 		}
 		text += fmt.Sprintf(" %d-%d%v", position, partner, name[0] == name[1])
-	}
-	if len(r.stressOrder) == 0 {
-		for _, name := range r.strainOrder {
-			text += fmt.Sprintf(" %v", name[0] == name[1])
-		}
 	}
 	return text
 }
@@ -285,12 +314,9 @@ func (a *audit) measure(readings []reading) []measured {
 	if len(few) == len(a.sample) || len(list) < 2 {
 		return list
 	}
-	good := map[string]bool{}
-	for _, m := range equallyGood(list) {
-		good[m.key()] = true
-	}
+	left := equallyGood(list)
 	for i := range list {
-		if good[list[i].key()] {
+		if slices.ContainsFunc(left, func(m measured) bool { return m.key(true) == list[i].key(true) }) {
 			list[i].misfit = a.misfitOf(&list[i].reading, a.sample)
 		}
 	}
@@ -347,10 +373,17 @@ func agree(list []measured) bool {
 	return true
 }
 
+// mostListed is how many readings a message lists.
+const mostListed = 6
+
 // undecidable says which readings are left and how far their energies are apart.
 func (a *audit) undecidable(good []measured) error {
 	var lines []string
 	for i := range good {
+		if i == mostListed {
+			lines = append(lines, fmt.Sprintf("and %d more", len(good)-i))
+			break
+		}
 		ratio := good[i].energy / good[0].energy
 		lines = append(lines, fmt.Sprintf("%s (%.4g times the energy of the first)", good[i].String(), ratio))
 	}

@@ -21,6 +21,9 @@ func (p *plan) close(total *part) (*Ledger, error) {
 	p.fillAccounts(ledger, total)
 	p.fillLists(ledger, total)
 	p.findInResult(ledger, total)
+	if p.isUnknown {
+		ledger.withoutEnergy()
+	}
 	ledger.Findings = p.findings.sorted(p.options.Acceptances)
 	ledger.Requirements = judge(ledger, p.options.Requirements)
 	return ledger, nil
@@ -307,6 +310,32 @@ func elementID(c *candidate) Number {
 	return Number(c.elementID)
 }
 
+// withoutEnergy takes every energy out of a ledger whose stress is known and whose
+// elastic strain is not: they do not exist.
+func (l *Ledger) withoutEnergy() {
+	accounts := []*Account{&l.Total}
+	for i := range l.Regions {
+		accounts = append(accounts, &l.Regions[i].Account)
+	}
+	for _, a := range accounts {
+		a.Energy, a.EnergyShare, a.MeanDensity, a.EnergyPastLimit = None, None, None, None
+		a.MaxDensity, a.MaxDensityCell, a.MaxDensitySource, a.MaxDensityAt = None, None, None, nil
+		a.PeakDensity, a.PeakDensityAt = None, nil
+	}
+	if l.Repeated != nil {
+		l.Repeated.Energy = None
+	}
+	l.PastLimit.Energy, l.PastLimit.EnergyShare = None, None
+	for i := range l.Hotspots {
+		l.Hotspots[i].Density, l.Hotspots[i].PeakDensity = None, None
+	}
+	for _, list := range [][]RankedCell{l.PastLimit.Worst, l.AllPastLimit} {
+		for i := range list {
+			list[i].Density = None
+		}
+	}
+}
+
 // findInResult reports what the evaluated cells have shown.
 func (p *plan) findInResult(ledger *Ledger, total *part) {
 	f := &p.findings
@@ -348,6 +377,9 @@ func (p *plan) findInResult(ledger *Ledger, total *part) {
 // of the peak (methods: negative density is an input error; threshold common practice,
 // no source). The amounts are known by their binary exponent only.
 func (p *plan) findNegative(ledger *Ledger, total *part) {
+	if p.isUnknown {
+		return
+	}
 	threshold := 1e-9 * math.Abs(float64(ledger.Total.MaxDensity))
 	first := int(math.Float64bits(threshold)>>52&0x7ff) + 1
 	var cells int64

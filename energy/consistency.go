@@ -31,6 +31,8 @@ func (a *audit) check(chosen *measured) {
 		return
 	}
 	switch {
+	case a.isOtherPlane(chosen):
+		a.findings.add("hooke-mismatch", 0, "stress and strain differ by %.1g of the strain from the material's law, but fit it in %s: is [model] idealisation right? The energy is ½ σ:ε of what the file holds", chosen.byLaw, otherPlane[a.options.Idealisation])
 	case a.isInelastic(chosen):
 		a.useLaw(chosen)
 	case isContradicted:
@@ -57,7 +59,7 @@ func (a *audit) checkStudy(chosen *measured) bool {
 	}
 	var stated *measured
 	for i := range list {
-		if list[i].key() == chosen.key() {
+		if list[i].key(true) == chosen.key(true) {
 			stated = &list[i]
 		}
 	}
@@ -75,6 +77,39 @@ func least(value float64) float64 {
 		return math.Inf(1)
 	}
 	return value
+}
+
+// otherPlane names the idealisation that a plane one may be confused with.
+var otherPlane = map[Idealisation]Idealisation{PlaneStress: PlaneStrain, PlaneStrain: PlaneStress}
+
+// isOtherPlane reports whether the law fits in the other plane idealisation: its misfit
+// looks like an offset of the normal strains, too.
+func (a *audit) isOtherPlane(chosen *measured) bool {
+	other, isPlane := otherPlane[a.options.Idealisation]
+	if !isPlane || a.inputs.stress.layout.Has(2) {
+		return false
+	}
+	components, normals := a.components(&chosen.reading)
+	var rest, size float64
+	for i := range a.sample {
+		place := &a.sample[i]
+		p := a.pairAt(&chosen.reading, place)
+		law := a.regions.regions[place.region].law
+		if other == PlaneStrain {
+			law.CompletePlaneStrain(&p.stress, p.strain[2])
+		} else {
+			p.stress[2] = 0
+		}
+		predicted := law.Strain(&p.stress)
+		square, _, _ := squares(&p.strain, components, normals)
+		size += square
+		for c := range predicted {
+			predicted[c] = p.strain[c] - predicted[c]
+		}
+		square, _, _ = squares(&predicted, components, normals)
+		rest += square
+	}
+	return share(rest, size) < hookeTolerance
 }
 
 // isInelastic reports whether the strain carries an inelastic part that no array
@@ -185,7 +220,7 @@ func (a *audit) checkSymmetry() {
 			}
 		}
 		if asymmetry := share(difference, size); asymmetry > symmetryTolerance {
-			a.findings.add("asymmetric-tensor", 0, "the nine-component %s is not symmetric (by %.1g of its size); its symmetric part is used: is it another tensor (first Piola-Kirchhoff stress, a gradient), or in another order?", field.name, asymmetry)
+			a.findings.add("asymmetric-tensor", 0, "the nine-component %s is not symmetric (by %.3g of its size); its symmetric part is used: is it another tensor (first Piola-Kirchhoff stress, a gradient), or in another order?", field.name, asymmetry)
 		}
 	}
 }

@@ -118,6 +118,7 @@ type fieldFinder struct {
 	arrays   []mesh.Array // those that every piece with cells has
 	findings *findings
 	in       *inputs
+	unnamed  [2]string // two arrays taken for stress and strain although their names say nothing
 }
 
 // commonArrays returns the point and cell arrays that every piece with cells has with
@@ -225,10 +226,34 @@ func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
 			}
 		}
 	}
+	if from == "" || from == FromStressStrain {
+		if on := f.takeUnnamed(); on != 0 {
+			return FromStressStrain, on, nil
+		}
+	}
 	if (from == "" || from == FromDisplacement) && f.hasDisplacement() {
 		return FromDisplacement, mesh.OnPoint, nil
 	}
 	return "", 0, f.nothingFound(from)
+}
+
+// takeUnnamed takes two tensor arrays whose names say nothing for stress and strain,
+// where they are the only two at a location and nothing is stated; which is which is
+// left to the numbers. It returns their location, or 0.
+func (f *fieldFinder) takeUnnamed() mesh.Location {
+	fields := &f.options.Fields
+	if fields.Stress.Off || fields.Strain.Off || fields.Stress.IsStated() || fields.Strain.IsStated() {
+		return 0
+	}
+	for _, on := range locations {
+		list := f.candidates(on, f.isTensor, noRole)
+		if len(list) == 2 && list[0].Components == list[1].Components {
+			f.unnamed = [2]string{list[0].Name, list[1].Name}
+			f.in.rolesBy = byDefault
+			return on
+		}
+	}
+	return 0
 }
 
 // hasDisplacement reports whether a displacement is stated by the study or can be
@@ -318,6 +343,10 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 		on = field.On
 	}
 	list := f.candidates(on, fits, roles...)
+	if f.unnamed[0] != "" && (key == "stress" || key == "strain") {
+		list = f.candidates(on, fits, noRole)
+		return &list[slices.Index([]string{"stress", "strain"}, key)], "one of the two tensor arrays of the file", nil
+	}
 	switch {
 	case len(list) == 0:
 		return nil, "", nil
