@@ -256,6 +256,36 @@ var embeddedSums = map[string]string{
 	"bracket-r2.vtu":  "30de346db23b6810863f10a98cb59e6fd8cd48dbca95a92926e367c39487b9e3",
 }
 
+// --out hashes the inputs without being asked.
+func TestReportsHoldHashes(t *testing.T) {
+	inDemo(t)
+	code, stdout, _ := call("tally", "bracket-r2.toml", "--out", "reports")
+	text, err := os.ReadFile("reports/ledger.json")
+	if err != nil || code != 0 || stdout != "" {
+		t.Fatalf("code %d, stdout %q: %v", code, stdout, err)
+	}
+	ledger := readLedger(t, string(text))
+	if string(ledger.Study.SHA256) != embeddedSums["bracket-r2.toml"] || string(ledger.Sources[0].SHA256) != embeddedSums["bracket-r2.vtu"] {
+		t.Errorf("%+v %+v", ledger.Study, ledger.Sources)
+	}
+}
+
+func TestReadersOptions(t *testing.T) {
+	seconds := 2.5
+	for _, c := range []struct {
+		time study.Time
+		want readers.Time
+	}{
+		{study.Time{}, readers.Time{Choice: readers.Last}},
+		{study.Time{First: true}, readers.Time{Choice: readers.First}},
+		{study.Time{Value: &seconds}, readers.Time{Choice: readers.AtNumber, Number: 2.5}},
+	} {
+		if got := readersOptions(&study.Study{Time: c.time}); got.Time != c.want {
+			t.Errorf("%+v: %+v, want %+v", c.time, got.Time, c.want)
+		}
+	}
+}
+
 // What comes through stdin gives the ledger of the same file, under the name "-".
 func TestStandardInput(t *testing.T) {
 	inDemo(t)

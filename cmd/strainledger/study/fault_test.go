@@ -83,6 +83,8 @@ func TestFaults(t *testing.T) {
 		"limit":               {steel + "§proportional_limit = -3.0", []string{"material.proportional_limit is -3.0; it must be above 0"}},
 		"density":             {steel + "§density = 0.0", []string{"material.density is 0.0; it must be above 0"}},
 		"NaN":                 {steel + "§youngs_modulus = nan", []string{"material.youngs_modulus is nan; it must be finite"}},
+		"signed NaN":          {steel + "§reference_temperature = -nan", []string{"material.reference_temperature is -nan; it must be finite"}},
+		"too large":           {steel + "reference_temperature = §1e999", []string{`this is not TOML: unable to parse float: strconv.ParseFloat: parsing "1e999": value out of range; mend the line, texts stand in quotes`}},
 		"infinite":            {steel + "§reference_temperature = -inf", []string{"material.reference_temperature is -inf; it must be finite"}},
 		"infinite bound":      {"[[require]]\nquantity = \"energy\"\n§at_most = +inf", []string{"require.at_most is +inf; it must be finite"}},
 		"infinite time":       {"input.§time = inf", []string{"input.time is inf; it must be finite"}},

@@ -28,9 +28,10 @@ func TestFlagsMeanWhatAStudyMeans(t *testing.T) {
 			"[[material]]\nname = \"S355 J2\"\nsource = 'EN 10025-2, \"minimum\"'\n[[material]]\nname = \"355\"\ndensity = 7.85e-6"},
 		"requirement": {Flags{Requirements: []string{"energy of web <= 120"}},
 			"[[require]]\nname = \"energy of web <= 120\"\nquantity = \"energy\"\nregion = \"web\"\nat_most = 120"},
-		"requirements": {Flags{Requirements: []string{"max_utilisation<=1", "volume of a part of <= the web >=-2.5e3"}},
+		"requirements": {Flags{Requirements: []string{"max_utilisation<=1", "volume of a part of <= the web >=-2.5e3", "energy of a <= b<=3"}},
 			"[[require]]\nname = \"max_utilisation <= 1\"\nquantity = \"max_utilisation\"\nat_most = 1\n" +
-				"[[require]]\nname = \"volume of a part of <= the web >= -2500\"\nquantity = \"volume\"\nregion = \"a part of <= the web\"\nat_least = -2500"},
+				"[[require]]\nname = \"volume of a part of <= the web >= -2500\"\nquantity = \"volume\"\nregion = \"a part of <= the web\"\nat_least = -2500\n" +
+				"[[require]]\nname = \"energy of a <= b <= 3\"\nquantity = \"energy\"\nregion = \"a <= b\"\nat_most = 3"},
 	} {
 		t.Run(name, func(t *testing.T) {
 			got, err := Read("", c.flags, nil)

@@ -227,6 +227,47 @@ func TestMissingNumbersAreNaN(t *testing.T) {
 	}
 }
 
+// Values at the edge of what may be, and numbers as TOML writes them.
+func TestValuesThatMayJustBe(t *testing.T) {
+	to := &faults{}
+	study, _ := parseStudy("s.toml", []byte(`
+model.repeats = 1
+hotspots.count = 1
+limit.list = 0x01
+[[material]]
+name = "m"
+youngs_modulus = 2_100.5e+0_2
+poissons_ratio = -0.999
+reference_temperature = 0
+[[region]]
+name = "face"
+select = { box = [[0, 0, 5], [1, 1, 5]] }
+[[region]]
+name = "largest exact number"
+select = { array = "a", values = [-9007199254740992] }
+[[require]]
+quantity = "cells"
+at_least = 7
+at_most = 7
+`), Flags{}, to)
+	if err := to.err(); err != nil {
+		t.Fatal(err)
+	}
+	o := study.Options
+	if o.Repeats != 1 || o.Hotspots.Count != 1 || o.Limit.List != 1 {
+		t.Errorf("counts %d, %d, %d", o.Repeats, o.Hotspots.Count, o.Limit.List)
+	}
+	if m := o.Materials[0]; m.YoungsModulus != 210050 || m.PoissonsRatio != -0.999 || m.ReferenceTemperature != 0 {
+		t.Errorf("material %+v", m)
+	}
+	if box := o.Regions[0].Box; box.Low[2] != 5 || box.High[2] != 5 || o.Regions[1].Values[0] != -9007199254740992 {
+		t.Errorf("regions %+v", o.Regions)
+	}
+	if r := o.Requirements[0]; r.AtLeast != 7 || r.AtMost != 7 {
+		t.Errorf("requirement %+v", r)
+	}
+}
+
 func TestTime(t *testing.T) {
 	seconds := 3.0
 	for text, want := range map[string]Time{
