@@ -63,7 +63,7 @@ func (p *plan) audit(ctx context.Context, walk *mesh.Walk) error {
 			return err
 		}
 	}
-	isUnloaded := a.isUnloaded(&list[0].reading)
+	isUnloaded := a.isUnloaded(&good[0].reading)
 	if !agree(good) && p.from != FromStress && !isUnloaded {
 		return a.undecidable(good)
 	}
