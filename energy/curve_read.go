@@ -62,8 +62,12 @@ type ColumnRead struct {
 	DecidedBy string `json:"decided_by"` // call | file | default: the unit's origin
 }
 
-// maxCurveLine bounds a line, in bytes: no row of a table is longer.
-const maxCurveLine = 1 << 20
+const (
+	// maxCurveLine bounds a line, in bytes: no row of a table is longer.
+	maxCurveLine = 1 << 20
+	// maxCurveNumber bounds a number, so that no product of two of them is infinite.
+	maxCurveNumber = 1e100
+)
 
 // ReadCurve reads the record of a uniaxial test from a table in text form: UTF-8, or
 // Latin-1 where it is not valid UTF-8; columns parted by tabs, semicolons, commas or
@@ -235,6 +239,9 @@ func parseNumber(field string) (float64, error) {
 	value, err := strconv.ParseFloat(text, 64)
 	if err != nil {
 		return 0, fmt.Errorf("%q is no number", field)
+	}
+	if math.Abs(value) > maxCurveNumber {
+		return 0, fmt.Errorf("%q is too large, must be below %g", field, maxCurveNumber)
 	}
 	return value, nil
 }

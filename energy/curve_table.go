@@ -75,10 +75,11 @@ func (t *table) findHeadings(lines []textLine, reading *CurveReading) (bool, err
 		return false, nil
 	}
 	for i, line := range lines {
-		headings := headingsOf(split(line.text, t.delimiter))
-		if len(headings) < 2 {
+		fields := split(line.text, t.delimiter)
+		if len(fields) < 2 || t.isData(fields) {
 			continue
 		}
+		headings := headingsOf(fields)
 		strain, stress := t.strain, t.stress
 		err := errors.Join(strain.choose(headings, reading.True), stress.choose(headings, reading.True))
 		if strain.index < 0 || stress.index < 0 || strain.index == stress.index {
