@@ -33,7 +33,7 @@ type CurveAnalysis struct {
 	Resilience         Resilience        `json:"resilience"`
 	Toughness          Toughness         `json:"toughness"`
 	RambergOsgood      *RambergOsgoodFit `json:"ramberg_osgood"`
-	Findings           []CurveFinding    `json:"findings"`
+	Findings           []Finding         `json:"findings"`
 	Caution            string            `json:"caution"`
 
 	Points    []CurvePoint `json:"-"` // as measured
@@ -107,13 +107,6 @@ type Toughness struct {
 	BrittleEstimate Number `json:"brittle_estimate"` // 2/3 ultimate × last strain
 }
 
-// A CurveFinding is something that the reader of the numbers has to know.
-type CurveFinding struct {
-	Code     string `json:"code"`
-	Severity string `json:"severity"` // note | warning
-	Message  string `json:"message"`
-}
-
 // AnalyseCurve reads moduli, limits and energies off a test curve. Errors: a
 // *StudyError for options that cannot be, a *CurveError for a curve without an elastic
 // line.
@@ -123,7 +116,7 @@ func AnalyseCurve(test *CurveRecord, options CurveOptions) (*CurveAnalysis, erro
 		return nil, err
 	}
 	a := &CurveAnalysis{
-		Schema: CurveSchema, Caution: Caution, Findings: []CurveFinding{},
+		Schema: CurveSchema, Caution: Caution,
 		Source: CurveSource{Path: test.Path, Points: len(test.Points), Strain: test.Strain, Stress: test.Stress, IsTrue: test.IsTrue, Omitted: test.Omitted},
 		Units:  CurveUnits{Stress: Text(test.StressUnit), EnergyDensity: Text(densityNames[test.StressUnit])},
 		Points: test.Points, Lines: test.Lines, Last: test.Points[len(test.Points)-1],
@@ -317,4 +310,35 @@ func (a *CurveAnalysis) LawCurve() (*Curve, error) {
 		}
 	}
 	return NewCurve(points)
+}
+
+// A CurveRow is one point of the record with what belongs to it. Past the ultimate
+// stress there are no true values, before the elastic line's origin is no energy.
+type CurveRow struct {
+	Line            int64  `json:"line"` // of the file
+	Strain          Number `json:"strain"`
+	Stress          Number `json:"stress"`
+	CorrectedStrain Number `json:"corrected_strain"` // from the elastic line's origin
+	PlasticStrain   Number `json:"plastic_strain"`
+	EnergyDensity   Number `json:"energy_density"` // under the corrected curve
+	TrueStrain      Number `json:"true_strain"`
+	TrueStress      Number `json:"true_stress"`
+}
+
+// Rows returns the record point by point.
+func (a *CurveAnalysis) Rows() []CurveRow {
+	rows := make([]CurveRow, len(a.Points))
+	for i, p := range a.Points {
+		corrected := CurvePoint{p.Strain - a.line.origin, p.Stress}
+		rows[i] = CurveRow{
+			Line: int64(a.Lines[i]), Strain: Number(p.Strain), Stress: Number(p.Stress),
+			CorrectedStrain: Number(corrected.Strain), PlasticStrain: Number(a.plasticStrain(p)),
+			EnergyDensity: Number(a.Corrected.Area(corrected.Strain)), TrueStrain: None, TrueStress: None,
+		}
+		if p.Strain <= a.Ultimate.Strain {
+			truth := corrected.True()
+			rows[i].TrueStrain, rows[i].TrueStress = Number(truth.Strain), Number(truth.Stress)
+		}
+	}
+	return rows
 }

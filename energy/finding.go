@@ -40,6 +40,20 @@ var severities = map[string]string{
 	"mirrored-cells":       Note,
 	"limit-without-source": Note,
 	"one-value-per-cell":   Note,
+
+	// Of a test curve.
+	"few-points":            Warning,
+	"modulus-differs":       Warning,
+	"modulus-scatter":       Warning,
+	"no-proportional-limit": Warning,
+	"strain-unit-suspect":   Warning,
+	"window-past-limit":     Warning,
+	"no-offset-yield":       Note,
+	"no-ramberg-osgood":     Note,
+	"tangent-unresolved":    Note,
+	"toe":                   Note,
+	"true-converted":        Note,
+	"units-assumed":         Note,
 }
 
 // IsErrorFinding reports whether a code is one of a finding of severity error, the
