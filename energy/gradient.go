@@ -64,7 +64,8 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 	}
 	w.density[i] = w.energy[i] / w.measure[i]
 	w.peak[i] = math.NaN() // the file gives no stress or strain at any place
-	w.judge(i, r, &mean)
+	w.equivalent[i] = r.limit.equivalent(&mean)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
 		return notFinite
 	}

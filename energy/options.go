@@ -103,8 +103,10 @@ type Material struct {
 	YoungsModulus                float64
 	PoissonsRatio                float64
 	ProportionalLimit            float64
-	ProportionalLimitCompression float64
-	Source                       string // where the limit comes from
+	ProportionalLimitCompression float64 // for MaxPrincipal; absent: as in tension
+	YieldStress                  float64 // with HardeningExponent at 0.2 % plastic strain; alone that of a perfectly plastic material
+	HardeningExponent            float64 // n of Ramberg and Osgood
+	Source                       string  // where the limit comes from
 	Density                      float64
 	ThermalExpansion             float64
 	ReferenceTemperature         float64
@@ -115,7 +117,7 @@ func NewMaterial(name string) Material {
 	none := float64(None)
 	return Material{
 		Name: name, YoungsModulus: none, PoissonsRatio: none, ProportionalLimit: none,
-		ProportionalLimitCompression: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
+		ProportionalLimitCompression: none, YieldStress: none, HardeningExponent: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
 	}
 }
 

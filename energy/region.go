@@ -17,7 +17,7 @@ type region struct {
 	name      string
 	material  *Material // nil: none
 	law       *Law      // nil: none
-	limit     float64   // proportional limit, NaN: none
+	limit     limit
 	thickness float64
 	optional  bool
 }
@@ -65,11 +65,14 @@ func newRegionMap(ctx context.Context, walk *mesh.Walk, model *mesh.Model, optio
 
 // add resolves one region.
 func (m *regionMap) add(rule *Region, model *mesh.Model, options *Options, in *inputs) error {
-	r := region{name: rule.Name, limit: math.NaN(), thickness: rule.Thickness, optional: rule.Optional}
+	r := region{name: rule.Name, thickness: rule.Thickness, optional: rule.Optional}
 	if r.thickness == 0 {
 		r.thickness = options.Thickness
 	}
 	if err := r.setMaterial(rule, options); err != nil {
+		return err
+	}
+	if err := r.setLimit(rule, options); err != nil {
 		return err
 	}
 	s := selector{label: -1, box: rule.Box, rest: rule.Rest}
@@ -110,7 +113,6 @@ func (r *region) setMaterial(rule *Region, options *Options) error {
 		return studyError("region %q: no material %q", rule.Name, name)
 	}
 	r.material = &options.Materials[i]
-	r.limit = r.material.ProportionalLimit
 	if !Number(r.material.YoungsModulus).Exists() || !Number(r.material.PoissonsRatio).Exists() {
 		return nil
 	}

@@ -166,17 +166,12 @@ func (w *worker) evaluateCell(chunk *mesh.Chunk, i int, r *region) exclusionReas
 	}
 	w.density[i], w.peak[i], w.peakNode[i] = density, density, 0
 	w.isYielded[i] = isYielded
-	w.judge(i, r, &stress)
+	w.equivalent[i] = r.limit.equivalent(&stress)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i]) || !stress.IsFinite() || !strain.IsFinite() {
 		return notFinite
 	}
 	return notExcluded
-}
-
-// judge writes the equivalent stress and the utilisation of one place.
-func (w *worker) judge(i int, r *region, stress *mesh.SymmetricTensor) {
-	w.equivalent[i] = VonMisesStress(stress)
-	w.utilisation[i] = w.equivalent[i] / r.limit
 }
 
 // evaluateNodes fills the columns of a cell whose fields, or some of them, are on its
@@ -190,7 +185,7 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	w.growNodes(shape.NodeCount)
 	w.isYielded[i] = false
 	w.peak[i] = math.Inf(-1)
-	largest := math.Inf(-1)
+	largest, least := math.Inf(-1), math.Inf(1)
 	for k, node := range w.cell.Nodes {
 		stress, strain := &w.stress[k], &w.strain[k]
 		if w.at(chunk, i, node, r, stress, strain) {
@@ -202,11 +197,11 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 		if density := Density(stress, strain); density > w.peak[i] {
 			w.peak[i], w.peakNode[i] = density, int32(k)
 		}
-		w.judge(i, r, stress)
-		largest = max(largest, w.equivalent[i])
+		equivalent := r.limit.equivalent(stress)
+		largest, least = max(largest, equivalent), min(least, equivalent)
 	}
-	w.equivalent[i] = largest
-	w.utilisation[i] = largest / r.limit
+	w.equivalent[i] = r.limit.governing(largest, least)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	w.integrate(chunk, i, r, orientation)
 	w.density[i] = w.energy[i] / w.measure[i]
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
@@ -402,7 +397,7 @@ func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 		if density := w.density[i]; density < 0 {
 			w.part.negative[math.Float64bits(density)>>52&0x7ff]++
 		}
-		a.maxEquivalent = max(a.maxEquivalent, w.equivalent[i])
+		a.maxEquivalent, a.minEquivalent = max(a.maxEquivalent, w.equivalent[i]), min(a.minEquivalent, w.equivalent[i])
 		if a.maxDensity.takes(w.density[i], p) {
 			a.maxDensity = best{true, w.density[i], p, w.centroidOf(chunk, i)}
 		}
