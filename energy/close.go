@@ -1,6 +1,7 @@
 package energy
 
 import (
+	"cmp"
 	"math"
 	"slices"
 
@@ -93,12 +94,7 @@ func (p *plan) summary() ModelSummary {
 }
 
 // criterion returns the criterion of the study.
-func (p *plan) criterion() Criterion {
-	if p.options.Limit.Criterion == "" {
-		return VonMises
-	}
-	return p.options.Limit.Criterion
-}
+func (p *plan) criterion() Criterion { return cmp.Or(p.options.Limit.Criterion, VonMises) }
 
 // sources lists the files of the model.
 func (p *plan) sources() []SourceFile {
@@ -144,17 +140,22 @@ func excluded(total *part) []Exclusion {
 // fillAccounts lays out the accounts of the regions and of the whole.
 func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 	whole := wholeAccount(total)
-	hasLaws, hasDensities := true, true
+	hasLaws, hasDensities, hasCurves := true, true, true
 	ledger.Regions = make([]RegionAccount, len(p.regions.regions))
 	var mass Sum
 	for i := range p.regions.regions {
 		r := &p.regions.regions[i]
-		account := p.layOut(&total.accounts[i], r.law.IsIsotropic(), !math.IsNaN(r.limit))
+		account := p.layOut(&total.accounts[i], r.law.IsIsotropic(), r.limit.exists())
 		account.VolumeWithoutLimit = 0
-		if math.IsNaN(r.limit) {
+		if !r.limit.exists() {
 			account.VolumeWithoutLimit = account.Volume
 		}
-		entry := RegionAccount{Name: r.name, Criterion: string(p.criterion()), Account: account}
+		if account.Cells > 0 {
+			account.MaxEquivalentStress = Number(r.limit.governing(total.accounts[i].maxEquivalent, total.accounts[i].minEquivalent))
+		}
+		account.CurveEnergy = curveEnergy(&total.accounts[i], r.hencky != nil)
+		hasCurves = hasCurves && (r.hencky != nil || account.Cells == 0)
+		entry := RegionAccount{Name: r.name, Criterion: string(r.limit.criterion), Account: account}
 		if r.material != nil {
 			entry.Material = Text(r.material.Name)
 		}
@@ -170,6 +171,8 @@ func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 		ledger.Regions[i] = entry
 	}
 	ledger.Total = p.layOut(whole, hasLaws, p.hasLimits())
+	ledger.Total.MaxEquivalentStress = p.governingEquivalent(ledger.Regions)
+	ledger.Total.CurveEnergy = curveEnergy(whole, hasCurves)
 	if hasDensities {
 		ledger.Total.Mass = Number(mass.Float64())
 	}
@@ -185,18 +188,50 @@ func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 
 // wholeAccount returns the account of all regions together.
 func wholeAccount(total *part) *account {
-	whole := &account{maxEquivalent: math.Inf(-1)}
+	whole := newAccount()
 	for i := range total.accounts {
 		whole.join(&total.accounts[i])
 	}
-	return whole
+	return &whole
+}
+
+// governingEquivalent returns the equivalent stress that speaks for the whole model: the
+// region's with the largest utilisation where all are judged by max-principal and have a
+// limit, as it is within such a region; else the one of largest size. Of equals it is
+// the tensile one.
+func (p *plan) governingEquivalent(regions []RegionAccount) Number {
+	isByUtilisation := p.hasLimits()
+	for i := range p.regions.regions {
+		isByUtilisation = isByUtilisation && p.regions.regions[i].limit.criterion == MaxPrincipal
+	}
+	governing, largest := None, math.Inf(-1)
+	for i := range regions {
+		equivalent := regions[i].MaxEquivalentStress
+		size := math.Abs(float64(equivalent))
+		if isByUtilisation {
+			size = float64(regions[i].MaxUtilisation)
+		}
+		if size > largest || size == largest && equivalent > governing {
+			governing, largest = equivalent, size
+		}
+	}
+	return governing
+}
+
+// curveEnergy returns the energy under the curves, none where a cell is strained beyond
+// the end of its curve.
+func curveEnergy(a *account, hasCurve bool) Number {
+	if !hasCurve || a.beyondCurve > 0 {
+		return None
+	}
+	return Number(a.curveEnergy.Float64())
 }
 
 // volumeWithoutLimit returns the volume of the regions that have no limit.
 func (p *plan) volumeWithoutLimit(total *part) Number {
 	var volume Sum
 	for i := range p.regions.regions {
-		if math.IsNaN(p.regions.regions[i].limit) {
+		if !p.regions.regions[i].limit.exists() {
 			volume.Join(&total.accounts[i].volume)
 		}
 	}
@@ -216,9 +251,6 @@ func (p *plan) layOut(a *account, isIsotropic, hasLimit bool) Account {
 	}
 	account.MaxDensityCell, account.MaxDensitySource, account.MaxDensityAt = a.maxDensity.where()
 	_, _, account.PeakDensityAt = a.peak.where()
-	if a.cells > 0 {
-		account.MaxEquivalentStress = Number(a.maxEquivalent)
-	}
 	if account.Volume != 0 {
 		account.MeanDensity = account.Energy / account.Volume
 	}
@@ -320,7 +352,7 @@ func (l *Ledger) withoutEnergy() {
 	for _, a := range accounts {
 		a.Energy, a.EnergyShare, a.MeanDensity, a.EnergyPastLimit = None, None, None, None
 		a.MaxDensity, a.MaxDensityCell, a.MaxDensitySource, a.MaxDensityAt = None, None, None, nil
-		a.PeakDensity, a.PeakDensityAt = None, nil
+		a.PeakDensity, a.PeakDensityAt, a.CurveEnergy = None, nil, None
 	}
 	if l.Repeated != nil {
 		l.Repeated.Energy = None
@@ -368,8 +400,27 @@ func (p *plan) findInResult(ledger *Ledger, total *part) {
 	}
 	p.findNegative(ledger, total)
 	p.findZero(total)
+	p.findPastLimit(ledger)
 	if n := ledger.Total.CellsYielded; n > 0 {
 		f.add("plastic-strain-present", int64(n), "%d cells have plastic strain: the elastic energy stored is not the work done, and the limit's utilisation does not describe them", int64(n))
+	}
+}
+
+// nonlinearShare is the share of a region's volume past the limit above which the totals
+// of a linear run are in doubt (common practice, no source).
+const nonlinearShare = 0.01
+
+// findPastLimit advises a nonlinear run for each region of which too much is past the
+// limit. Where the file has plastic strain the run was one.
+func (p *plan) findPastLimit(ledger *Ledger) {
+	for i := range ledger.Regions {
+		r := &ledger.Regions[i]
+		if r.CellsYielded > 0 || !(r.VolumePastLimit > nonlinearShare*r.Volume) {
+			continue
+		}
+		p.findings.add("nonlinear-run-advised", int64(r.CellsPastLimit),
+			"region %q: %.3g %% of the volume is past the limit, and stress there is more than the material bears, so that the region's linear energy is in doubt: make a nonlinear run",
+			r.Name, 100*float64(r.VolumePastLimit/r.Volume))
 	}
 }
 

@@ -30,6 +30,7 @@ var severities = map[string]string{
 	"parts-not-accounted":       Warning,
 	"degenerate-cells":          Warning,
 
+	"nonlinear-run-advised":  Warning,
 	"plastic-strain-present": Warning,
 	"several-locations":      Warning,
 	"outside-path":           Warning,

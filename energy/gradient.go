@@ -38,11 +38,14 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 		inelastic, isYielded := w.inelasticAt(chunk, i, node, r)
 		w.strain[k] = inelastic
 		w.isYielded[i] = w.isYielded[i] || isYielded
+		if r.hencky != nil {
+			w.plastic[k] = *w.plasticAt(chunk, i, node)
+		}
 	}
 	rule := w.productRule()
 	elements, factor := w.elementsOf(rule, chunk, i, r, orientation)
 	var mean mesh.SymmetricTensor
-	var energy, volumetric, measure float64
+	var energy, volumetric, curve, measure float64
 	for q, element := range elements {
 		values := w.cell.Values(rule, q, w.rational)
 		strain := w.strainAt(rule, q, values)
@@ -50,6 +53,10 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 		energy += float64(Density(&stress, &strain) * element)
 		volumetric += float64(VolumetricDensity(&stress, &strain) * element)
 		measure += element
+		if r.hencky != nil {
+			reached := w.reachedAt(&strain, values)
+			curve += float64(r.hencky.Density(&reached) * element)
+		}
 		for c := range mean {
 			mean[c] += float64(stress[c] * element)
 		}
@@ -58,13 +65,14 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 		mean[c] /= measure
 	}
 	w.noteNonZero(&mean, &mean)
-	w.energy[i], w.volumetric[i] = energy*factor, 0
+	w.energy[i], w.volumetric[i], w.curve[i] = energy*factor, 0, curve*factor
 	if r.law.IsIsotropic() {
 		w.volumetric[i] = volumetric * factor
 	}
 	w.density[i] = w.energy[i] / w.measure[i]
 	w.peak[i] = math.NaN() // the file gives no stress or strain at any place
-	w.judge(i, r, &mean)
+	w.equivalent[i] = r.limit.equivalent(&mean)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
 		return notFinite
 	}

@@ -124,6 +124,9 @@ type MaterialUsed struct {
 	Stiffness      *[6][6]float64 `json:"stiffness"`
 	StiffnessOrder Text           `json:"stiffness_order"`
 	Axes           *[3]Vector     `json:"axes"`
+
+	Curve               Text `json:"curve"`
+	ProportionalLimitBy Text `json:"proportional_limit_by"`
 }
 
 // A Vector is a place or a direction in the model's axes: x, y, z.

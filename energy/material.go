@@ -1,6 +1,8 @@
 package energy
 
 import (
+	"fmt"
+
 	"strainledger/mesh"
 )
 
@@ -11,8 +13,10 @@ type Material struct {
 	YoungsModulus                float64
 	PoissonsRatio                float64
 	ProportionalLimit            float64
-	ProportionalLimitCompression float64
-	Source                       string // where the limit comes from
+	ProportionalLimitCompression float64 // for MaxPrincipal; absent: as in tension
+	YieldStress                  float64 // with HardeningExponent at 0.2 % plastic strain; alone that of a perfectly plastic material
+	HardeningExponent            float64 // n of Ramberg and Osgood
+	Source                       string  // where the limit comes from
 	Density                      float64
 	ThermalExpansion             float64
 	ReferenceTemperature         float64
@@ -23,6 +27,43 @@ type Material struct {
 	Stiffness      *[6][6]float64 // or any stiffness, engineering shear, in
 	StiffnessOrder mesh.Order     // this order; nil: xx yy zz xy yz xz
 	Axes           *[3]Vector     // rows: directions of the material axes; nil: the model's
+
+	Curve *MaterialCurve // nil: none
+}
+
+// A MaterialCurve is the stress-strain curve of a material, from a test.
+type MaterialCurve struct {
+	Path     string
+	Analysis *CurveAnalysis // in the study's unit of stress
+}
+
+// SetCurve gives the material a curve. Modulus and proportional limit come from it where
+// they are not given; the limit's source names the curve and the limit's definition.
+func (m *Material) SetCurve(curve *MaterialCurve) {
+	m.Curve = curve
+	a := curve.Analysis
+	if !Number(m.YoungsModulus).Exists() && m.YoungsModuli == nil && m.Stiffness == nil {
+		m.YoungsModulus = float64(a.Modulus.YoungsModulus)
+	}
+	if !Number(m.ProportionalLimit).Exists() && a.ProportionalLimit.Stress.Exists() {
+		m.ProportionalLimit = float64(a.ProportionalLimit.Stress)
+		if m.Source == "" {
+			m.Source = fmt.Sprintf("%s, %s", curve.Path, a.ProportionalLimit.By)
+		}
+	}
+}
+
+// henckyLaw returns the energy under the material's curve, nil where there is none or
+// the law is not isotropic.
+func (m *Material) henckyLaw(law *Law) (*HenckyLaw, error) {
+	if m.Curve == nil || law == nil || law.general != nil {
+		return nil, nil
+	}
+	curve, err := m.Curve.Analysis.LawCurve()
+	if err != nil {
+		return nil, err
+	}
+	return NewHenckyLaw(curve, m.YoungsModulus, m.PoissonsRatio)
 }
 
 // NewMaterial returns a material of which nothing but the name is given.
@@ -30,7 +71,7 @@ func NewMaterial(name string) Material {
 	none := float64(None)
 	return Material{
 		Name: name, YoungsModulus: none, PoissonsRatio: none, ProportionalLimit: none,
-		ProportionalLimitCompression: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
+		ProportionalLimitCompression: none, YieldStress: none, HardeningExponent: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
 	}
 }
 
@@ -86,6 +127,9 @@ func (m *Material) used() MaterialUsed {
 		ReferenceTemperature: Number(m.ReferenceTemperature), Source: Text(m.Source),
 		YoungsModuli: m.YoungsModuli, ShearModuli: m.ShearModuli, PoissonsRatios: m.PoissonsRatios,
 		Stiffness: m.Stiffness, Axes: m.Axes,
+	}
+	if m.Curve != nil {
+		used.Curve, used.ProportionalLimitBy = Text(m.Curve.Path), Text(m.Curve.Analysis.ProportionalLimit.By)
 	}
 	if m.Stiffness != nil {
 		used.StiffnessOrder = Text(mesh.OrderOf6.String())

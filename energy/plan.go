@@ -2,7 +2,6 @@ package energy
 
 import (
 	"context"
-	"math"
 	"slices"
 
 	"strainledger/mesh"
@@ -37,9 +36,10 @@ type Plan struct {
 
 // A PlannedRegion is one region of a Plan.
 type PlannedRegion struct {
-	Name     string
-	Material string
-	Limit    Number
+	Name      string
+	Material  string
+	Criterion Criterion
+	Limit     Number // in tension
 }
 
 // PlanTally decides everything that a tally would decide from the headers and the
@@ -55,7 +55,7 @@ func PlanTally(ctx context.Context, model *mesh.Model, options *Options) (*Plan,
 	result := &Plan{EnergyFrom: p.from, Fields: p.inputs.used, Cells: model.CellCount(), Findings: p.findings.sorted(options.Acceptances)}
 	for i := range p.regions.regions {
 		r := &p.regions.regions[i]
-		planned := PlannedRegion{Name: r.name, Limit: Number(r.limit)}
+		planned := PlannedRegion{Name: r.name, Criterion: r.limit.criterion, Limit: Number(r.limit.tension)}
 		if r.material != nil {
 			planned.Material = r.material.Name
 		}
@@ -150,7 +150,7 @@ func (p *plan) checkRequirements() error {
 // hasLimits reports whether every region has a proportional limit.
 func (p *plan) hasLimits() bool {
 	for i := range p.regions.regions {
-		if math.IsNaN(p.regions.regions[i].limit) {
+		if !p.regions.regions[i].limit.exists() {
 			return false
 		}
 	}
@@ -189,6 +189,12 @@ func (p *plan) noteSettings() {
 		seen[m.Name] = true
 		if Number(m.ProportionalLimit).Exists() && m.Source == "" {
 			p.findings.add("limit-without-source", 0, "the proportional limit of material %q is given without its source", m.Name)
+		}
+	}
+	for i := range p.regions.regions {
+		r := &p.regions.regions[i]
+		if c := r.limit.criterion; r.law != nil && !r.law.IsIsotropic() && (c == VonMises || c == Tresca) {
+			p.findings.add("criterion-unsuited", 0, "region %q: criterion %s takes material %q for isotropic, which its law is not: read its equivalent stress with care, or judge by max-principal", r.name, c, r.material.Name)
 		}
 	}
 	if p.from != FromDisplacement && p.inputs.isPerCell() {

@@ -26,9 +26,11 @@ type worker struct {
 	equivalent  []float64
 	utilisation []float64 // NaN without a limit
 	isYielded   []bool
+	curve       []float64 // energy under the material's curve; NaN beyond its end
 
 	// The places of the current cell: its nodes, or one place for cell data.
 	stress, strain []mesh.SymmetricTensor
+	plastic        []mesh.SymmetricTensor
 	displacement   []Vector
 	gradients      [][3]float64
 	elements       []float64
@@ -67,7 +69,7 @@ func (w *worker) grow(count int) {
 		return
 	}
 	w.region, w.peakNode, w.isYielded = make([]int32, count), make([]int32, count), make([]bool, count)
-	for _, column := range []*[]float64{&w.measure, &w.energy, &w.volumetric, &w.density, &w.peak, &w.equivalent, &w.utilisation} {
+	for _, column := range []*[]float64{&w.measure, &w.energy, &w.volumetric, &w.density, &w.peak, &w.equivalent, &w.utilisation, &w.curve} {
 		*column = make([]float64, count)
 	}
 }
@@ -166,17 +168,16 @@ func (w *worker) evaluateCell(chunk *mesh.Chunk, i int, r *region) exclusionReas
 	}
 	w.density[i], w.peak[i], w.peakNode[i] = density, density, 0
 	w.isYielded[i] = isYielded
-	w.judge(i, r, &stress)
+	if r.hencky != nil {
+		reached := sum(&strain, w.plasticAt(chunk, i, 0))
+		w.curve[i] = r.hencky.Density(&reached) * w.measure[i]
+	}
+	w.equivalent[i] = r.limit.equivalent(&stress)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i]) || !stress.IsFinite() || !strain.IsFinite() {
 		return notFinite
 	}
 	return notExcluded
-}
-
-// judge writes the equivalent stress and the utilisation of one place.
-func (w *worker) judge(i int, r *region, stress *mesh.SymmetricTensor) {
-	w.equivalent[i] = VonMisesStress(stress)
-	w.utilisation[i] = w.equivalent[i] / r.limit
 }
 
 // evaluateNodes fills the columns of a cell whose fields, or some of them, are on its
@@ -190,11 +191,14 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	w.growNodes(shape.NodeCount)
 	w.isYielded[i] = false
 	w.peak[i] = math.Inf(-1)
-	largest := math.Inf(-1)
+	largest, least := math.Inf(-1), math.Inf(1)
 	for k, node := range w.cell.Nodes {
 		stress, strain := &w.stress[k], &w.strain[k]
 		if w.at(chunk, i, node, r, stress, strain) {
 			w.isYielded[i] = true
+		}
+		if r.hencky != nil {
+			w.plastic[k] = *w.plasticAt(chunk, i, node)
 		}
 		if !stress.IsFinite() || !strain.IsFinite() {
 			return notFinite
@@ -202,11 +206,11 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 		if density := Density(stress, strain); density > w.peak[i] {
 			w.peak[i], w.peakNode[i] = density, int32(k)
 		}
-		w.judge(i, r, stress)
-		largest = max(largest, w.equivalent[i])
+		equivalent := r.limit.equivalent(stress)
+		largest, least = max(largest, equivalent), min(least, equivalent)
 	}
-	w.equivalent[i] = largest
-	w.utilisation[i] = largest / r.limit
+	w.equivalent[i] = r.limit.governing(largest, least)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	w.integrate(chunk, i, r, orientation)
 	w.density[i] = w.energy[i] / w.measure[i]
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
@@ -220,7 +224,7 @@ func (w *worker) growNodes(count int) {
 	if len(w.stress) >= count {
 		return
 	}
-	w.stress, w.strain = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
+	w.stress, w.strain, w.plastic = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
 	w.displacement, w.gradients, w.rational = make([]Vector, count), make([][3]float64, count), make([]float64, count)
 }
 
@@ -258,7 +262,7 @@ func (w *worker) elementsOf(rule *mesh.Tabulation, chunk *mesh.Chunk, i int, r *
 func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) {
 	rule := w.productRule()
 	elements, factor := w.elementsOf(rule, chunk, i, r, orientation)
-	var energy, volumetric float64
+	var energy, volumetric, curve float64
 	for q, element := range elements {
 		values := w.cell.Values(rule, q, w.rational)
 		var stress, strain mesh.SymmetricTensor
@@ -271,7 +275,12 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 		}
 		energy += float64(Density(&stress, &strain) * element)
 		volumetric += float64(VolumetricDensity(&stress, &strain) * element)
+		if r.hencky != nil {
+			reached := w.reachedAt(&strain, values)
+			curve += float64(r.hencky.Density(&reached) * element)
+		}
 	}
+	w.curve[i] = curve * factor
 	w.energy[i] = energy * factor
 	w.volumetric[i] = 0
 	if r.law.IsIsotropic() {
@@ -302,6 +311,36 @@ func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, 
 	w.complete(r, stress, strain)
 	w.noteNonZero(stress, strain)
 	return isYielded
+}
+
+// plasticAt returns the plastic strain at one place, zero where the file has none.
+func (w *worker) plasticAt(chunk *mesh.Chunk, cell int, node int32) *mesh.SymmetricTensor {
+	var plastic mesh.SymmetricTensor
+	if w.inputs.plasticStrain.exists() {
+		plastic = w.inputs.plasticStrain.at(chunk, cell, node)
+	}
+	return &plastic
+}
+
+// reachedAt returns the strain that the curve was loaded to at a point of the rule:
+// the elastic strain and the interpolated plastic one, without the thermal.
+func (w *worker) reachedAt(elastic *mesh.SymmetricTensor, values []float64) mesh.SymmetricTensor {
+	reached := *elastic
+	for k, value := range values {
+		for c := range reached {
+			reached[c] += float64(value * w.plastic[k][c])
+		}
+	}
+	return reached
+}
+
+// sum adds two tensors.
+func sum(a, b *mesh.SymmetricTensor) mesh.SymmetricTensor {
+	result := *a
+	for c := range result {
+		result[c] += b[c]
+	}
+	return result
 }
 
 // noteNonZero remembers that there was a value which is not zero.
@@ -394,6 +433,9 @@ func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 	a.volume.AddAll(w.measure[low:high])
 	a.energy.AddAll(w.energy[low:high])
 	a.volumetric.AddAll(w.volumetric[low:high])
+	if w.regions.regions[number].hencky != nil {
+		w.gatherCurve(a, low, high)
+	}
 	for i := low; i < high; i++ {
 		p := place{source: chunk.Source, cell: chunk.First + int64(i)}
 		if w.isYielded[i] {
@@ -402,7 +444,7 @@ func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 		if density := w.density[i]; density < 0 {
 			w.part.negative[math.Float64bits(density)>>52&0x7ff]++
 		}
-		a.maxEquivalent = max(a.maxEquivalent, w.equivalent[i])
+		a.maxEquivalent, a.minEquivalent = max(a.maxEquivalent, w.equivalent[i]), min(a.minEquivalent, w.equivalent[i])
 		if a.maxDensity.takes(w.density[i], p) {
 			a.maxDensity = best{true, w.density[i], p, w.centroidOf(chunk, i)}
 		}
@@ -410,6 +452,17 @@ func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 			a.peak = best{true, w.peak[i], at, w.peakPlace(chunk, i)}
 		}
 		w.rank(chunk, i, p, a)
+	}
+}
+
+// gatherCurve adds the energies under the curve of the cells [low, high).
+func (w *worker) gatherCurve(a *account, low, high int) {
+	for _, energy := range w.curve[low:high] {
+		if math.IsNaN(energy) {
+			a.beyondCurve++
+			continue
+		}
+		a.curveEnergy.Add(energy)
 	}
 }
 

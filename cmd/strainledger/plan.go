@@ -29,9 +29,10 @@ type plannedFile struct {
 }
 
 type plannedRegion struct {
-	Name     string        `json:"name"`
-	Material energy.Text   `json:"material"`
-	Limit    energy.Number `json:"proportional_limit"`
+	Name      string           `json:"name"`
+	Material  energy.Text      `json:"material"`
+	Limit     energy.Number    `json:"proportional_limit"`
+	Criterion energy.Criterion `json:"criterion"`
 }
 
 // plan prints what an account would do.
@@ -54,7 +55,7 @@ func (p *program) plan(ctx context.Context, opened *results, a *account, options
 		run.Files = append(run.Files, plannedFile{source.Path, source.Points, source.Cells, energy.Number(source.Time)})
 	}
 	for _, region := range planned.Regions {
-		run.Regions = append(run.Regions, plannedRegion{region.Name, energy.Text(region.Material), region.Limit})
+		run.Regions = append(run.Regions, plannedRegion{region.Name, energy.Text(region.Material), region.Limit, region.Criterion})
 	}
 	switch {
 	case options.json:
@@ -98,7 +99,7 @@ func (r *plannedRun) text() string {
 			material = string(region.Material)
 		}
 		if region.Limit.Exists() {
-			limit = fmt.Sprintf("proportional limit %g", float64(region.Limit))
+			limit = fmt.Sprintf("proportional limit %g by %s", float64(region.Limit), region.Criterion)
 		}
 		line("region   %s: %s, %s", region.Name, material, limit)
 	}
