@@ -89,10 +89,10 @@ type cellTypeRow struct {
 	// middles lists the nodes after the corners, each by the corners in whose middle
 	// it lies. For Lagrange cells it is their one variant that is no lattice.
 	middles string
-	variant int // the number of corners and middles; not written in the table
+	variant int // the node count of that variant; not written in the table
 
 	dimension   int    // that of the unit cell is not written in the table
-	least, most int    // node count; that of corners and middles is not written
+	least, most int    // node counts; that of corners and middles is not written
 	reason      string // why the type is unsupported
 }
 
@@ -200,9 +200,12 @@ var cellTypeRows = func() (rows [256]*cellTypeRow) {
 		for _, dimension := range row.unit.simplices {
 			row.dimension += dimension
 		}
-		row.variant = len(row.unit.corners) + len(strings.Fields(row.middles))
-		if row.family == middles {
-			row.least, row.most = row.variant, row.variant
+		count := len(row.unit.corners) + len(strings.Fields(row.middles))
+		switch {
+		case row.family == middles:
+			row.least, row.most = count, count
+		case row.middles != "":
+			row.variant = count
 		}
 	}
 	return rows

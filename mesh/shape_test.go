@@ -33,7 +33,7 @@ func interpolating(t testing.TB) []*Shape {
 			if row.family == middles {
 				continue
 			}
-			fallthrough
+			fallthrough // the variant of a Lagrange cell, then the others
 		default:
 			for degree := 1; degree <= MaxDegree; degree++ {
 				if count := int(row.latticeCount(row.equalDegrees(degree))); row.checkCount(count) == nil {

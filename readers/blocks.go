@@ -109,17 +109,18 @@ func (b *blocks) load(c *cursor) error {
 }
 
 // plausible refuses a block that cannot hold what it promises: deflate gives at most
-// 1032 bytes for one (two bits for a copy of 258), LZ4 at most 255.
+// 1032 bytes for one (two bits for a copy of 258), LZ4 at most 255; LZMA, which has no
+// such bound, a little less than 8,000 on zeros (measured).
 func (b *blocks) plausible(length, size int64) error {
-	limit := int64(1<<63 - 1)
-	switch {
-	case b.compressor == zlibBlocks && size < limit/1032:
-		limit = 1032 * size
-	case b.compressor == lz4Blocks && size < limit/255:
-		limit = 255 * size
+	ratio := int64(1032)
+	switch b.compressor {
+	case lz4Blocks:
+		ratio = 255
+	case lzmaBlocks:
+		ratio = 1 << 14
 	}
-	if length > limit {
-		return malformed("a block of %d compressed bytes is said to hold %d bytes, found room for at most %d", size, length, limit)
+	if length/ratio > size {
+		return malformed("%d compressed bytes are said to hold %d bytes, found room for at most %d", size, length, size*ratio)
 	}
 	return nil
 }

@@ -119,9 +119,8 @@ func (s *section) readStarts(c *cursor, p *piece, low, high int64) (int64, error
 	if signs < 0 || origin+previous-first > math.MaxInt32 {
 		return 0, s.startFault(p, ends, low)
 	}
-	if s.connectivity.form != textForm && previous > s.connectivity.length/s.connectivity.number.size() {
-		return 0, p.cellError(s.offsets, s.first+high-1, malformed("found the end of the cell at %d, connectivity has %d entries",
-			previous, s.connectivity.length/s.connectivity.number.size()))
+	if most := s.connectivity.most(); previous > most {
+		return 0, p.cellError(s.offsets, s.first+high-1, malformed("found the end of the cell at %d, connectivity has room for %d entries", previous, most))
 	}
 	if s.types == nil {
 		for i, end := range ends[1:] {
@@ -148,12 +147,12 @@ func (s *section) startFault(p *piece, ends []int64, low int64) error {
 func (s *section) readNodes(c *cursor, p *piece, first, low int64, cells int) error {
 	begin := len(c.nodes)
 	end := int(c.start[len(c.start)-1])
-	c.nodes = extended(c.nodes, end-begin)
 	size := s.connectivity.number.size()
 	data, err := s.connectivity.bytes(c, first*size, (first+int64(end-begin))*size)
 	if err != nil {
 		return err
 	}
+	c.nodes = extended(c.nodes, end-begin)
 	if s.connectivity.number.nodes(c.nodes[begin:], data, p.pointCount) {
 		return nil
 	}

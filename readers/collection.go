@@ -19,7 +19,7 @@ func (o *opener) readCollection(x *xmlFile, at branch) error {
 	if len(times) == 0 {
 		return placedAt(x.file, x.data, malformed("found no DataSet in the collection"))
 	}
-	o.addTimes(times...)
+	o.model.Times = append(o.model.Times, times...)
 	chosen, err := o.options.Time.pick(times)
 	if err != nil {
 		return placedAt(x.file, x.data, err)
@@ -67,8 +67,8 @@ func (o *opener) part(e *element, at branch) branch {
 		at = at.below(group)
 	}
 	inside := at.below(name)
-	for i := 1; slices.Contains(o.model.Blocks, inside.name); i++ {
-		inside = at.below(name + "-" + strconv.Itoa(i))
+	if o.blockNames[inside.name] {
+		inside = at.below(name + "-" + strconv.Itoa(len(o.model.Blocks)))
 	}
 	return inside
 }

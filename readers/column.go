@@ -78,6 +78,17 @@ func (a *column) need(tuples int64, what string) error {
 	return nil
 }
 
+// most returns how many numbers the array has room for.
+func (a *column) most() int64 {
+	switch {
+	case a.form == textForm:
+		return a.text.most()
+	case a.number.size() == 0:
+		return 0
+	}
+	return a.length / a.number.size()
+}
+
 // A slot is what one worker keeps of a column: the bytes that it decoded last.
 type slot struct {
 	owner     *column
@@ -102,11 +113,14 @@ func room(buffer *[]byte, n int) []byte {
 	return (*buffer)[:n]
 }
 
+// growth is how much memory is taken at once on the word of a header alone.
+const growth = 16 << 20
+
 // reserve gives the slot room for n bytes and keeps the first kept ones.
 func (s *slot) reserve(n int64, kept int64) {
 	words := (n + 7) / 8
 	if int64(len(s.buffer)) < words {
-		buffer := make([]uint64, words+words/4)
+		buffer := make([]uint64, max(words+words/4, min(2*int64(len(s.buffer)), words+growth)))
 		copy(buffer, s.buffer[:(kept+7)/8])
 		s.buffer = buffer
 	}
@@ -180,12 +194,24 @@ func (a *column) unpackBlocks(c *cursor, s *slot, low, high int64) error {
 		kept = s.high - start
 		copy(s.data, s.data[start-s.low:s.high-s.low])
 	}
-	s.reserve(end-start, kept)
-	s.low, s.high = start, end
-	if isStream {
-		return s.stream.read(c, a.blocks, s.data[kept:], start+kept)
+	s.low = start
+	for at := start + kept; ; {
+		behind := min(end, at+growth)
+		if !isStream {
+			behind = min(end, (behind+size-1)/size*size)
+		}
+		s.reserve(behind-start, at-start)
+		s.high = behind
+		var err error
+		if isStream {
+			err = s.stream.read(c, a.blocks, s.data[at-start:], at)
+		} else {
+			err = a.blocks.decode(c, s.data[at-start:], (at+size-1)/size, (behind+size-1)/size)
+		}
+		if at = behind; err != nil || at == end {
+			return err
+		}
 	}
-	return a.blocks.decode(c, s.data[kept:], (start+kept+size-1)/size, (end+size-1)/size)
 }
 
 // parse reads the words that hold [low, high).

@@ -20,6 +20,8 @@ type piece struct {
 	sections   []section
 	faces      *faceArrays
 	arrays     []*column // in the order of mesh.Piece.Arrays
+	known      map[arrayName]bool
+	unlisted   []*column // arrays that only the reader itself uses, for other pieces lack them
 	fields     []*column // arrays of the data set that have tuples for its cells
 	ghosts     *column   // ghost marks of cells
 	degrees    *column   // of Lagrange and Bézier cells
@@ -27,9 +29,15 @@ type piece struct {
 	isOldOrder bool      // Lagrange and Bézier hexahedra have their edges in the old order
 }
 
+// An arrayName tells arrays of one piece apart.
+type arrayName struct {
+	on   mesh.Location
+	name string
+}
+
 // columns returns all columns of the piece.
 func (p *piece) columns() []*column {
-	columns := slices.Concat(p.arrays, p.fields, p.faces.columns())
+	columns := slices.Concat(p.arrays, p.unlisted, p.fields, p.faces.columns())
 	if p.points != nil {
 		columns = append(columns, p.points)
 	}
@@ -67,10 +75,20 @@ func (p *piece) runCells() int {
 	return int(min(cells, p.cellCount))
 }
 
+// isOwn reports whether the reader itself uses an array: ghost marks, degrees and
+// rational weights.
+func (p *piece) isOwn(a *column) bool {
+	return a == p.ghosts || a == p.degrees || p.grid != nil && a == p.grid.hiddenPoints ||
+		a.On == mesh.OnPoint && a.Name == p.weights
+}
+
 // find returns a point or cell array of the piece.
 func (p *piece) find(on mesh.Location, name string) (*column, error) {
-	for _, a := range p.arrays {
-		if a.On == on && a.Name == name {
+	for _, list := range [2][]*column{p.arrays, p.unlisted} {
+		for _, a := range list {
+			if a.On != on || a.Name != name {
+				continue
+			}
 			if a.number.size() == 0 {
 				return nil, a.fail(unsupported("found values of type %s, need numbers", a.number))
 			}
@@ -174,7 +192,7 @@ func (c *cursor) fill(p *piece, span mesh.Span, want *mesh.Want, to *mesh.Chunk)
 			return err
 		}
 		to.Start, to.Nodes, to.Shapes = c.start, c.nodes, c.shapes
-		if len(c.faceStart) == to.Count+1 {
+		if len(c.faces) > 0 {
 			to.Faces, to.FaceStart = c.faces, c.faceStart
 		}
 	}
@@ -183,7 +201,8 @@ func (c *cursor) fill(p *piece, span mesh.Span, want *mesh.Want, to *mesh.Chunk)
 
 // topology fills types, starts and nodes.
 func (c *cursor) topology(p *piece, span mesh.Span, noNodes bool) error {
-	c.types, c.nodes, c.faceStart = c.types[:0], c.nodes[:0], c.faceStart[:0]
+	c.types, c.nodes = c.types[:0], c.nodes[:0]
+	c.faces, c.faceStart = c.faces[:0], c.faceStart[:0]
 	c.start = append(c.start[:0], 0)
 	if p.grid != nil {
 		p.grid.read(c, span.Low, span.High, noNodes)
@@ -224,7 +243,7 @@ func (c *cursor) marks(p *piece, span mesh.Span) ([]uint8, error) {
 
 // finishNodes adds the faces of polyhedra, brings nodes into order and finds shapes.
 func (c *cursor) finishNodes(p *piece, span mesh.Span) error {
-	if len(c.faceStart) == 0 && slices.Contains(c.types, mesh.Polyhedron) {
+	if p.faces != nil || len(c.faceStart) == 0 && slices.Contains(c.types, mesh.Polyhedron) {
 		if err := p.faces.read(c, p, c.types, span.Low, span.High); err != nil {
 			return err
 		}

@@ -186,10 +186,13 @@ func (w *window) blanks() (byte, bool, error) {
 // fail makes an error at the window's place.
 func (w *window) fail(err error) error { return w.file.fail(w.offset(), err) }
 
+// lineBytes is how much text is gone through at most to find the line of a fault.
+const lineBytes = 1 << 30
+
 // located gives an error the line of its place, where the file is text there.
 func (h *hand) located(err error) error {
 	place, ok := err.(*Error)
-	if !ok || place.file == nil || place.Line > 0 || place.Offset > place.file.text {
+	if !ok || place.file == nil || place.Line > 0 || place.Offset > min(place.file.text, lineBytes) {
 		return err
 	}
 	line := 1

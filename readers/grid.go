@@ -235,9 +235,13 @@ func (g *grid) load(c *cursor) (*[3][]float64, error) {
 	}
 	var axes [3][]float64
 	for axis, a := range g.coordinates {
-		axes[axis] = make([]float64, g.points[axis])
-		if err := a.valuesTo(c, 0, g.points[axis], axes[axis]); err != nil {
-			return nil, err
+		const step = 32 << 10 // memory grows with what is really there
+		for low := int64(0); low < g.points[axis]; low += step {
+			values, err := a.values(c, low, min(low+step, g.points[axis]))
+			if err != nil {
+				return nil, err
+			}
+			axes[axis] = append(axes[axis], values...)
 		}
 	}
 	g.loaded = &axes

@@ -355,13 +355,11 @@ func (l *legacyFile) attributes(keyword string) error {
 	}
 }
 
-// keep takes an array into the piece; of one name the first counts.
+// keep takes a point or cell array.
 func (l *legacyFile) keep(a *column) {
 	p := l.piece
-	for _, other := range p.arrays {
-		if other.On == a.On && other.Name == a.Name {
-			return
-		}
+	if !p.keep(a, l.version < 400) {
+		return
 	}
 	if a.On == mesh.OnCell && a.Name == "HigherOrderDegrees" && a.Components == 3 {
 		p.degrees = a
@@ -369,7 +367,6 @@ func (l *legacyFile) keep(a *column) {
 	if a.On == mesh.OnPoint && a.Name == "RationalWeights" && a.Components == 1 {
 		p.weights = a.Name
 	}
-	p.keep(a, l.version < 400)
 }
 
 // scalars reads SCALARS name type [components], which may be followed by the name

@@ -36,10 +36,7 @@ type Options struct {
 // Open reads the headers of the files, which are blocks of one model, and returns
 // what they hold. The path "-" is standard input. Close the model after use.
 func Open(ctx context.Context, paths []string, options Options) (*mesh.Model, error) {
-	o := &opener{
-		ctx: ctx, options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, 1),
-		model: &mesh.Model{}, taken: map[string]bool{},
-	}
+	o := newOpener(ctx, options)
 	defer o.cursor.Close()
 	for _, path := range paths {
 		if err := o.add(path); err != nil {
@@ -56,16 +53,25 @@ func Open(ctx context.Context, paths []string, options Options) (*mesh.Model, er
 
 // An opener gathers a model from files.
 type opener struct {
-	ctx     context.Context
-	options Options
-	limits  Limits
-	cursor  *cursor // reads what headers need
-	model   *mesh.Model
-	pieces  []*piece
-	taken   map[string]bool // files that are in the model, by clean path
-	root    string          // folder of the file that the call names
-	spools  []spoolFile     // temporary files
-	decoded int64           // bytes that compressed content decodes to
+	ctx        context.Context
+	options    Options
+	limits     Limits
+	cursor     *cursor // reads what headers need
+	model      *mesh.Model
+	pieces     []*piece
+	taken      map[string]bool // files that are in the model, by clean path
+	fieldNames map[string]bool // names of field arrays
+	blockNames map[string]bool // names of blocks
+	root       string          // folder of the file that the call names
+	spools     []spoolFile     // temporary files
+	decoded    int64           // bytes that compressed content decodes to
+}
+
+func newOpener(ctx context.Context, options Options) *opener {
+	return &opener{
+		ctx: ctx, options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, 1),
+		model: &mesh.Model{}, taken: map[string]bool{}, fieldNames: map[string]bool{}, blockNames: map[string]bool{},
+	}
 }
 
 // A branch is the place in the model at which a file is read.
@@ -97,7 +103,7 @@ func (o *opener) add(path string) error {
 	}
 	o.root = filepath.Dir(path)
 	name := filepath.Base(path)
-	if slices.Contains(o.model.Blocks, name) {
+	if o.blockNames[name] {
 		name = filepath.ToSlash(path)
 	}
 	return o.read(f, branch{name: name, time: math.NaN()})
@@ -243,9 +249,12 @@ func (o *opener) finish() error {
 		}
 	}
 	for _, source := range o.model.Sources {
-		o.addTimes(source.Time)
+		if !math.IsNaN(source.Time) {
+			o.model.Times = append(o.model.Times, source.Time)
+		}
 	}
 	slices.Sort(o.model.Times)
+	o.model.Times = slices.Compact(o.model.Times)
 	if o.options.Time.Choice == AtNumber {
 		if _, err := o.options.Time.pick(o.model.Times); err != nil {
 			return err
@@ -255,13 +264,4 @@ func (o *opener) finish() error {
 	o.model.Open = func() mesh.Cursor { return newCursor(pieces, slots) }
 	o.model.Close = o.close
 	return nil
-}
-
-// addTimes notes times of states that the files hold.
-func (o *opener) addTimes(times ...float64) {
-	for _, time := range times {
-		if !math.IsNaN(time) && !slices.Contains(o.model.Times, time) {
-			o.model.Times = append(o.model.Times, time)
-		}
-	}
 }

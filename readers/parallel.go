@@ -60,27 +60,47 @@ func (o *opener) agree(set *pieceSet) error {
 	for _, on := range []mesh.Location{mesh.OnPoint, mesh.OnCell} {
 		full := o.withTuples(set, on)
 		holders := map[string][]*column{}
+		isOwn := map[string]bool{}
 		var names []string
 		for _, p := range full {
 			for _, a := range p.arrays {
-				if a.On == on {
-					if holders[a.Name] == nil {
-						names = append(names, a.Name)
-					}
-					holders[a.Name] = append(holders[a.Name], a)
+				if a.On != on {
+					continue
 				}
+				if holders[a.Name] == nil {
+					names = append(names, a.Name)
+				}
+				holders[a.Name] = append(holders[a.Name], a)
+				isOwn[a.Name] = isOwn[a.Name] || p.isOwn(a)
 			}
 		}
+		partial := map[string]bool{}
 		for _, name := range names {
-			if len(holders[name]) < len(full) {
-				o.leaveOut(set, full, on, name)
+			if len(holders[name]) == len(full) {
+				if err := sameComponents(holders[name]); err != nil {
+					return err
+				}
 				continue
 			}
-			for _, a := range holders[name][1:] {
-				if first := holders[name][0]; a.Components != first.Components {
-					return a.fail(malformed("found %d components here and %d in %s, need the same in all pieces", a.Components, first.Components, first.file.path))
-				}
+			partial[name] = true
+			if !isOwn[name] { // ghost marks and the like are missing where there are none
+				o.remarkPartial(full, on, name)
 			}
+		}
+		if len(partial) > 0 {
+			o.leaveOut(set, on, partial)
+		}
+	}
+	return nil
+}
+
+// sameComponents refuses arrays of one name with different numbers of components.
+func sameComponents(arrays []*column) error {
+	first := arrays[0]
+	for _, a := range arrays {
+		if a.Components != first.Components {
+			return a.fail(malformed("found %s here and %d in %s, need the same in all pieces",
+				counted(a.Components, "component"), first.Components, first.file.path))
 		}
 	}
 	return nil
@@ -98,22 +118,26 @@ func (o *opener) withTuples(set *pieceSet, on mesh.Location) []*piece {
 	return full
 }
 
-// leaveOut removes an array that is not in every piece.
-func (o *opener) leaveOut(set *pieceSet, full []*piece, on mesh.Location, name string) {
-	without := ""
-	isNamed := func(a *column) bool { return a.On == on && a.Name == name }
+// remarkPartial says which array is not in which piece.
+func (o *opener) remarkPartial(full []*piece, on mesh.Location, name string) {
 	for _, p := range full {
-		if !slices.ContainsFunc(p.arrays, isNamed) {
-			without = p.file.path
-			break
+		if !p.known[arrayName{on, name}] {
+			o.remark("array-not-everywhere", fmt.Sprintf("%s array %q is not in %s and is left out of the whole", on, name, p.file.path))
+			return
 		}
 	}
+}
+
+// leaveOut removes arrays from all pieces of a set.
+func (o *opener) leaveOut(set *pieceSet, on mesh.Location, names map[string]bool) {
 	for _, i := range set.pieces {
 		p := o.pieces[i]
-		p.arrays = slices.DeleteFunc(p.arrays, isNamed)
-		if p.weights == name && on == mesh.OnPoint {
-			p.weights = ""
+		isPartial := func(a *column) bool { return a.On == on && names[a.Name] }
+		for _, a := range p.arrays {
+			if isPartial(a) && p.isOwn(a) {
+				p.unlisted = append(p.unlisted, a)
+			}
 		}
+		p.arrays = slices.DeleteFunc(p.arrays, isPartial)
 	}
-	o.remark("array-not-everywhere", fmt.Sprintf("%s array %q is not in %s and is left out of the whole", on, name, without))
 }

@@ -18,6 +18,7 @@ type pieceSet struct {
 
 // newSet makes a set of pieces that is a block of the model.
 func (o *opener) newSet(name string) *pieceSet {
+	o.blockNames[name] = true
 	o.model.Blocks = append(o.model.Blocks, name)
 	return &pieceSet{block: len(o.model.Blocks) - 1}
 }
@@ -29,7 +30,7 @@ func (o *opener) readSerial(x *xmlFile, at branch) error {
 	if err != nil {
 		return placedAt(x.file, x.data, err)
 	}
-	o.addTimes(times...)
+	o.model.Times = append(o.model.Times, times...)
 	fields, err := o.fields(x, &source)
 	if err != nil {
 		return err
@@ -115,11 +116,9 @@ func (x *xmlFile) countField(a *column, e *element) error {
 // addField takes a field array into the model, of one name the first, and the state's
 // time and texts from it.
 func (o *opener) addField(a *column, source *mesh.Source, strings []string) error {
-	isKnown := false
-	for i := range o.model.Fields {
-		isKnown = isKnown || o.model.Fields[i].Name == a.Name
-	}
+	isKnown := o.fieldNames[a.Name]
 	if !isKnown {
+		o.fieldNames[a.Name] = true
 		o.model.Fields = append(o.model.Fields, a.Array)
 	}
 	if (a.Name == "TimeValue" || a.Name == "TIME") && a.Components == 1 && a.Tuples >= 1 && a.number.size() > 0 {

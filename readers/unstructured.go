@@ -71,7 +71,9 @@ func (x *xmlFile) arraysOf(p *piece, e *element) error {
 			return err
 		}
 		for _, a := range columns {
-			p.keep(a, x.version < 200)
+			if !p.keep(a, x.version < 200) {
+				continue
+			}
 			if on == mesh.OnCell && a.Name == child.attribute("HigherOrderDegrees") && a.Components == 3 {
 				p.degrees = a
 			}
@@ -83,8 +85,17 @@ func (x *xmlFile) arraysOf(p *piece, e *element) error {
 	return nil
 }
 
-// keep takes a point or cell array into the piece and notes those that mark ghosts.
-func (p *piece) keep(a *column, hasLevels bool) {
+// keep takes a point or cell array into the piece, of one name the first, and notes
+// those that mark ghosts. It reports whether it took the array.
+func (p *piece) keep(a *column, hasLevels bool) bool {
+	key := arrayName{a.On, a.Name}
+	if p.known[key] {
+		return false
+	}
+	if p.known == nil {
+		p.known = map[arrayName]bool{}
+	}
+	p.known[key] = true
 	if a.Name == "vtkGhostLevels" && hasLevels {
 		a.Name, a.isLevel = "vtkGhostType", true
 	}
@@ -97,6 +108,7 @@ func (p *piece) keep(a *column, hasLevels bool) {
 		}
 	}
 	p.arrays = append(p.arrays, a)
+	return true
 }
 
 // cellsOf finds the arrays that make up the cells.

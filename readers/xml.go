@@ -427,11 +427,9 @@ func (x *xmlFile) isSelected(e *element) bool {
 	return false
 }
 
-// columns returns the arrays of an element that hold so many tuples each, those of
-// one name once.
+// columns returns the arrays of an element, which must hold so many tuples each.
 func (x *xmlFile) columns(e *element, on mesh.Location, tuples int64) ([]*column, error) {
 	var columns []*column
-	seen := map[string]bool{}
 	for i, child := range e.arrays() {
 		if !x.isSelected(child) {
 			continue
@@ -443,10 +441,6 @@ func (x *xmlFile) columns(e *element, on mesh.Location, tuples int64) ([]*column
 		if !has(child, "Name") {
 			a.Name = "array " + strconv.Itoa(i)
 		}
-		if seen[a.Name] {
-			continue
-		}
-		seen[a.Name] = true
 		if err := a.need(tuples, on.String()+"s"); err != nil {
 			return nil, err
 		}
