@@ -107,7 +107,7 @@ func (a *audit) isUnloaded(r *reading) bool {
 
 // lookAtBorder finds the points that regions share, where fields are on points.
 func (p *plan) lookAtBorder(ctx context.Context, walk *mesh.Walk) error {
-	if p.inputs.isPerCell() || len(p.regions.regions) < 2 {
+	if p.inputs.isPerCell() || p.inputs.rule != nil || len(p.regions.regions) < 2 {
 		return nil
 	}
 	border, count, err := p.findBorder(ctx, walk)

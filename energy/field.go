@@ -12,7 +12,8 @@ import (
 type tensorInput struct {
 	on      mesh.Location // 0: the field is not there
 	layout  mesh.Layout
-	columns []int // positions in Chunk.Values or Chunk.PointValues; several hold one component each
+	columns []int // positions in Chunk.Values, PointValues or FieldValues; several hold one component each
+	points  int   // integration points in a cell, their tuples in a row; 0: none
 
 	order   mesh.Order
 	orderBy decider
@@ -33,7 +34,8 @@ const (
 
 func (in *tensorInput) exists() bool { return in.on != 0 }
 
-// at returns the tensor of a cell, or of a node where the field is on points.
+// at returns the tensor of a cell, of a node where the field is on points, or of an
+// integration point by its number in the cell.
 func (in *tensorInput) at(chunk *mesh.Chunk, cell int, node int32) mesh.SymmetricTensor {
 	if len(in.columns) > 1 {
 		tuple := in.stored(chunk, cell, node)
@@ -46,10 +48,22 @@ func (in *tensorInput) at(chunk *mesh.Chunk, cell int, node int32) mesh.Symmetri
 
 // values returns where the field's numbers are and the index of a place in them.
 func (in *tensorInput) values(chunk *mesh.Chunk, cell int, node int32) ([][]float64, int) {
-	if in.on == mesh.OnPoint {
-		return chunk.PointValues, int(node)
+	return placeIn(chunk, in.on, in.points, cell, node)
+}
+
+// placeIn returns the numbers of a location and the index of a place in them.
+func placeIn(chunk *mesh.Chunk, on mesh.Location, points, cell int, node int32) ([][]float64, int) {
+	index := cell
+	if points > 0 {
+		index = cell*points + int(node)
 	}
-	return chunk.Values, cell
+	switch on {
+	case mesh.OnPoint:
+		return chunk.PointValues, int(node)
+	case mesh.OnField:
+		return chunk.FieldValues, index
+	}
+	return chunk.Values, index
 }
 
 // stored returns the numbers of a place as the file has them.
@@ -70,16 +84,16 @@ func (in *tensorInput) stored(chunk *mesh.Chunk, cell int, node int32) (tuple [9
 type scalarInput struct {
 	on     mesh.Location // 0: the field is not there
 	column int
+	points int // as in a tensorInput
 }
 
 func (in *scalarInput) exists() bool { return in.on != 0 }
 
-// at returns the number of a cell, or of a node where the field is on points.
+// at returns the number of a cell, of a node where the field is on points, or of an
+// integration point by its number in the cell.
 func (in *scalarInput) at(chunk *mesh.Chunk, cell int, node int32) float64 {
-	if in.on == mesh.OnPoint {
-		return chunk.PointValues[in.column][node]
-	}
-	return chunk.Values[in.column][cell]
+	values, index := placeIn(chunk, in.on, in.points, cell, node)
+	return values[in.column][index]
 }
 
 // inputs are the fields that a tally reads.
@@ -87,8 +101,9 @@ type inputs struct {
 	stress, strain, thermalStrain, plasticStrain tensorInput
 	equivalentPlasticStrain, temperature         scalarInput
 	thickness                                    scalarInput
-	displacement                                 vectorInput // read where the energy comes from it
-	elementID                                    int         // column of Chunk.Labels, or -1
+	displacement                                 vectorInput     // read where the energy comes from it
+	elementID                                    int             // column of Chunk.Labels, or -1
+	rule                                         *mesh.GaussRule // of integration points; nil: none
 
 	strainIsElastic bool
 	kindBy          decider // byFile: the strain's name tells
@@ -99,7 +114,7 @@ type inputs struct {
 
 // isPerCell reports whether everything that the density needs is cell data.
 func (in *inputs) isPerCell() bool {
-	return in.stress.on != mesh.OnPoint && in.strain.on != mesh.OnPoint && in.thermalStrain.on != mesh.OnPoint &&
+	return in.rule == nil && in.stress.on != mesh.OnPoint && in.strain.on != mesh.OnPoint && in.thermalStrain.on != mesh.OnPoint &&
 		in.plasticStrain.on != mesh.OnPoint && in.temperature.on != mesh.OnPoint
 }
 
@@ -114,11 +129,14 @@ func wantColumn(list *[]string, name string) int {
 
 // A fieldFinder decides which arrays are taken for which fields.
 type fieldFinder struct {
-	options  *Options
-	arrays   []mesh.Array // those that every piece with cells has
-	findings *findings
-	in       *inputs
-	unnamed  [2]string // two arrays taken for stress and strain although their names say nothing
+	options        *Options
+	arrays         []mesh.Array // those that every piece with cells has
+	findings       *findings
+	in             *inputs
+	described      map[string]int // Gauss points along each direction, by array
+	cells          int64
+	hasIntegration bool      // there are results at integration points
+	unnamed        [2]string // two arrays taken for stress and strain although their names say nothing
 }
 
 // commonArrays returns the point and cell arrays that every piece with cells has with
@@ -147,6 +165,7 @@ func commonArrays(model *mesh.Model) []mesh.Array {
 // is decided with them.
 func findInputs(model *mesh.Model, options *Options, found *findings) (*inputs, EnergySource, error) {
 	f := &fieldFinder{options: options, arrays: commonArrays(model), findings: found, in: &inputs{elementID: -1}}
+	f.findIntegrationArrays(model)
 	source, on, err := f.chooseSource()
 	if err != nil {
 		return nil, "", err
@@ -172,6 +191,11 @@ func (f *fieldFinder) candidates(on mesh.Location, fits func(components int) boo
 	return list
 }
 
+// allows reports whether the study leaves a location open for the field.
+func (f *Field) allows(on mesh.Location) bool {
+	return (f.On == 0 || f.On == on) && (!f.Integration || on == mesh.OnField)
+}
+
 // isTensor reports whether so many components can be a tensor in this idealisation.
 func (f *fieldFinder) isTensor(components int) bool {
 	switch f.options.Idealisation {
@@ -187,9 +211,6 @@ func isScalar(components int) bool { return components == 1 }
 
 func isVector(components int) bool { return components == 2 || components == 3 }
 
-// locations are tried in this order where the study does not say.
-var locations = []mesh.Location{mesh.OnCell, mesh.OnPoint}
-
 // strainRoles are tried in this order: an elastic strain needs nothing subtracted.
 var strainRoles = [][]role{{elasticStrainRole}, {strainRole}}
 
@@ -203,7 +224,7 @@ func (f *fieldFinder) has(field *Field, on mesh.Location, roles ...role) bool {
 		array := f.stated(field)
 		return array == nil || array.On == on // a missing array is told later, by name
 	}
-	return (field.On == 0 || field.On == on) && len(f.candidates(on, f.isTensor, roles...)) > 0
+	return field.allows(on) && len(f.candidates(on, f.isTensor, roles...)) > 0
 }
 
 // chooseSource returns the source of the energy and the location of its fields: what
@@ -218,7 +239,7 @@ func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
 		if from != "" && from != source {
 			continue
 		}
-		for _, on := range locations {
+		for _, on := range f.locations() {
 			hasStress := f.has(stress, on, stressRole)
 			hasStrain := f.has(strain, on, strainRole, elasticStrainRole)
 			if (hasStress || source == FromStrain) && (hasStrain || source == FromStress) {
@@ -245,7 +266,7 @@ func (f *fieldFinder) takeUnnamed() mesh.Location {
 	if fields.Stress.Off || fields.Strain.Off || fields.Stress.IsStated() || fields.Strain.IsStated() {
 		return 0
 	}
-	for _, on := range locations {
+	for _, on := range f.locations() {
 		list := f.candidates(on, f.isTensor, noRole)
 		if len(list) == 2 && list[0].Components == list[1].Components {
 			f.unnamed = [2]string{list[0].Name, list[1].Name}
@@ -304,14 +325,14 @@ func orNoArrays(have []string) string {
 
 // describe names an array for a message.
 func describe(array mesh.Array) string {
-	return fmt.Sprintf("%q (%d on %ss)", array.Name, array.Components, array.On)
+	return fmt.Sprintf("%q (%d on %s)", array.Name, array.Components, placesName(array.On))
 }
 
 // stated returns the array that the study names, nil when it is not in the file. The
 // first of several component arrays stands for all.
 func (f *fieldFinder) stated(field *Field) *mesh.Array {
-	for _, on := range locations {
-		if field.On != 0 && field.On != on {
+	for _, on := range f.locations() {
+		if field.On != 0 && field.On != on || field.Integration && on == mesh.OnPoint {
 			continue
 		}
 		for i := range f.arrays {
@@ -334,12 +355,15 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 		if array == nil {
 			return nil, "", f.missing(key, field)
 		}
-		if field.On == 0 {
+		if field.On == 0 && !field.Integration {
 			f.noteSeveralLocations(key, array)
 		}
 		return array, "the study names it", nil
 	}
-	if field.On != 0 {
+	switch {
+	case field.Integration:
+		on = mesh.OnField
+	case field.On != 0:
 		on = field.On
 	}
 	list := f.candidates(on, fits, roles...)
@@ -357,9 +381,10 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 		}
 		return nil, "", inputError("the %s could be any of %s; name one in [fields] %s", plain(key), strings.Join(names, ", "), key)
 	}
-	for _, other := range locations {
-		if other != list[0].On && on != 0 && field.On == 0 && len(f.candidates(other, fits, roles...)) > 0 {
-			f.findings.add("several-locations", 0, "the %s is on cells and on points; taken on %ss: state [fields] %s = { on = ... } for the other", plain(key), list[0].On, key)
+	for _, other := range f.locations() {
+		if other != list[0].On && on != 0 && field.On == 0 && !field.Integration && len(f.candidates(other, fits, roles...)) > 0 {
+			f.findings.add("several-locations", 0, "the %s is at several locations; taken on %s: state [fields] %s = { on = ... } for another", plain(key), placesName(list[0].On), key)
+			break
 		}
 	}
 	return &list[0], fmt.Sprintf("its name says %s and it has %d components", plain(key), list[0].Components), nil
@@ -369,7 +394,7 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 func (f *fieldFinder) noteSeveralLocations(key string, array *mesh.Array) {
 	for _, other := range f.arrays {
 		if other.Name == array.Name && other.On != array.On {
-			f.findings.add("several-locations", 0, "array %q is on cells and on points; taken on %ss: state [fields] %s = { array = %q, on = ... } for the other", array.Name, array.On, key, array.Name)
+			f.findings.add("several-locations", 0, "array %q is at several locations; taken on %s: state [fields] %s = { array = %q, on = ... } for another", array.Name, placesName(array.On), key, array.Name)
 			return
 		}
 	}
@@ -384,8 +409,11 @@ func (f *fieldFinder) missing(key string, field *Field) error {
 		}
 	}
 	where := "cells or points"
-	if field.On != 0 {
-		where = field.On.String() + "s"
+	switch {
+	case field.Integration:
+		where = "integration points"
+	case field.On != 0:
+		where = placesName(field.On)
 	}
 	if len(have) == 0 {
 		have = []string{"none"}
@@ -436,8 +464,11 @@ func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
 	if err := f.tensor("plastic_strain", &fields.PlasticStrain, on, &in.plasticStrain, &in.used.PlasticStrain, plasticStrainRole); err != nil {
 		return err
 	}
+	if in.stress.exists() && in.strain.exists() && (in.stress.points > 0) != (in.strain.points > 0) {
+		return inputError("stress is on %s and strain on %s: values at integration points cannot be multiplied with others", placesName(in.stress.on), placesName(in.strain.on))
+	}
 	if in.stress.exists() && in.strain.exists() && in.stress.on != in.strain.on {
-		f.findings.add("mixed-locations", 0, "stress is on %ss and strain on %ss, as the study names them: their product mixes averages of different kinds", in.stress.on, in.strain.on)
+		f.findings.add("mixed-locations", 0, "stress is on %s and strain on %s, as the study names them: their product mixes averages of different kinds", placesName(in.stress.on), placesName(in.strain.on))
 	}
 	return f.checkComponents(source)
 }
@@ -445,7 +476,7 @@ func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
 // locationOf returns the first location at which a field can be found, cells where it
 // cannot.
 func (f *fieldFinder) locationOf(fits func(int) bool, roles ...role) mesh.Location {
-	for _, on := range locations {
+	for _, on := range f.locations() {
 		if len(f.candidates(on, fits, roles...)) > 0 {
 			return on
 		}
@@ -482,6 +513,12 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 			return err
 		}
 	}
+	points := 0
+	if field.Integration || array.On == mesh.OnField {
+		if points, components, err = f.settleRule(key, field, array); err != nil {
+			return err
+		}
+	}
 	order, orderBy, err := f.order(key, field, array, components)
 	if err != nil {
 		return err
@@ -503,7 +540,7 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 	if err != nil {
 		return inputError("[fields] %s: array %q: %w", key, array.Name, err)
 	}
-	*to = tensorInput{on: array.On, layout: layout, order: order, orderBy: orderBy, shear: shear, shearBy: byDefault}
+	*to = tensorInput{on: array.On, layout: layout, points: points, order: order, orderBy: orderBy, shear: shear, shearBy: byDefault}
 	if field.Shear != "" || key == "stress" {
 		to.shearBy = byStudy
 	}
@@ -514,8 +551,16 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 	for _, name := range names {
 		to.columns = append(to.columns, f.column(array.On, name))
 	}
-	*used = &FieldUsed{Array: strings.Join(names, " "), On: array.On.String(), Sign: signName, DecidedBy: string(byStudy), Why: why}
+	*used = &FieldUsed{Array: strings.Join(names, " "), On: usedOn(array.On, points), Sign: signName, DecidedBy: string(byStudy), Why: why}
 	return nil
+}
+
+// usedOn names where the values of a field are.
+func usedOn(on mesh.Location, points int) string {
+	if points > 0 {
+		on = mesh.OnField
+	}
+	return placeName(on)
 }
 
 // order returns the component order of an array and who decided it.
@@ -558,8 +603,11 @@ func (f *fieldFinder) componentArrays(key string, field *Field, on mesh.Location
 
 // column adds an array to what is read.
 func (f *fieldFinder) column(on mesh.Location, name string) int {
-	if on == mesh.OnPoint {
+	switch on {
+	case mesh.OnPoint:
 		return wantColumn(&f.in.want.PointValues, name)
+	case mesh.OnField:
+		return wantColumn(&f.in.want.FieldValues, name)
 	}
 	return wantColumn(&f.in.want.CellValues, name)
 }
@@ -628,7 +676,7 @@ func (f *fieldFinder) findOthers(source EnergySource, on mesh.Location) error {
 		if array == nil || array.Components != 1 {
 			return inputError("[model] thickness: no cell array %q with one component", f.options.ThicknessArray)
 		}
-		in.thickness = scalarInput{mesh.OnCell, f.column(mesh.OnCell, array.Name)}
+		in.thickness = scalarInput{on: mesh.OnCell, column: f.column(mesh.OnCell, array.Name)}
 	}
 	return f.findElementID()
 }
@@ -666,7 +714,7 @@ func (f *fieldFinder) findTemperature() error {
 		return nil
 	}
 	field := &f.options.Fields.Temperature
-	for _, on := range locations {
+	for _, on := range f.locations() {
 		if err := f.scalar("temperature", field, on, &f.in.temperature, &f.in.used.Temperature, temperatureRole); err != nil || f.in.temperature.exists() {
 			return err
 		}
@@ -707,8 +755,14 @@ func (f *fieldFinder) scalar(key string, field *Field, on mesh.Location, to *sca
 	if array.Components != 1 {
 		return inputError("[fields] %s: array %q has %d components, want 1", key, array.Name, array.Components)
 	}
-	*to = scalarInput{array.On, f.column(array.On, array.Name)}
-	*used = &FieldUsed{Array: array.Name, On: array.On.String(), DecidedBy: decidedBy(field), Why: why}
+	points := 0
+	if field.Integration || array.On == mesh.OnField {
+		if points, _, err = f.settleRule(key, field, array); err != nil {
+			return err
+		}
+	}
+	*to = scalarInput{array.On, f.column(array.On, array.Name), points}
+	*used = &FieldUsed{Array: array.Name, On: usedOn(array.On, points), DecidedBy: decidedBy(field), Why: why}
 	return nil
 }
 

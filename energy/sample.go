@@ -220,6 +220,10 @@ func (s *sampler) read(chunk *mesh.Chunk) []samplePlace {
 			places = s.appendMean(places, chunk, i)
 		case s.inputs.isPerCell():
 			places = append(places, s.place(chunk, i, 0, 0))
+		case s.inputs.rule != nil:
+			for q := range s.inputs.rule.Points() {
+				places = append(places, s.place(chunk, i, q, int32(q)))
+			}
 		default:
 			for k, node := range s.cell.Nodes {
 				if !s.border.has(chunk.Piece, node) {
@@ -248,12 +252,26 @@ func (s *sampler) place(chunk *mesh.Chunk, i, k int, node int32) samplePlace {
 		place.isPlastic = in.equivalentPlasticStrain.at(chunk, i, node) != 0
 	}
 	if in.temperature.exists() && region.material != nil {
-		place.expansion = region.material.ThermalExpansion * (in.temperature.at(chunk, i, node) - region.material.ReferenceTemperature)
+		place.expansion = region.material.ThermalExpansion * (s.temperature(chunk, i, node) - region.material.ReferenceTemperature)
 		if place.expansion != place.expansion {
 			place.expansion = 0 // this material does not expand
 		}
 	}
 	return place
+}
+
+// temperature returns that of a place; for integration points the mean of the nodes.
+func (s *sampler) temperature(chunk *mesh.Chunk, i int, node int32) float64 {
+	in := &s.inputs.temperature
+	if s.inputs.rule == nil || in.on != mesh.OnPoint {
+		return in.at(chunk, i, node)
+	}
+	nodes := chunk.Nodes[chunk.Start[i]:chunk.Start[i+1]]
+	var mean float64
+	for _, node := range nodes {
+		mean += in.at(chunk, i, node) / float64(len(nodes))
+	}
+	return mean
 }
 
 // appendMean adds a cell with the mean of its nodes' values and the mean strain by the

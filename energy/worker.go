@@ -34,7 +34,10 @@ type worker struct {
 	displacement   []Vector
 	gradients      [][3]float64
 	elements       []float64
-	rational       []float64 // room for the shape functions of Bézier cells
+	rational       []float64        // room for the shape functions of Bézier cells
+	rule           *mesh.Tabulation // of integration points, for
+	ruleShape      *mesh.Shape
+	placeValues    []float64 // shape functions at the current integration point; nil elsewhere
 }
 
 func newWorker(p *plan) *worker {
@@ -96,8 +99,13 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 		reason = w.evaluateGradients(chunk, i, r, orientation)
 	case w.isPerCell:
 		reason = w.evaluateCell(chunk, i, r)
+	case w.inputs.rule != nil:
+		reason, err = w.evaluatePoints(chunk, i, r, orientation)
 	default:
 		reason = w.evaluateNodes(chunk, i, r, orientation)
+	}
+	if err != nil {
+		return 0, err
 	}
 	if reason == notExcluded {
 		switch orientation {
@@ -190,8 +198,8 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	}
 	w.growNodes(shape.NodeCount)
 	w.isYielded[i] = false
-	w.peak[i] = math.Inf(-1)
-	largest, least := math.Inf(-1), math.Inf(1)
+	w.peak[i] = -infinity
+	largest, least := -infinity, infinity
 	for k, node := range w.cell.Nodes {
 		stress, strain := &w.stress[k], &w.strain[k]
 		if w.at(chunk, i, node, r, stress, strain) {
@@ -371,12 +379,26 @@ func (w *worker) inelasticAt(chunk *mesh.Chunk, cell int, node int32, r *region)
 			inelastic[i] += thermal[i]
 		}
 	case in.temperature.exists() && r.material != nil && !math.IsNaN(r.material.ThermalExpansion):
-		rise := in.temperature.at(chunk, cell, node) - r.material.ReferenceTemperature
+		rise := w.temperatureAt(chunk, cell, node) - r.material.ReferenceTemperature
 		for i := range 3 {
 			inelastic[i] += float64(r.material.ThermalExpansion * rise)
 		}
 	}
 	return inelastic, isYielded
+}
+
+// temperatureAt returns the temperature at one place; at an integration point that of
+// the nodes is interpolated.
+func (w *worker) temperatureAt(chunk *mesh.Chunk, cell int, node int32) float64 {
+	in := &w.inputs.temperature
+	if w.placeValues == nil || in.on != mesh.OnPoint {
+		return in.at(chunk, cell, node)
+	}
+	var temperature float64
+	for k, value := range w.placeValues {
+		temperature += float64(value * in.at(chunk, cell, w.cell.Nodes[k]))
+	}
+	return temperature
 }
 
 // complete fills in what the file lacks, by the law: the other tensor where there is
@@ -400,6 +422,8 @@ func (w *worker) complete(r *region, stress, strain *mesh.SymmetricTensor) {
 		*stress = w.stressOf(r, strain)
 	}
 }
+
+var infinity = math.Inf(1)
 
 // isFinite reports whether all values are finite.
 func isFinite(values ...float64) bool {
@@ -507,6 +531,14 @@ func (w *worker) centroidOf(chunk *mesh.Chunk, i int) Vector {
 func (w *worker) peakPlace(chunk *mesh.Chunk, i int) Vector {
 	if w.isPerCell {
 		return w.centroidOf(chunk, i)
+	}
+	if w.inputs.rule != nil {
+		chunk.Cell(i, &w.cell)
+		rule, err := w.integrationRule(w.cell.Shape)
+		if err != nil {
+			panic(err) // the same rule served the same cell a moment ago
+		}
+		return w.cell.Place(rule, int(w.peakNode[i]))
 	}
 	node := chunk.Nodes[int(chunk.Start[i])+int(w.peakNode[i])]
 	return Vector(chunk.Points[3*node : 3*node+3])

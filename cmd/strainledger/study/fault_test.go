@@ -176,6 +176,10 @@ func TestFaults(t *testing.T) {
 			[]string{"the region on line 1 takes the rest already; select by array, block or box"}},
 		"box of one corner": {"[[region]]\nname = \"a\"\nselect = { §box = [[0, 0, 0]] }",
 			[]string{"region.select.box must have two corners of three coordinates; write [[x, y, z], [x, y, z]]"}},
+		"a rule without points": {"[fields]\nstress = { array = \"s\", §rule = \"gauss 3x3\" }",
+			[]string{`fields.stress.rule is for values at integration points; add on = "integration" or remove it`}},
+		"an unknown rule": {"[fields]\nstress = { array = \"s\", on = \"integration\", §rule = \"gauss three\" }",
+			[]string{"fields.stress.rule: integration rule \"gauss three\": want 1 to 16 points along one to three directions, such as 3x3"}},
 		"box of plane corners": {"[[region]]\nname = \"a\"\nselect = { §box = [[0, 0, 0], [1, 1]] }",
 			[]string{"region.select.box must have two corners of three coordinates; write [[x, y, z], [x, y, z]]"}},
 		"box inside out": {"[[region]]\nname = \"a\"\nselect = { §box = [[0, 0, 0], [1, -1, 1]] }",
@@ -211,7 +215,7 @@ func TestFaults(t *testing.T) {
 func TestNotBuiltYet(t *testing.T) {
 	for _, marked := range []string{
 		"input.§steps = [\"a\"]", "input.§start = \"as-given\"", "input.§time = \"all\"",
-		"fields.stress.§on = \"integration\"", "fields.stress.§rule = \"gauss 3x3\"", "fields.§nodal_force = \"f\"",
+		"fields.§nodal_force = \"f\"",
 		"hotspots.§prominence = 0.2", "hotspots.§radius = 3.0", "hotspots.§centre = [1, 2, 3]", "hotspots.§pool = 16384",
 		"[§error]\nestimate = true", "[§balance]\nexternal_work = 1", "[[§elsewhere]]\nname = \"bolts\"", "[§loading]\ncontrol = \"force\"",
 		"[§compare]\ntolerance = 2.0", "[[§case]]\nname = \"pull\"",

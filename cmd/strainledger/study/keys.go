@@ -222,8 +222,7 @@ func fieldKeys(field string, locations ...string) []key {
 		{path: path + ".on", form: aName, values: locations},
 	}
 	if slices.Contains(locations, "integration") {
-		rows[2].after = []string{"integration"}
-		rows = append(rows, key{path: path + ".rule", form: aName, later: true})
+		rows = append(rows, key{path: path + ".rule", form: aName})
 	}
 	return rows
 }

@@ -134,7 +134,10 @@ func (r *reading) field(stated *node) energy.Field {
 		field.On = mesh.OnCell
 	case "point":
 		field.On = mesh.OnPoint
+	case "integration":
+		field.Integration = true
 	}
+	field.Rule = stated.textOf("rule")
 	for _, item := range stated.itemsOf("arrays") {
 		field.Arrays = append(field.Arrays, item.text)
 	}
@@ -164,6 +167,14 @@ func (r *reading) fieldParts(stated *node, field *energy.Field) {
 			r.faults.add(order.place, `%s.order names rr or tt, which belong to an axisymmetric model; write xx yy zz or idealisation = "axisymmetric"`, path)
 		default:
 			field.Order = parsed
+		}
+	}
+	if rule := stated.get("rule"); rule != nil {
+		switch _, err := energy.ParseRule(rule.text); {
+		case !field.Integration:
+			r.faults.add(rule.place, `%s.rule is for values at integration points; add on = "integration" or remove it`, path)
+		case err != nil:
+			r.faults.add(rule.place, "%s.rule: %v", path, err)
 		}
 	}
 	if several == nil {
