@@ -10,11 +10,11 @@ import (
 
 const (
 	// samplePlaces bounds the places at which the audit looks: with stress and strain
-	// of six components, 100,000 values.
-	samplePlaces = 8192
+	// of six components, 50,000 values.
+	samplePlaces = 4096
 	// sampleSpan is the length of a span of cells in the sample: short spans would
 	// decode whole blocks of a compressed file for a few cells.
-	sampleSpan = 512
+	sampleSpan = 256
 	// spansOfRegion is how many spans a region gets at least, where it has as many.
 	spansOfRegion = 4
 )
@@ -154,7 +154,7 @@ func (p *plan) regionSpans(ctx context.Context, walk *mesh.Walk) ([]mesh.Span, e
 				}
 				seen[region] = true
 				begin := low + int64(i)
-				high := min(begin+sampleSpan/8, p.model.Pieces[chunk.Piece].CellCount)
+				high := min(begin+sampleSpan/4, p.model.Pieces[chunk.Piece].CellCount)
 				lock.Lock()
 				begins[region] = append(begins[region], mesh.Span{Piece: chunk.Piece, Low: begin, High: high})
 				lock.Unlock()
