@@ -389,6 +389,9 @@ func (p *plan) findInResult(ledger *Ledger, total *part) {
 	if n := count(degenerateCell); n > 0 {
 		f.add("degenerate-cells", n, "%d cells have no measure worth the name and are left out", n)
 	}
+	if n := count(unsupportedCell); n > 0 {
+		f.add("unsupported-cells", n, "%d cells cannot be computed here and are left out: cells without a measure (convex point sets), or polygons and polyhedra whose stress or strain is on points", n)
+	}
 	if n := total.overlaps; n > 0 {
 		f.add("regions-overlap", n, "%d cells are claimed by more than one region; each is counted in the first", n)
 	}

@@ -3,6 +3,9 @@ package energy
 import (
 	"context"
 	"encoding/json"
+	"errors"
+	"fmt"
+	"maps"
 	"math"
 	"math/big"
 	"slices"
@@ -46,13 +49,70 @@ func Inspect(ctx context.Context, model *mesh.Model, options InspectOptions) (*I
 		i.fillRanges(file.Arrays, total)
 	}
 	var found findings
+	if options.Ranges {
+		if err := i.audit(ctx, file.Arrays, total, &found); err != nil {
+			return nil, err
+		}
+	}
 	for _, remark := range model.Remarks {
 		found.add(remark.Code, remark.Cells, "%s", remark.Message)
 	}
 	if total.hidden > 0 {
 		found.add("ghost-cells", total.hidden, "%d cells are marked as duplicates or hidden; they are in no count and no sum", total.hidden)
 	}
+	for _, reason := range slices.Sorted(maps.Keys(total.without)) {
+		found.add("unsupported-cells", total.without[reason], "%d cells are in no measure: %s", total.without[reason], reason)
+	}
 	return &Inspection{Schema: InspectionSchema, Files: []InspectedFile{file}, Findings: found.sorted(nil)}, nil
+}
+
+// audit takes the arrays for what the tally would take them for without a study, and
+// tests that against the numbers. What the tally would refuse for want of a study is no
+// fault of the file: then the names alone speak, and the reason is given.
+func (i *inspector) audit(ctx context.Context, arrays []InspectedArray, total *inspected, found *findings) error {
+	options := &Options{Idealisation: PlaneStress, Thickness: 1}
+	for cellType := range total.cells {
+		if cellType.Dimension() == 3 {
+			options = &Options{Idealisation: Solid}
+		}
+	}
+	p, err := newPlan(ctx, i.walk, i.model, options)
+	var study *StudyError
+	var input *InputError
+	switch {
+	case errors.As(err, &study), errors.As(err, &input):
+		for a := range arrays {
+			if arrays[a].TakenFor != "" {
+				arrays[a].Why = Text(fmt.Sprintf("by its name and %d components; not settled: %v", arrays[a].Components, err))
+			}
+		}
+		return nil
+	case err != nil:
+		return err
+	}
+	for a := range arrays {
+		arrays[a].TakenFor, arrays[a].Why = "", ""
+		for _, field := range p.inputs.used.all() {
+			if used := field.used; used != nil && isUsedArray(used, &arrays[a]) {
+				arrays[a].TakenFor, arrays[a].Why = Text(field.key), Text(used.Why)
+			}
+		}
+	}
+	for _, finding := range p.findings.list {
+		if finding.Code != "units-not-stated" && finding.Code != "one-value-per-cell" {
+			found.list = append(found.list, finding)
+		}
+	}
+	return nil
+}
+
+// isUsedArray reports whether a field was taken from the array.
+func isUsedArray(used *FieldUsed, array *InspectedArray) bool {
+	on := used.On
+	if on == "integration" {
+		on = mesh.OnField.String()
+	}
+	return on == array.On && used.Array == array.Name
 }
 
 // An inspector reads one model.
@@ -69,6 +129,7 @@ type inspected struct {
 	blocks  []int64 // cells by block
 	hidden  int64
 	measure [4]Sum
+	without map[string]int64 // cells without a measure, by the reason
 	ranges  []arrayRange // by array of the inspector
 }
 
@@ -97,7 +158,7 @@ func allArrays(model *mesh.Model) []mesh.Array {
 }
 
 func (i *inspector) newInspected() *inspected {
-	part := &inspected{cells: map[mesh.CellType]int64{}, blocks: make([]int64, len(i.model.Blocks)), ranges: make([]arrayRange, len(i.arrays))}
+	part := &inspected{cells: map[mesh.CellType]int64{}, without: map[string]int64{}, blocks: make([]int64, len(i.model.Blocks)), ranges: make([]arrayRange, len(i.arrays))}
 	for a := range part.ranges {
 		n := i.arrays[a].Components
 		part.ranges[a] = arrayRange{min: slices.Repeat([]float64{math.Inf(1)}, n), max: slices.Repeat([]float64{math.Inf(-1)}, n), sum: make([]Sum, n)}
@@ -119,6 +180,9 @@ func (i *inspector) total() *inspected {
 			total.blocks[block] += count
 		}
 		total.hidden += part.hidden
+		for reason, count := range part.without {
+			total.without[reason] += count
+		}
 		for d := range total.measure {
 			total.measure[d].Join(&part.measure[d])
 		}
@@ -221,7 +285,9 @@ func (i *inspector) readCells(ctx context.Context, piece int) error {
 					continue
 				}
 				chunk.Cell(k, &cell)
-				if measure := measureOf(&cell); measure-measure == 0 {
+				if !cell.Shape.Supported {
+					part.without[cell.Shape.Reason]++
+				} else if measure := cell.Measure(); measure-measure == 0 {
 					part.measure[cell.Shape.Dimension].Add(measure)
 				}
 				for column, a := range at {
@@ -232,14 +298,6 @@ func (i *inspector) readCells(ctx context.Context, piece int) error {
 			return nil
 		}
 	})
-}
-
-// measureOf returns the length, area or volume of a cell, 0 where it has none.
-func measureOf(cell *mesh.Cell) float64 {
-	if !cell.Shape.Supported {
-		return 0
-	}
-	return cell.Measure()
 }
 
 // pointStep is how many points are read at a time.
@@ -284,7 +342,7 @@ func (i *inspector) describe(total *inspected) InspectedFile {
 	if len(m.Sources) > 0 {
 		file.Path = m.Sources[0].Path
 	}
-	for _, cellType := range slices.Sorted(keys(total.cells)) {
+	for _, cellType := range slices.Sorted(maps.Keys(total.cells)) {
 		file.Cells += total.cells[cellType]
 		file.CellsByType = append(file.CellsByType, InspectedType{int(cellType), cellType.String(), total.cells[cellType]})
 	}
@@ -307,17 +365,6 @@ func (i *inspector) describe(total *inspected) InspectedFile {
 		file.Times = []float64{}
 	}
 	return file
-}
-
-// keys ranges over the types that were counted.
-func keys(counts map[mesh.CellType]int64) func(yield func(mesh.CellType) bool) {
-	return func(yield func(mesh.CellType) bool) {
-		for cellType := range counts {
-			if !yield(cellType) {
-				return
-			}
-		}
-	}
 }
 
 // boxOf turns bounds into the form of the ledger; nil without points.

@@ -91,6 +91,21 @@ type FieldsUsed struct {
 	ElementID               *FieldUsed `json:"element_id"`
 }
 
+// all lists the fields with their keys in the study.
+func (f *FieldsUsed) all() []struct {
+	key  string
+	used *FieldUsed
+} {
+	return []struct {
+		key  string
+		used *FieldUsed
+	}{
+		{"stress", f.Stress}, {"strain", f.Strain}, {"thermal_strain", f.ThermalStrain}, {"plastic_strain", f.PlasticStrain},
+		{"equivalent_plastic_strain", f.EquivalentPlasticStrain}, {"displacement", f.Displacement}, {"temperature", f.Temperature},
+		{"nodal_force", f.NodalForce}, {"element_id", f.ElementID},
+	}
+}
+
 // FieldUsed is one array's part in the account. Order, Shear and Kind are empty where
 // they have no meaning.
 type FieldUsed struct {
