@@ -23,6 +23,7 @@ var severities = map[string]string{
 	"units-not-stated":   Warning,
 	"units-suspect":      Warning,
 	"asymmetric-tensor":  Warning,
+	"unsupported-cells":  Warning,
 
 	"point-data-across-regions": Warning,
 	"regions-overlap":           Warning,

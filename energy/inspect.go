@@ -130,7 +130,7 @@ type inspected struct {
 	hidden  int64
 	measure [4]Sum
 	without map[string]int64 // cells without a measure, by the reason
-	ranges  []arrayRange // by array of the inspector
+	ranges  []arrayRange     // by array of the inspector
 }
 
 // arrayRange gathers the values of one array.
