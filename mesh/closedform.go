@@ -130,9 +130,9 @@ func (c *Cell) hexahedronVolume() (volume float64, orientation Orientation) {
 	return volume, orientation
 }
 
-// planeArea returns the signed area of a linear plane cell in x and y and the least and
+// linearPlaneArea returns the signed area of a linear plane cell in x and y and the least and
 // greatest Jacobian determinant at its corners.
-func (c *Cell) planeArea() (area, least, greatest float64) {
+func (c *Cell) linearPlaneArea() (area, least, greatest float64) {
 	order := &c.Shape.order
 	x0, y0, _ := c.point(int(order[0]))
 	x1, y1, _ := c.point(int(order[1]))
@@ -148,4 +148,30 @@ func (c *Cell) planeArea() (area, least, greatest float64) {
 	d3 := float64((x2-x3)*(y3-y0)) - float64((x3-x0)*(y2-y3))
 	area = (float64((x2-x0)*(y3-y1)) - float64((x3-x1)*(y2-y0))) / 2
 	return area, min(min(d0, d1), min(d2, d3)), max(max(d0, d1), max(d2, d3))
+}
+
+// maxFlatWarp is the largest angle between an edge of a quadrilateral and its mean plane
+// at which it counts as flat. The area differs by the square of it.
+const maxFlatWarp = 1e-8
+
+// flatArea returns the area of a convex flat quadrilateral in space, and whether the cell
+// is one.
+func (c *Cell) flatArea() (area float64, isFlat bool) {
+	var p [4][3]float64
+	for i := range p {
+		p[i] = c.node(int(c.Shape.order[i]))
+	}
+	across := cross(minus(p[2], p[0]), minus(p[3], p[1]))
+	size := norm(across)
+	edge := minus(p[1], p[0])
+	if !(size > 0 && math.Abs(dot(edge, across)) <= maxFlatWarp*norm(edge)*size) {
+		return 0, false
+	}
+	for i := range p {
+		next, last := minus(p[(i+1)%4], p[i]), minus(p[(i+3)%4], p[i])
+		if !(dot(cross(next, last), across) >= 0) {
+			return 0, false
+		}
+	}
+	return size / 2, true
 }

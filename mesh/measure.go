@@ -68,7 +68,7 @@ func (c *Cell) PlaneArea() (area float64, orientation Orientation) {
 		return c.piecePlaneArea()
 	}
 	if form := c.Shape.form; (form == triangleForm || form == quadForm) && !c.IsRational() {
-		area, least, greatest := c.planeArea()
+		area, least, greatest := c.linearPlaneArea()
 		return area, orientationOf(least, greatest)
 	}
 	return c.integratedDeterminant(), c.cornerOrientation()
@@ -129,6 +129,10 @@ func (c *Cell) Measure() float64 {
 			return volume
 		}
 		return math.Abs(volume)
+	case c.Shape.form == quadForm && !c.IsRational():
+		if area, isFlat := c.flatArea(); isFlat {
+			return area
+		}
 	}
 	t := c.spaceRule()
 	sum := 0.0

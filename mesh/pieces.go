@@ -4,9 +4,10 @@ import "math"
 
 // Poly-lines, triangle strips and polygons are integrated piece by piece: over the
 // lines of a poly-line, the triangles of a strip, and for a polygon over the triangles
-// between its middle and each edge. Those of a polygon count with the sign that they
-// have against the whole, so that it may be concave; the edges of a quadratic polygon
-// are curved, and the triangles have a node in the middle of each.
+// between its first corner and each edge. Those of a polygon count with the sign that
+// they have against the whole, so that it may be concave. The edges of a quadratic
+// polygon are curved, and the triangles have six nodes; two of them have two corners in
+// one point, and the area between a curved edge and its chord.
 
 // A piece is one of them: its nodes and the rule of its shape.
 type piece struct {
@@ -54,22 +55,12 @@ func (c *Cell) piece(i int, to *piece) {
 	case strip: // every second triangle is turned
 		to.nodes[0], to.nodes[1], to.nodes[2] = c.node(i+i%2), c.node(i+1-i%2), c.node(i+2)
 	case fan:
-		from, behind := c.node(i), c.node((i+1)%s.CornerCount)
-		to.nodes[0], to.nodes[1], to.nodes[2] = c.cornerMean(), from, behind
+		apex, from, behind := c.node(0), c.node(i), c.node((i+1)%s.CornerCount)
+		to.nodes[0], to.nodes[1], to.nodes[2] = apex, from, behind
 		if to.count == 6 {
-			to.nodes[3] = between(to.nodes[0], from)
-			to.nodes[4] = c.node(s.CornerCount + i)
-			to.nodes[5] = between(behind, to.nodes[0])
+			to.nodes[3], to.nodes[4], to.nodes[5] = between(apex, from), c.node(s.CornerCount+i), between(behind, apex)
 		}
 	}
-}
-
-// cornerMean returns the mean of the corners.
-func (c *Cell) cornerMean() (mean [3]float64) {
-	for i := range c.Shape.CornerCount {
-		add(&mean, 1, c.node(i))
-	}
-	return scaled(mean, 1/float64(c.Shape.CornerCount))
 }
 
 // element returns a point of the rule and what belongs to it of a line as a vector

@@ -219,8 +219,7 @@ func (c *Cell) faceMean(nodes []int32) (mean [3]float64) {
 
 // from returns the vector from an origin to a point of the piece.
 func (c *Cell) from(origin [3]float64, point int32) [3]float64 {
-	p := c.Points[3*int(point):][:3]
-	return [3]float64{p[0] - origin[0], p[1] - origin[1], p[2] - origin[2]}
+	return minus([3]float64(c.Points[3*int(point):][:3]), origin)
 }
 
 // HasWarpedFaces reports whether a face of a polyhedron or a prism does not lie in a

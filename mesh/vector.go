@@ -9,6 +9,11 @@ func between(a, b [3]float64) [3]float64 {
 	return [3]float64{(a[0] + b[0]) / 2, (a[1] + b[1]) / 2, (a[2] + b[2]) / 2}
 }
 
+// minus returns a - b.
+func minus(a, b [3]float64) [3]float64 {
+	return [3]float64{a[0] - b[0], a[1] - b[1], a[2] - b[2]}
+}
+
 // scaled returns a multiple.
 func scaled(a [3]float64, by float64) [3]float64 {
 	return [3]float64{a[0] * by, a[1] * by, a[2] * by}
