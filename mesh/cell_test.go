@@ -82,7 +82,7 @@ func TestGradientsOfLinearFields(t *testing.T) {
 			}
 			var got [3]float64
 			for i, g := range gradients {
-				add(&got, 7+dot(slope, c.place(i)), g)
+				add(&got, 7+dot(slope, c.node(i)), g)
 			}
 			for axis := range got {
 				if math.Abs(got[axis]-slope[axis]) > 1e-9 {
@@ -136,7 +136,7 @@ func TestValuesGiveThePlace(t *testing.T) {
 			whole, place := 0.0, [3]float64{}
 			for i, value := range values {
 				whole += value
-				add(&place, value, c.place(i))
+				add(&place, value, c.node(i))
 			}
 			add(&place, -1, c.Place(rule, point))
 			if math.Abs(whole-1) > 1e-13 || math.Sqrt(dot(place, place)) > 1e-13 {

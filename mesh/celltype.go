@@ -74,7 +74,7 @@ const (
 	loosePoints               // points, without measure
 	chain                     // lines in a row
 	strip                     // triangles in a row
-	fan                       // plane polygon: triangles about its middle
+	fan                       // plane polygon: triangles about a corner
 	prism                     // two polygons joined by quadrilaterals
 	polyhedral                // bounded by polygons that the file lists
 	unsupported               // recognised, but without functions and measure

@@ -94,9 +94,9 @@ func TestFacesLookOutwards(t *testing.T) {
 		flux, area := 0.0, 0.0
 		for _, face := range s.FaceCorners() {
 			var vector [3]float64
-			first := c.place(face[0])
+			first := c.node(face[0])
 			for i := 1; i+1 < len(face); i++ {
-				a, b := c.place(face[i]), c.place(face[i+1])
+				a, b := c.node(face[i]), c.node(face[i+1])
 				add(&a, -1, first)
 				add(&b, -1, first)
 				add(&vector, 0.5, cross(a, b))

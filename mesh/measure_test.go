@@ -3,6 +3,7 @@ package mesh
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 )
 
@@ -494,6 +495,48 @@ func TestProductRuleIsExact(t *testing.T) {
 		if got := integral(s.MeasureRule()); near(got, want, 1e-12) {
 			t.Errorf("%s: the rule for the measure gives %.17g too", label(s), got)
 		}
+	}
+}
+
+// Quadrilaterals in space: flat ones in closed form, others by quadrature; the bow tie
+// and the warped one are none that the closed form would get right.
+func TestAreasInSpace(t *testing.T) {
+	for _, test := range []struct {
+		name   string
+		points [][3]float64
+		isFlat bool
+	}{
+		{"flat", [][3]float64{{0, 0, 0}, {3, 0, 4}, {3, 2, 4}, {0, 1, 0}}, true},
+		{"flat with a corner on an edge", [][3]float64{{0, 0, 0}, {3, 0, 4}, {6, 0, 8}, {0, 1, 0}}, true},
+		{"dart", [][3]float64{{0, 0, 0}, {3, 0, 4}, {0.3, 0.2, 0.4}, {0, 1, 0}}, false},
+		{"bow tie", [][3]float64{{0, 0, 0}, {3, 0, 4}, {0, 1, 0}, {3, 2, 4}}, false},
+		{"warped", [][3]float64{{0, 0, 0}, {1, 0, 0}, {1, 1, 1e-6}, {0, 1, 0}}, false},
+		{"hyperbolic paraboloid", [][3]float64{{0, 0, 0}, {1, 0, 0}, {1, 1, 1}, {0, 1, 0}}, false},
+	} {
+		for _, cellType := range []CellType{Quad, Pixel, LagrangeQuad, BezierQuad} {
+			points := slices.Clone(test.points)
+			if cellType == Pixel {
+				points[2], points[3] = points[3], points[2]
+			}
+			c := testCell(t, cellType, [3]int{}, points)
+			if _, isFlat := c.flatArea(); isFlat != test.isFlat {
+				t.Errorf("%s: flat %v", test.name, isFlat)
+			}
+			rule := c.Shape.FineRule()
+			want := 0.0
+			for i, weight := range rule.Weights {
+				want += weight * c.stretch(rule, i)
+			}
+			if got := c.Measure(); !near(got, want, 1e-14) {
+				t.Errorf("%s: area %.17g, by quadrature %.17g", test.name, got, want)
+			}
+		}
+	}
+	// z = xy over the unit square: ∫∫ √(1 + x² + y²).
+	// Source: a program of its own with 60 × 60 points.
+	saddle := testCell(t, Quad, [3]int{}, [][3]float64{{0, 0, 0}, {1, 0, 0}, {1, 1, 1}, {0, 1, 0}})
+	if got, want := saddle.Measure(), 1.2807892752734014; !near(got, want, 1e-14) {
+		t.Errorf("hyperbolic paraboloid: area %.17g, want %.17g", got, want)
 	}
 }
 

@@ -77,7 +77,7 @@ func TestPolyhedra(t *testing.T) {
 	cube := cubeOfFaces(nil)
 	var cubePoints [][3]float64
 	for i := range cube.Nodes {
-		cubePoints = append(cubePoints, cube.place(i))
+		cubePoints = append(cubePoints, cube.node(i))
 	}
 	// The cube whose face r = 1 is divided in two, with nodes in the middle of two of
 	// its edges that the neighbouring faces do not list.
@@ -123,7 +123,7 @@ func TestPolyhedraThatDoNotClose(t *testing.T) {
 	cube := cubeOfFaces(nil)
 	var points [][3]float64
 	for i := range cube.Nodes {
-		points = append(points, cube.place(i))
+		points = append(points, cube.node(i))
 	}
 	inner := append([][3]float64{}, points...)
 	for _, p := range points {
