@@ -121,7 +121,11 @@ var legacyNumbers = map[string]legacyNumber{
 	"unsigned_char": {number: uint8Number}, "short": {number: int16Number}, "unsigned_short": {number: uint16Number},
 	"int": {number: int32Number}, "unsigned_int": {number: uint32Number},
 	"long": {number: int64Number, isLong: true}, "unsigned_long": {number: uint64Number, isLong: true},
+	"vtktypeint8": {number: int8Number}, "vtktypeuint8": {number: uint8Number},
+	"vtktypeint16": {number: int16Number}, "vtktypeuint16": {number: uint16Number},
+	"vtktypeint32": {number: int32Number}, "vtktypeuint32": {number: uint32Number},
 	"vtktypeint64": {number: int64Number}, "vtktypeuint64": {number: uint64Number},
+	"vtktypefloat32": {number: float32Number}, "vtktypefloat64": {number: float64Number},
 	"vtkidtype": {number: int32Number, isID: true}, "float": {number: float32Number}, "double": {number: float64Number},
 	"string": {number: stringNumber}, "utf8_string": {number: stringNumber},
 }
