@@ -17,7 +17,7 @@ var numberWord = regexp.MustCompile(`-?[0-9]+`)
 // out or doubled, bits turned, the end cut off. No result may break a promise.
 func TestDamagedSamples(t *testing.T) {
 	random := rand.New(rand.NewPCG(1, 2))
-	damages := 60
+	damages := 25
 	if testing.Short() {
 		damages = 5
 	}

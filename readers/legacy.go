@@ -125,12 +125,12 @@ func (l *legacyFile) begin() error {
 	if err != nil {
 		return err
 	}
+	l.file.text = l.window.offset()
 	switch coding {
 	case "ASCII":
 		l.file.text = l.file.size
 	case "BINARY":
 		l.isBinary = true
-		l.file.text = l.window.offset()
 	default:
 		return l.window.fail(malformed("found %.40q, need ASCII or BINARY", coding))
 	}

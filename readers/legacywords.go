@@ -121,11 +121,11 @@ var legacyNumbers = map[string]legacyNumber{
 	"unsigned_char": {number: uint8Number}, "short": {number: int16Number}, "unsigned_short": {number: uint16Number},
 	"int": {number: int32Number}, "unsigned_int": {number: uint32Number},
 	"long": {number: int64Number, isLong: true}, "unsigned_long": {number: uint64Number, isLong: true},
-	// Names of fixed width: the library writes the last two only, other writers all.
-	"vtktypeint8": {number: int8Number}, "vtktypeuint8": {number: uint8Number}, "vtktypeint16": {number: int16Number},
-	"vtktypeuint16": {number: uint16Number}, "vtktypeint32": {number: int32Number}, "vtktypeuint32": {number: uint32Number},
-	"vtktypefloat32": {number: float32Number}, "vtktypefloat64": {number: float64Number},
+	"vtktypeint8": {number: int8Number}, "vtktypeuint8": {number: uint8Number},
+	"vtktypeint16": {number: int16Number}, "vtktypeuint16": {number: uint16Number},
+	"vtktypeint32": {number: int32Number}, "vtktypeuint32": {number: uint32Number},
 	"vtktypeint64": {number: int64Number}, "vtktypeuint64": {number: uint64Number},
+	"vtktypefloat32": {number: float32Number}, "vtktypefloat64": {number: float64Number},
 	"vtkidtype": {number: int32Number, isID: true}, "float": {number: float32Number}, "double": {number: float64Number},
 	"string": {number: stringNumber}, "utf8_string": {number: stringNumber},
 }
@@ -157,54 +157,61 @@ func (l *legacyFile) array(name string, on mesh.Location, components, tuples int
 }
 
 // typed passes over the values of an array. Where long may have two sizes, that is
-// taken which makes a word follow the values.
+// taken behind which a line ends or a keyword stands.
 func (l *legacyFile) typed(name string, on mesh.Location, n legacyNumber, components, tuples int64) (*column, error) {
-	if n.isID {
-		if !l.isBinary {
-			n.number = int64Number
-		}
-		a, err := l.values(name, on, n.number, components, tuples)
-		if err == nil {
-			a.Type = int64Number.String()
-		}
-		return a, err
+	if n.isID && !l.isBinary {
+		n.number = int64Number
 	}
 	start := l.window.offset()
 	a, err := l.values(name, on, n.number, components, tuples)
-	if !n.isLong || !l.isBinary || tuples == 0 {
-		return a, err
+	if n.isLong && l.isBinary && tuples > 0 && (err != nil || !l.isBlockEnd()) {
+		if err := l.window.jump(start); err != nil {
+			return nil, err
+		}
+		short := int32Number
+		if n.number == uint64Number {
+			short = uint32Number
+		}
+		b, shortErr := l.values(name, on, short, components, tuples)
+		if shortErr == nil && (err != nil || l.isBlockEnd()) {
+			return b, nil
+		}
+		if err == nil {
+			err = l.window.jump(a.start + a.length)
+		}
 	}
-	if err == nil && l.wordFollows() {
-		return a, nil
+	if err == nil && n.isID {
+		a.Type = int64Number.String()
 	}
-	if err := l.window.jump(start); err != nil {
-		return nil, err
-	}
-	short := int32Number
-	if n.number == uint64Number {
-		short = uint32Number
-	}
-	if b, shortErr := l.values(name, on, short, components, tuples); shortErr == nil && (err != nil || l.wordFollows()) {
-		return b, nil
-	}
-	if err != nil {
-		return nil, err
-	}
-	return a, l.window.jump(a.start + a.length)
+	return a, err
 }
 
-// wordFollows reports whether a keyword or the end of the file comes next.
-func (l *legacyFile) wordFollows() bool {
+// isBlockEnd reports whether a block of values may end here: at the end of a line or of
+// the file, or before a keyword.
+func (l *legacyFile) isBlockEnd() bool {
+	rest, err := l.window.rest()
+	if err != nil || len(rest) == 0 {
+		return err == nil
+	}
+	isLine := rest[0] == '\n' || rest[0] == '\r'
 	word, err := l.peek()
 	if err != nil {
 		return false
 	}
+	isKeyword := legacyKeywords[strings.ToUpper(word)]
 	for _, c := range []byte(word) {
 		if c > '~' {
 			return false
 		}
 	}
-	return len(word) < 256 && (word == "" || word[0] >= 'A' && word[0] <= 'z')
+	return isLine && len(word) < 256 || isKeyword
+}
+
+// legacyKeywords are those that may follow an array of point or cell data.
+var legacyKeywords = map[string]bool{
+	"POINT_DATA": true, "CELL_DATA": true, "SCALARS": true, "VECTORS": true, "NORMALS": true, "TENSORS": true,
+	"TENSORS6": true, "GLOBAL_IDS": true, "PEDIGREE_IDS": true, "EDGE_FLAGS": true, "TEXTURE_COORDINATES": true,
+	"COLOR_SCALARS": true, "LOOKUP_TABLE": true, "FIELD": true, "METADATA": true,
 }
 
 // values passes over values and returns where they are.

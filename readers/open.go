@@ -63,6 +63,7 @@ type opener struct {
 	fieldNames map[string]bool // names of field arrays
 	blockNames map[string]bool // names of blocks
 	root       string          // folder of the file that the call names
+	remarks    map[string]bool // that were made
 	spools     []spoolFile     // temporary files
 	decoded    int64           // bytes that compressed content decodes to
 }
@@ -70,7 +71,7 @@ type opener struct {
 func newOpener(ctx context.Context, options Options) *opener {
 	return &opener{
 		ctx: ctx, options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, 1),
-		model: &mesh.Model{}, taken: map[string]bool{}, fieldNames: map[string]bool{}, blockNames: map[string]bool{},
+		model: &mesh.Model{}, taken: map[string]bool{}, fieldNames: map[string]bool{}, blockNames: map[string]bool{}, remarks: map[string]bool{},
 	}
 }
 
@@ -233,8 +234,12 @@ func (o *opener) addPiece(p *piece, source *mesh.Source, set *pieceSet) error {
 	return nil
 }
 
-// remark notes something that does not stop the work.
+// remark notes something that does not stop the work, once.
 func (o *opener) remark(code, message string) {
+	if o.remarks[message] {
+		return
+	}
+	o.remarks[message] = true
 	o.model.Remarks = append(o.model.Remarks, mesh.Remark{Code: code, Message: message})
 }
 
