@@ -157,15 +157,6 @@ type node struct {
 	Text       string     `xml:",chardata"`
 }
 
-func (n *node) get(name string) string {
-	for _, attribute := range n.Attributes {
-		if attribute.Name.Local == name {
-			return attribute.Value
-		}
-	}
-	return ""
-}
-
 func (n *node) walk(visit func(*node)) {
 	visit(n)
 	for i := range n.Children {
