@@ -35,6 +35,7 @@ type CurveAnalysis struct {
 	RambergOsgood      *RambergOsgoodFit `json:"ramberg_osgood"`
 	Findings           []Finding         `json:"findings"`
 	Caution            string            `json:"caution"`
+	Version            Text              `json:"version"` // of the program
 
 	Points    []CurvePoint `json:"-"` // as measured
 	Lines     []int        `json:"-"` // the line of each point in the file
@@ -46,6 +47,8 @@ type CurveAnalysis struct {
 // CurveSource says what the curve was read from.
 type CurveSource struct {
 	Path    string     `json:"path"`
+	SHA256  Text       `json:"sha256"` // null where the file was not hashed
+	Bytes   int64      `json:"bytes"`
 	Points  int        `json:"points"`
 	Strain  ColumnRead `json:"strain"`
 	Stress  ColumnRead `json:"stress"`

@@ -6,6 +6,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"io/fs"
 	"math"
 	"strconv"
 	"strings"
@@ -81,7 +82,8 @@ const (
 // the ultimate stress.
 //
 // Strain must rise from row to row: unloading loops and repeated readings are refused.
-// Errors are *CurveError, with the line, or the reader's own.
+// Errors are *CurveError, with the line where one is to blame, and *StudyError for a
+// reading that cannot be.
 func ReadCurve(source io.Reader, path string, reading CurveReading) (*CurveRecord, error) {
 	if err := reading.check(); err != nil {
 		return nil, err
@@ -175,7 +177,10 @@ func readLines(source io.Reader, path string) ([]textLine, error) {
 	if err := scanner.Err(); errors.Is(err, bufio.ErrTooLong) {
 		return nil, &CurveError{path, number + 1, fmt.Errorf("longer than %d bytes: this is no table of a curve", maxCurveLine)}
 	} else if err != nil {
-		return nil, fmt.Errorf("%s: %w", path, err)
+		if place := new(fs.PathError); errors.As(err, &place) {
+			err = place.Err // which has no second path
+		}
+		return nil, &CurveError{path, 0, err}
 	}
 	return lines, nil
 }

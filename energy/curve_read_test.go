@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"io/fs"
 	"os"
 	"path/filepath"
 	"reflect"
@@ -100,6 +101,11 @@ func TestReadCurveTables(t *testing.T) {
 		{"headings in a comment", "# strain [%], stress [ksi]\n0,0\n1,2\n", CurveReading{Stress: "psi"}, []CurvePoint{{0, 0}, {0.01, 2000}}},
 		{"units below the headings", "strain,stress\n(%),(GPa)\n0,0\n1,2\n", CurveReading{Stress: "MPa"}, []CurvePoint{{0, 0}, {0.01, 2000}}},
 		{"unit after a stroke", "Strain/%;Stress_kPa\n0;0\n1;2\n", CurveReading{Stress: "Pa"}, []CurvePoint{{0, 0}, {0.01, 2000}}},
+		{"percent sign", "Strain%,%Stress (Pa)\n0,0\n1,2000\n", CurveReading{Stress: "kPa"}, []CurvePoint{{0, 0}, {0.01, 2}}},
+		{"percent before", "% strain;psi stress\n0;0\n1;2000\n", CurveReading{Stress: "ksi"}, []CurvePoint{{0, 0}, {0.01, 2}}},
+		{"percent in words", "Percent strain;stress, MPa\n0;0\n1;2\n", CurveReading{}, []CurvePoint{{0, 0}, {0.01, 2}}},
+		{"microstrain as a name", "Microstrain;MPa stress\n0;0\n1;2\n", CurveReading{}, []CurvePoint{{0, 0}, {1e-6, 2}}},
+		{"microstrain as a sign", "με;σ\n0;0\n1;2\n", CurveReading{}, []CurvePoint{{0, 0}, {1e-6, 2}}},
 		{"unit after a comma", "\"Strain, %\",\"Stress, N/mm^2\"\n0,0\n1,2\n", CurveReading{Stress: "kPa"}, []CurvePoint{{0, 0}, {0.01, 2000}}},
 		{"per unit length", "Strain mm/mm;Stress Pa\n0;0\n1;2000\n", CurveReading{Stress: "kPa"}, []CurvePoint{{0, 0}, {1, 2}}},
 		{"symbols", "σ [MPa]\tε [µε]\n0\t0\n70\t1000\n", CurveReading{}, []CurvePoint{{0, 0}, {0.001, 70}}},
@@ -187,8 +193,12 @@ func TestReadCurveRefuses(t *testing.T) {
 		}
 	}
 	fault := errors.New("the disk is gone")
-	if _, err := ReadCurve(iotest.ErrReader(fault), "x", CurveReading{}); !errors.Is(err, fault) {
-		t.Errorf("error %v, want the reader's own", err)
+	var place *CurveError
+	if _, err := ReadCurve(iotest.ErrReader(fault), "x", CurveReading{}); !errors.Is(err, fault) || !errors.As(err, &place) {
+		t.Errorf("error %v, want the reader's own, with the path", err)
+	}
+	if _, err := ReadCurve(iotest.ErrReader(&fs.PathError{Op: "read", Path: "x", Err: fault}), "x", CurveReading{}); err.Error() != "x: the disk is gone" {
+		t.Errorf("error %q, want the path once", err)
 	}
 }
 

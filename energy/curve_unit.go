@@ -46,8 +46,9 @@ func unitKey(text string) string {
 // "engineering strain" and the unit "%".
 type heading struct{ text, name, unit string }
 
-// parseHeading splits a heading. A unit stands in brackets, or after a separator if it
-// is a known one.
+// parseHeading splits a heading. A unit stands in brackets, or before or after a
+// separator if it is a known one; a percent sign needs no separator, and microstrain is
+// a name as well.
 func parseHeading(text string) heading {
 	text = strings.TrimSpace(text)
 	lower := strings.ToLower(text)
@@ -57,16 +58,34 @@ func parseHeading(text string) heading {
 			return heading{text, strings.TrimSpace(lower[:open]), unitKey(lower[open+1 : len(lower)-1])}
 		}
 	}
+	if whole := unitKey(lower); strainNames[whole] == "microstrain" {
+		return heading{text, "strain", whole}
+	}
+	if name := strings.Trim(lower, "% "); len(name) < len(strings.TrimSpace(lower)) {
+		return heading{text, name, "%"}
+	}
 	for i, letter := range lower {
-		if i == 0 || !strings.ContainsRune(" _,/", letter) {
+		if i == 0 || !strings.ContainsRune(headingSeparators, letter) {
 			continue
 		}
-		unit := unitKey(lower[i+1:])
-		if unit != "" && (strainNames[unit] != "" || stressNames[unit] != "") {
-			return heading{text, strings.Trim(lower[:i], " _,/"), unit}
+		before, after := lower[:i], lower[i+1:]
+		if isUnit(after) {
+			return heading{text, strings.Trim(before, headingSeparators), unitKey(after)}
+		}
+		if isUnit(before) {
+			return heading{text, strings.Trim(after, headingSeparators), unitKey(before)}
 		}
 	}
 	return heading{text, lower, ""}
+}
+
+// headingSeparators may stand between a heading's name and its unit.
+const headingSeparators = " _,/"
+
+// isUnit reports whether a text is one of the ways to write a unit.
+func isUnit(text string) bool {
+	unit := unitKey(text)
+	return strainNames[unit] != "" || stressNames[unit] != ""
 }
 
 // headingsOf returns the headings of a line's fields.

@@ -27,10 +27,10 @@ type Law struct {
 // violated condition: E > 0, -1 < ν < 0.5.
 func NewIsotropicLaw(youngsModulus, poissonsRatio float64) (*Law, error) {
 	if !(youngsModulus > 0) {
-		return nil, fmt.Errorf("Young's modulus is %g, must be above 0", youngsModulus)
+		return nil, fmt.Errorf("the Young's modulus is %g, must be above 0", youngsModulus)
 	}
 	if !(poissonsRatio > -1 && poissonsRatio < 0.5) {
-		return nil, fmt.Errorf("Poisson's ratio is %g, must lie between -1 and 0.5", poissonsRatio)
+		return nil, fmt.Errorf("the Poisson's ratio is %g, must lie between -1 and 0.5", poissonsRatio)
 	}
 	e, nu := youngsModulus, poissonsRatio
 	return &Law{

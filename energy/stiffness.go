@@ -55,7 +55,7 @@ const (
 func NewOrthotropicLaw(youngsModuli, shearModuli, poissonsRatios [3]float64) (*Law, error) {
 	for i, axis := range []string{"x", "y", "z"} {
 		if !(youngsModuli[i] > 0) || math.IsInf(youngsModuli[i], 0) {
-			return nil, fmt.Errorf("Young's modulus E_%s is %g, must be above 0 and finite", axis, youngsModuli[i])
+			return nil, fmt.Errorf("the Young's modulus E_%s is %g, must be above 0 and finite", axis, youngsModuli[i])
 		}
 	}
 	planes := [3][2]int{{0, 1}, {1, 2}, {0, 2}} // xy yz xz
@@ -66,7 +66,7 @@ func NewOrthotropicLaw(youngsModuli, shearModuli, poissonsRatios [3]float64) (*L
 		}
 		ratio := youngsModuli[planes[i][0]] / youngsModuli[planes[i][1]]
 		if !(math.Abs(poissonsRatios[i]) < math.Sqrt(ratio)) {
-			return nil, fmt.Errorf("Poisson's ratio ν_%s is %g, its size must be below √(E_%c/E_%c) = %g",
+			return nil, fmt.Errorf("the Poisson's ratio ν_%s is %g, its size must be below √(E_%c/E_%c) = %g",
 				plane, poissonsRatios[i], plane[0], plane[1], math.Sqrt(ratio))
 		}
 		product += poissonsRatios[i] * poissonsRatios[i] / ratio // ν_xy ν_yx = ν_xy² E_y/E_x
@@ -74,7 +74,7 @@ func NewOrthotropicLaw(youngsModuli, shearModuli, poissonsRatios [3]float64) (*L
 	// ν_yx ν_zy ν_xz = ν_xy ν_yz ν_xz E_z/E_x, for E_y/E_x times E_z/E_y.
 	triple *= poissonsRatios[0] * poissonsRatios[1] * poissonsRatios[2] * youngsModuli[2] / youngsModuli[0]
 	if determinant := 1 - product - triple; !(determinant > definiteTolerance) {
-		return nil, fmt.Errorf("Poisson's ratios: 1 - ν_xy ν_yx - ν_yz ν_zy - ν_zx ν_xz - 2 ν_yx ν_zy ν_xz is %g, must be above 0", determinant)
+		return nil, fmt.Errorf("the Poisson's ratios: 1 - ν_xy ν_yx - ν_yz ν_zy - ν_zx ν_xz - 2 ν_yx ν_zy ν_xz is %g, must be above 0", determinant)
 	}
 	compliance := mat.NewSymDense(6, nil)
 	for i := range 3 {

@@ -16,18 +16,21 @@ import (
 // A reportFile is one file of a report and what writes it.
 type reportFile struct {
 	name  string
-	write func(io.Writer, *energy.Ledger) error
+	write func(io.Writer) error
 }
 
-func reportFiles() []reportFile {
-	files := []reportFile{{"ledger.json", JSON}}
+func reportFiles(ledger *energy.Ledger) []reportFile {
+	of := func(write func(io.Writer, *energy.Ledger) error) func(io.Writer) error {
+		return func(w io.Writer) error { return write(w, ledger) }
+	}
+	files := []reportFile{{"ledger.json", of(JSON)}}
 	for _, file := range csvFiles {
-		files = append(files, reportFile{file.name, file.write})
+		files = append(files, reportFile{file.name, of(file.write)})
 	}
 	return append(files,
-		reportFile{"columns.csv", writeColumns},
-		reportFile{"summary.md", writeMarkdown},
-		reportFile{"requirements.xml", writeJUnit})
+		reportFile{"columns.csv", of(writeColumns)},
+		reportFile{"summary.md", of(writeMarkdown)},
+		reportFile{"requirements.xml", of(writeJUnit)})
 }
 
 // WriteFiles writes the ledger to the folder in every form: ledger.json, its tables as
@@ -42,10 +45,14 @@ func WriteFiles(dir string, ledger *energy.Ledger) error {
 	if err := checkAllPastLimit(ledger); err != nil {
 		return err
 	}
+	return writeFiles(dir, reportFiles(ledger))
+}
+
+// writeFiles writes the files of a report, all of them or none.
+func writeFiles(dir string, files []reportFile) error {
 	if err := os.MkdirAll(dir, 0o777); err != nil {
 		return err
 	}
-	files := reportFiles()
 	drafts := make([]string, len(files))
 	defer func() {
 		for _, draft := range drafts {
@@ -54,7 +61,7 @@ func WriteFiles(dir string, ledger *energy.Ledger) error {
 	}()
 	for i, file := range files {
 		drafts[i] = filepath.Join(dir, fmt.Sprintf(".%s.%08x", file.name, rand.Uint32()))
-		if err := writeFile(drafts[i], file, ledger); err != nil {
+		if err := writeFile(drafts[i], file); err != nil {
 			return fmt.Errorf("%s: %w", filepath.Join(dir, file.name), err)
 		}
 	}
@@ -83,13 +90,13 @@ func checkAllPastLimit(ledger *energy.Ledger) error {
 }
 
 // writeFile creates the file, which must not exist.
-func writeFile(path string, file reportFile, ledger *energy.Ledger) error {
+func writeFile(path string, file reportFile) error {
 	out, err := os.OpenFile(path, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
 	if err != nil {
 		return withoutPath(err)
 	}
 	buffer := bufio.NewWriter(out)
-	err = file.write(buffer, ledger)
+	err = file.write(buffer)
 	if err == nil {
 		err = buffer.Flush()
 	}

@@ -129,7 +129,7 @@ func TestWriteFilesNamesWhatStandsInTheWay(t *testing.T) {
 // A file that cannot be created names itself, not its draft.
 func TestWriteFilesWhereNothingCanBeCreated(t *testing.T) {
 	long := filepath.Join(t.TempDir(), "f")
-	err := writeFile(filepath.Join(long, "missing", "draft"), reportFile{"ledger.json", JSON}, bracket())
+	err := writeFile(filepath.Join(long, "missing", "draft"), reportFiles(bracket())[0])
 	if !errors.Is(err, syscall.ENOENT) || strings.Contains(err.Error(), "draft") {
 		t.Errorf("the error is %v, want the reason alone", err)
 	}

@@ -69,7 +69,7 @@ func TestFilesAgainstGolden(t *testing.T) {
 			if err := WriteFiles(dir, ledger()); err != nil {
 				t.Fatal(err)
 			}
-			for _, file := range reportFiles() {
+			for _, file := range reportFiles(ledger()) {
 				got, err := os.ReadFile(filepath.Join(dir, file.name))
 				if err != nil {
 					t.Fatal(err)

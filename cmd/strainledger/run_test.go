@@ -56,9 +56,9 @@ func TestWrongCalls(t *testing.T) {
 		want string
 	}{
 		{nil, "no command given; see strainledger --help"},
-		{[]string{"compare"}, `no command "compare"; there are completion, demo, inspect, tally, version; see strainledger --help`},
+		{[]string{"compare"}, `no command "compare"; there are completion, curve, demo, inspect, tally, version; see strainledger --help`},
 		{[]string{"--nothing"}, "unknown flag: --nothing; see strainledger --help"},
-		{[]string{"help", "compare"}, `no command "compare"; there are completion, demo, inspect, tally, version; see strainledger --help`},
+		{[]string{"help", "compare"}, `no command "compare"; there are completion, curve, demo, inspect, tally, version; see strainledger --help`},
 		{[]string{"help", "tally", "demo"}, "found 2 arguments, want one command at most; see strainledger help --help"},
 		{[]string{"version", "x"}, `found the argument "x", want none; see strainledger version --help`},
 		{[]string{"completion"}, "want one shell of bash, zsh, fish, powershell; see strainledger completion --help"},
