@@ -290,7 +290,9 @@ func (p *plan) fillLists(ledger *Ledger, total *part) {
 	ledger.Hotspots = []Hotspot{}
 	total.hotspots.trim()
 	for rank, c := range total.hotspots.list {
-		ledger.Hotspots = append(ledger.Hotspots, p.hotspot(rank+1, &c))
+		entry := p.hotspot(rank+1, &c)
+		entry.LocalEstimate = p.regions.regions[c.region].localEstimate(&ledger.Regions[c.region].Account, &entry)
+		ledger.Hotspots = append(ledger.Hotspots, entry)
 	}
 	ledger.PastLimit = PastLimit{
 		Criterion: string(p.criterion()), Cells: ledger.Total.CellsPastLimit,
@@ -313,10 +315,12 @@ func (p *plan) fillLists(ledger *Ledger, total *part) {
 // hotspot lays out one entry of the list of hotspots: a single cell.
 func (p *plan) hotspot(rank int, c *candidate) Hotspot {
 	at := c.at
+	factor := LoadFactor(p.regions.regions[c.region].limit.criterion, Number(c.limitShare))
 	entry := Hotspot{
 		Rank: rank, Region: p.regions.regions[c.region].name, Cell: c.place.cell, Source: c.place.source, ElementID: elementID(c),
 		At: &at, Density: Number(c.density), PeakDensity: Number(c.peak), Energy: None, EnergyShare: None, Volume: None, Cells: None,
 		Prominence: None, EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
+		StressMargin: factor - 1, LoadFactor: factor,
 	}
 	if !math.IsNaN(c.limitShare) {
 		isPast := c.limitShare > 1

@@ -122,30 +122,6 @@ func TestLawCompletesOutOfPlane(t *testing.T) {
 	}
 }
 
-// Von Mises stress of states of F-05 to F-08 and T-02 (Huber, Mises, Hencky; values
-// derived).
-func TestVonMisesStress(t *testing.T) {
-	for _, c := range []struct {
-		id     string
-		stress mesh.SymmetricTensor
-		want   float64
-	}{
-		{"F-05", mesh.SymmetricTensor{200, -50, 0, 80}, 267.768557},
-		{"F-06", mesh.SymmetricTensor{50, -20, 60, 40, 10, 30}, 116.189500},
-		{"F-07", mesh.SymmetricTensor{100, 100, 100, 100, 100, 100}, 300},
-		{"F-07b", mesh.SymmetricTensor{300, 280, 290}, 17.320508},
-		{"F-08", mesh.SymmetricTensor{50, 50}, 50},
-		{"F-08", mesh.SymmetricTensor{0, 100}, 100},
-		{"xy alone", mesh.SymmetricTensor{0, 0, 0, 1}, math.Sqrt(3)},
-		{"yz alone", mesh.SymmetricTensor{0, 0, 0, 0, 1}, math.Sqrt(3)},
-		{"xz alone", mesh.SymmetricTensor{0, 0, 0, 0, 0, 1}, math.Sqrt(3)},
-	} {
-		if got := VonMisesStress(&c.stress); !within(got, c.want, 1e-7) {
-			t.Errorf("%s: %.9g, want %.9g", c.id, got, c.want)
-		}
-	}
-}
-
 // F-09 (derived): the density of a mean is below the mean of densities.
 func TestDensityIsConvex(t *testing.T) {
 	law := isotropic(t, 200000, 0.3)

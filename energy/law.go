@@ -2,6 +2,7 @@ package energy
 
 import (
 	"fmt"
+	"math"
 
 	"strainledger/mesh"
 )
@@ -46,6 +47,19 @@ func NewIsotropicLaw(youngsModulus, poissonsRatio float64) (*Law, error) {
 // the split into volumetric and distortional energy needs. A stiffness that is isotropic
 // but for the rounding of typed numbers counts as isotropic.
 func (l *Law) IsIsotropic() bool { return l != nil && (l.general == nil || l.general.isotropic) }
+
+// isotropicConstants returns Young's modulus and Poisson's ratio, NaN unless the law is
+// isotropic.
+func (l *Law) isotropicConstants() (youngsModulus, poissonsRatio float64) {
+	switch {
+	case !l.IsIsotropic():
+		return math.NaN(), math.NaN()
+	case l.general == nil:
+		return l.youngsModulus, l.poissonsRatio
+	}
+	compliance := &l.general.strain
+	return 1 / compliance[0][0], -compliance[1][0] / compliance[0][0]
+}
 
 // Strain returns the elastic strain ε = S:σ of a stress.
 func (l *Law) Strain(stress *mesh.SymmetricTensor) mesh.SymmetricTensor {

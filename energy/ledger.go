@@ -142,6 +142,9 @@ type MaterialUsed struct {
 
 	Curve               Text `json:"curve"`
 	ProportionalLimitBy Text `json:"proportional_limit_by"`
+
+	YieldStress       Number `json:"yield_stress"`
+	HardeningExponent Number `json:"hardening_exponent"`
 }
 
 // A Vector is a place or a direction in the model's axes: x, y, z.
@@ -231,6 +234,10 @@ type Hotspot struct {
 	Utilisation      Number  `json:"utilisation"`
 	PastLimit        *bool   `json:"past_limit"` // nil where the region has no limit
 	Singular         Text    `json:"singular"`
+	StressMargin     Number  `json:"stress_margin"`
+	LoadFactor       Number  `json:"load_factor"`
+
+	LocalEstimate *LocalEstimate `json:"local_estimate"`
 }
 
 // PastLimit lists the cells whose utilisation is above 1. Cells, Volume and Energy are

@@ -58,8 +58,7 @@ func (r *region) setLimit(rule *Region, options *Options) error {
 		return studyError("region %q: criterion %q needs a material with youngs_modulus and poissons_ratio; give them, or state another criterion",
 			r.name, r.limit.criterion)
 	}
-	strain := r.law.Strain(&mesh.SymmetricTensor{1})
-	r.limit.poissonsRatio = -strain[1] / strain[0]
+	_, r.limit.poissonsRatio = r.law.isotropicConstants()
 	return nil
 }
 
@@ -77,11 +76,21 @@ func (l *limit) equivalent(stress *mesh.SymmetricTensor) float64 {
 		principal := stress.PrincipalValues()
 		return l.governing(principal[0], principal[2])
 	case TotalEnergy:
-		// 2E w_v = (1-2ν)/3 (tr σ)², 2E w_d = 2(1+ν)/3 σ_vM².
-		trace, vonMises := stress.Trace(), VonMisesStress(stress)
-		return math.Sqrt((float64((1-2*l.poissonsRatio)*trace*trace) + float64(2*(1+l.poissonsRatio)*vonMises*vonMises)) / 3)
+		return totalEnergyStress(stress, l.poissonsRatio)
 	}
 	return VonMisesStress(stress)
+}
+
+// totalEnergyStress returns the stress √(2E w) of a uniaxial state with the same energy
+// density: 2E w = Σ σ_ii² - 2ν Σ σ_ii σ_jj + 2(1+ν) Σ σ_ij².
+//
+// Source: Timoshenko & Goodier, Theory of Elasticity (from memory).
+func totalEnergyStress(stress *mesh.SymmetricTensor, poissonsRatio float64) float64 {
+	normal := float64(stress[0]*stress[0]) + float64(stress[1]*stress[1]) + float64(stress[2]*stress[2])
+	mixed := float64(stress[0]*stress[1]) + float64(stress[1]*stress[2]) + float64(stress[2]*stress[0])
+	shear := float64(stress[3]*stress[3]) + float64(stress[4]*stress[4]) + float64(stress[5]*stress[5])
+	// Below 0 but by rounding under pressure, with ν next to ½.
+	return math.Sqrt(max(0, normal-float64(2*poissonsRatio*mixed)+float64(2*(1+poissonsRatio)*shear)))
 }
 
 // utilisation returns that of an equivalent stress, NaN without a limit.

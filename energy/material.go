@@ -126,7 +126,7 @@ func (m *Material) used() MaterialUsed {
 		Density: Number(m.Density), ThermalExpansion: Number(m.ThermalExpansion),
 		ReferenceTemperature: Number(m.ReferenceTemperature), Source: Text(m.Source),
 		YoungsModuli: m.YoungsModuli, ShearModuli: m.ShearModuli, PoissonsRatios: m.PoissonsRatios,
-		Stiffness: m.Stiffness, Axes: m.Axes,
+		Stiffness: m.Stiffness, Axes: m.Axes, YieldStress: Number(m.YieldStress), HardeningExponent: Number(m.HardeningExponent),
 	}
 	if m.Curve != nil {
 		used.Curve, used.ProportionalLimitBy = Text(m.Curve.Path), Text(m.Curve.Analysis.ProportionalLimit.By)

@@ -94,7 +94,8 @@ var (
 )
 
 // csvHeading returns the columns of a struct: its JSON keys, embedded structs' in their
-// place, a vector's with _x, _y and _z, and none for what is not built yet.
+// place, those of other structs behind their own key, a vector's with _x, _y and _z, and
+// none for what is not built yet.
 func csvHeading(row reflect.Type) []string {
 	var names []string
 	for i := range row.NumField() {
@@ -108,11 +109,26 @@ func csvHeading(row reflect.Type) []string {
 			for _, axis := range axes {
 				names = append(names, key+axis)
 			}
+		case structOf(field.Type) != nil:
+			for _, name := range csvHeading(structOf(field.Type)) {
+				names = append(names, key+"_"+name)
+			}
 		default:
 			names = append(names, key)
 		}
 	}
 	return names
+}
+
+// structOf returns the type of a struct or of what points to one, else nil.
+func structOf(t reflect.Type) reflect.Type {
+	if t.Kind() == reflect.Pointer {
+		t = t.Elem()
+	}
+	if t.Kind() != reflect.Struct {
+		return nil
+	}
+	return t
 }
 
 // csvCells appends the row's cells in the order of csvHeading.
@@ -151,8 +167,13 @@ func csvCells(cells []string, row reflect.Value) ([]string, error) {
 				cells = append(cells, strconv.FormatBool(*value))
 			}
 		default:
+			part := row.Field(i)
+			if part.Kind() == reflect.Pointer && part.IsNil() {
+				cells = append(cells, make([]string, len(csvHeading(part.Type().Elem())))...)
+				continue
+			}
 			var err error
-			if cells, err = csvCells(cells, row.Field(i)); err != nil {
+			if cells, err = csvCells(cells, reflect.Indirect(part)); err != nil {
 				return nil, err
 			}
 		}

@@ -30,31 +30,44 @@ func flatJSON(t *testing.T, row any) (keys, values []string) {
 		}
 		return token
 	}
-	next() // {
-	for decoder.More() {
-		key := next().(string)
-		isVector := key == "at" || strings.HasSuffix(key, "_at")
-		switch value := next().(type) {
-		case json.Delim:
-			for _, axis := range []string{"x", "y", "z"} {
-				keys, values = append(keys, key+"_"+axis), append(values, next().(json.Number).String())
+	var object func(prefix string)
+	object = func(prefix string) {
+		for decoder.More() {
+			key := prefix + next().(string)
+			isVector := key == "at" || strings.HasSuffix(key, "_at")
+			switch value := next().(type) {
+			case json.Delim:
+				if value == '{' {
+					object(key + "_")
+					continue
+				}
+				for _, axis := range []string{"x", "y", "z"} {
+					keys, values = append(keys, key+"_"+axis), append(values, next().(json.Number).String())
+				}
+				next() // ]
+			case nil:
+				switch {
+				case isVector:
+					keys, values = append(keys, key+"_x", key+"_y", key+"_z"), append(values, "", "", "")
+				case key == "local_estimate":
+					for _, part := range strings.Fields("neuber_stress neuber_strain energy_density_stress energy_density_strain refused") {
+						keys, values = append(keys, key+"_"+part), append(values, "")
+					}
+				case key != "concentration":
+					keys, values = append(keys, key), append(values, "")
+				}
+			case bool:
+				keys, values = append(keys, key), append(values, map[bool]string{true: "true", false: "false"}[value])
+			case json.Number:
+				keys, values = append(keys, key), append(values, value.String())
+			case string:
+				keys, values = append(keys, key), append(values, value)
 			}
-			next() // ]
-		case nil:
-			switch {
-			case isVector:
-				keys, values = append(keys, key+"_x", key+"_y", key+"_z"), append(values, "", "", "")
-			case key != "concentration":
-				keys, values = append(keys, key), append(values, "")
-			}
-		case bool:
-			keys, values = append(keys, key), append(values, map[bool]string{true: "true", false: "false"}[value])
-		case json.Number:
-			keys, values = append(keys, key), append(values, value.String())
-		case string:
-			keys, values = append(keys, key), append(values, value)
 		}
+		next() // }
 	}
+	next() // {
+	object("")
 	return keys, values
 }
 
@@ -120,7 +133,7 @@ func TestRegionsEndWithTheTotal(t *testing.T) {
 // Every file has its heading, also without a row.
 func TestCSVHeadingsWithoutRows(t *testing.T) {
 	for _, test := range []struct{ file, want string }{
-		{"hotspots.csv", "rank,region,cell,source,element_id,at_x,at_y,at_z,density,peak_density,energy,energy_share,volume,cells,prominence,equivalent_stress,utilisation,past_limit,singular\n"},
+		{"hotspots.csv", "rank,region,cell,source,element_id,at_x,at_y,at_z,density,peak_density,energy,energy_share,volume,cells,prominence,equivalent_stress,utilisation,past_limit,singular,stress_margin,load_factor,local_estimate_neuber_stress,local_estimate_neuber_strain,local_estimate_energy_density_stress,local_estimate_energy_density_strain,local_estimate_refused\n"},
 		{"past-limit.csv", "cell,source,element_id,region,at_x,at_y,at_z,density,equivalent_stress,utilisation\n"},
 		{"requirements.csv", "name,quantity,region,at_most,at_least,value,met,why\n"},
 	} {
@@ -200,6 +213,9 @@ func TestUnitsOfColumns(t *testing.T) {
 		{"max_density", "mJ/mm^3", "not stated"},
 		{"peak_density", "mJ/mm^3", "not stated"},
 		{"max_equivalent_stress", "MPa", "not stated"},
+		{"local_estimate_neuber_stress", "MPa", "not stated"},
+		{"local_estimate_energy_density_strain", "1", "1"},
+		{"load_factor", "1", "1"},
 		{"value", "that of the quantity", "that of the quantity"},
 	} {
 		kind := quantityOf(test.key).kind

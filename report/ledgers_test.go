@@ -25,6 +25,7 @@ func noMaterial(name string) energy.MaterialUsed {
 	return energy.MaterialUsed{
 		Name: name, Law: "isotropic", YoungsModulus: none, PoissonsRatio: none, ProportionalLimit: none,
 		ProportionalLimitCompression: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
+		YieldStress: none, HardeningExponent: none,
 	}
 }
 
@@ -79,6 +80,13 @@ func bracket() *energy.Ledger {
 		Cell: 118, ElementID: energy.None, Region: "legs", At: at(3.25, 10.125, 47.5),
 		Density: 0.08123456789, EquivalentStress: 104.1912345, Utilisation: 0.69460823,
 	}, is(false)))
+
+	hotspots[0].LocalEstimate = &energy.LocalEstimate{
+		Neuber:        energy.LocalState{Stress: 158.23456789, Strain: 0.0024246},
+		EnergyDensity: energy.LocalState{Stress: 156.12345678, Strain: 0.0023654321},
+	}
+	none := energy.LocalState{Stress: energy.None, Strain: energy.None}
+	hotspots[1].LocalEstimate = &energy.LocalEstimate{Neuber: none, EnergyDensity: none, Refused: "the place is singular: its elastic stress depends on the mesh"}
 
 	return &energy.Ledger{
 		Schema: energy.LedgerSchema,
@@ -136,10 +144,12 @@ func bracket() *energy.Ledger {
 
 func hotspot(rank int, cell energy.RankedCell, isPast *bool) energy.Hotspot {
 	none := energy.None
+	factor := energy.LoadFactor(energy.VonMises, cell.Utilisation)
 	return energy.Hotspot{
 		Rank: rank, Region: cell.Region, Cell: cell.Cell, Source: cell.Source, ElementID: cell.ElementID, At: cell.At,
 		Density: cell.Density, PeakDensity: cell.Density, Energy: none, EnergyShare: none, Volume: none, Cells: none,
 		Prominence: none, EquivalentStress: cell.EquivalentStress, Utilisation: cell.Utilisation, PastLimit: isPast,
+		StressMargin: factor - 1, LoadFactor: factor,
 	}
 }
 

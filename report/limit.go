@@ -39,6 +39,9 @@ func pastLimitSection(ledger *energy.Ledger) section {
 			s.say(unjudgedWords(ledger, unjudged), plainTone)
 		}
 	}
+	if margin := marginWords(ledger); margin != "" {
+		s.say(margin, plainTone)
+	}
 	if others := otherCriteria(ledger); others != "" {
 		s.say("Judged by another criterion: "+others+".", plainTone)
 	}
@@ -49,6 +52,30 @@ func pastLimitSection(ledger *energy.Ledger) section {
 		s.table = t
 	}
 	return s
+}
+
+// marginWords says by how much the load of a linear run may grow, or has to shrink, until
+// the first region that has a limit is at it; "" where the run was not linear.
+func marginWords(ledger *energy.Ledger) string {
+	if ledger.Total.CellsYielded > 0 {
+		return ""
+	}
+	least, first := energy.None, ""
+	for i := range ledger.Regions {
+		region := &ledger.Regions[i]
+		factor := energy.LoadFactor(energy.Criterion(region.Criterion), region.MaxUtilisation)
+		if factor.Exists() && !(factor >= least) {
+			least, first = factor, region.Name
+		}
+	}
+	if !least.Exists() {
+		return ""
+	}
+	words := "In a linear run the first limit is reached at the load times " + inRatios.text(least) + ", a stress margin of " + inRatios.text(least-1)
+	if len(ledger.Regions) > 1 {
+		words += ", in " + first
+	}
+	return words + "."
 }
 
 // otherCriteria names the regions whose criterion is not the study's.
