@@ -15,7 +15,7 @@ const (
 // check compares what has been settled with the numbers, and reports what does not
 // agree: the study's own statements, the material's law, the units.
 func (a *audit) check(chosen *measured) {
-	if !(chosen.size > 0) {
+	if !chosen.isLoaded {
 		return // nothing but zeros
 	}
 	isContradicted := a.checkStudy(chosen)

@@ -663,7 +663,7 @@ func (f *fieldFinder) findOthers(source EnergySource, on mesh.Location) error {
 	}
 	// An array of thermal strain wins over temperature with expansion.
 	if (in.strain.exists() && !in.strainIsElastic || source == FromDisplacement) && !in.thermalStrain.exists() {
-		if err := f.findTemperature(); err != nil {
+		if err := f.findTemperature(source); err != nil {
 			return err
 		}
 	}
@@ -705,8 +705,16 @@ func (f *fieldFinder) findDisplacement(source EnergySource) error {
 	return nil
 }
 
-// findTemperature resolves the temperature, on cells or on points.
-func (f *fieldFinder) findTemperature() error {
+// findTemperature resolves the temperature. One that the study does not name, and that
+// some material has no reference for, is left alone beside a stress: the numbers then
+// tell whether the strain carries a thermal part.
+func (f *fieldFinder) findTemperature(source EnergySource) error {
+	if !f.options.Fields.Temperature.IsStated() && source == FromStressStrain &&
+		slices.ContainsFunc(f.options.Materials, func(m Material) bool {
+			return Number(m.ThermalExpansion).Exists() && !Number(m.ReferenceTemperature).Exists()
+		}) {
+		return nil
+	}
 	if !slices.ContainsFunc(f.options.Materials, func(m Material) bool { return Number(m.ThermalExpansion).Exists() }) {
 		if f.options.Fields.Temperature.IsStated() {
 			return studyError("[fields] temperature is stated, but no material has a thermal_expansion")

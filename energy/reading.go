@@ -128,7 +128,8 @@ type misfit struct {
 	byFit        float64 // ε - (a σ + b tr σ I) with the best a and b in each region
 	byFitShape   float64 // the same without mean normal parts
 	energy       float64 // Σ ½ σ:ε
-	size         float64 // Σ |½ σ:ε|
+	size         float64 // Σ ½ |σ| |ε|
+	isLoaded     bool    // some stress or strain is not zero
 	shearContent float64 // of the strain: shear against all
 }
 
@@ -170,7 +171,9 @@ func (a *audit) misfitOf(r *reading, sample []samplePlace) misfit {
 		a.completePair(region, &p)
 		w := 0.5 * mesh.Product(&p.stress, &p.strain)
 		result.energy += w
-		result.size += math.Abs(w)
+		norms := math.Sqrt(mesh.Product(&p.stress, &p.stress)) * math.Sqrt(mesh.Product(&p.strain, &p.strain))
+		result.size += 0.5 * norms
+		result.isLoaded = result.isLoaded || p.stress != mesh.SymmetricTensor{} || p.strain != mesh.SymmetricTensor{}
 		sums[place.region].add(&p, components, normals)
 		square, deviator, shearSquare := squares(&p.strain, components, normals)
 		size += square

@@ -2,6 +2,7 @@ package energy
 
 import (
 	"context"
+	"math"
 	"slices"
 	"sync"
 
@@ -73,7 +74,18 @@ func (p *plan) takeSample(ctx context.Context, walk *mesh.Walk, gradients *vecto
 		}
 	})
 	slices.SortFunc(sample, func(a, b samplePlace) int { return a.position.compare(b.position) })
-	return sample, err
+	return slices.DeleteFunc(sample, func(place samplePlace) bool { return !place.isUsable() }), err
+}
+
+// isUsable reports whether the numbers of a place are finite and their squares, too.
+func (s *samplePlace) isUsable() bool {
+	const largest = 1e100
+	isUsable := math.Abs(s.expansion) < largest
+	for c := range s.stress {
+		isUsable = isUsable && math.Abs(s.stress[c]) < largest && math.Abs(s.strain[c]) < largest &&
+			math.Abs(s.thermal[c]) < largest && math.Abs(s.plastic[c]) < largest
+	}
+	return isUsable && s.gradient.IsFinite()
 }
 
 // sampleWant is what the sample reads: the tally's arrays, without nodes where they

@@ -455,8 +455,18 @@ func TestElasticStrain(t *testing.T) {
 	m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: []memoryCell{cell}, arrays: []memoryArray{
 		cellArray("stress", make([]float64, 6)), cellArray("strain", make([]float64, 6)), cellArray("temperature", []float64{120})}}}}
 	var study *StudyError
-	if err := tallyError(t, m, solidOptions(mesh.OnCell, heated)); !errors.As(err, &study) || !strings.Contains(err.Error(), "reference_temperature") {
+	stated := solidOptions(mesh.OnCell, heated)
+	stated.Fields.Temperature.Arrays = []string{"temperature"}
+	if err := tallyError(t, m, stated); !errors.As(err, &study) || !strings.Contains(err.Error(), "reference_temperature") {
 		t.Errorf("without a reference temperature: %v", err)
+	}
+	// Not named, the temperature is left alone, and the offset that it would explain is
+	// found from the numbers: T-10b plate.
+	m.pieces[0].arrays[0] = cellArray("stress", []float64{-360, -360, 0, 0, 0, 0})
+	m.pieces[0].arrays[1] = cellArray("strain", []float64{0, 0, rise + 0.6*360/210000, 0, 0, 0})
+	ledger := tally(t, m, solidOptions(mesh.OnCell, heated))
+	if !hasFinding(ledger, "total-strain-used") || !within(float64(ledger.Total.Energy), 0.432, 1e-12) {
+		t.Errorf("energy %.12g, want 0.432; %+v", ledger.Total.Energy, ledger.Findings)
 	}
 }
 
