@@ -92,7 +92,7 @@ func (a *audit) isUnloaded(r *reading) bool {
 	}
 	var elastic, stored float64
 	for i := range a.sample {
-		law := a.regions.regions[a.sample[i].region].law
+		law := a.sample[i].law
 		if law == nil {
 			return false
 		}

@@ -618,3 +618,43 @@ func TestSampleSpans(t *testing.T) {
 		walk.Close()
 	}
 }
+
+// Material axes by cell: the law turns with them, in the audit and in the account.
+func TestMaterialAxesByCell(t *testing.T) {
+	material := NewMaterial("lamina")
+	material.YoungsModuli, material.ShearModuli, material.PoissonsRatios = &[3]float64{181000, 10300, 10300}, &[3]float64{7170, 3900, 7170}, &[3]float64{0.28, 0.3, 0.28}
+	law, err := material.Law()
+	if err != nil {
+		t.Fatal(err)
+	}
+	material.AxesArray = "axes"
+	stress, strain := randomStates(law, 30, 14)
+	want := energyOf(stress, strain)
+	axesOf := cellArray("axes", uniform(30, make([]float64, 9)...)...)
+	for i := range stress {
+		c, s := math.Cos(float64(i)), math.Sin(float64(i))
+		rows := [3]Vector{{c, s, 0}, {-s * 0.8, c * 0.8, 0.6}, {s * 0.6, -c * 0.6, 0.8}}
+		axes, err := NewAxes(rows)
+		if err != nil {
+			t.Fatal(err)
+		}
+		stress[i], strain[i] = axes.ToModel(&stress[i]), axes.ToModel(&strain[i])
+		axesOf.values = append(axesOf.values[:9*i], slices.Concat(rows[0][:], rows[1][:], rows[2][:], axesOf.values[9*i+9:])...)
+	}
+	m := rowMesh(30, cellArray("stress", storedAs(stress, mesh.OrderOf6, mesh.TensorShear)...), cellArray("strain", storedAs(strain, mesh.OrderOf6, mesh.EngineeringShear)...), axesOf)
+	for _, from := range []EnergySource{"", FromStress} {
+		ledger := tally(t, m, Options{From: from, Materials: []Material{material}})
+		if !within(float64(ledger.Total.Energy), want, 1e-9) || hasFinding(ledger, "hooke-mismatch") || ledger.Materials[0].Axes != "axes" {
+			t.Errorf("from %q: energy %g, want %g; %+v", from, ledger.Total.Energy, want, ledger.Findings)
+		}
+	}
+	m.pieces[0].arrays[2].values[9*7+4] = 3
+	var input *InputError
+	if err := tallyError(t, m, Options{Materials: []Material{material}}); !errors.As(err, &input) || !strings.Contains(err.Error(), `array "axes", cell 7`) {
+		t.Errorf("axes that are none: %v", err)
+	}
+	material.AxesArray = "nothing"
+	if err := tallyError(t, m, Options{Materials: []Material{material}}); !errors.As(err, &input) || !strings.Contains(err.Error(), `"nothing"`) {
+		t.Errorf("an array that is not there: %v", err)
+	}
+}

@@ -94,7 +94,7 @@ func (a *audit) isOtherPlane(chosen *measured) bool {
 	for i := range a.sample {
 		place := &a.sample[i]
 		p := a.pairAt(&chosen.reading, place)
-		law := a.regions.regions[place.region].law
+		law := place.law
 		if other == PlaneStrain {
 			law.CompletePlaneStrain(&p.stress, p.strain[2])
 		} else {
@@ -122,7 +122,7 @@ func (a *audit) isInelastic(chosen *measured) bool {
 	for i := range a.sample {
 		place := &a.sample[i]
 		p := a.pairAt(&chosen.reading, place)
-		rest := a.rest(&a.regions.regions[place.region], &p)
+		rest := a.rest(place.law, &p)
 		square, shape, _ := squares(&rest, components, normals)
 		all += square
 		deviator += shape
@@ -171,7 +171,7 @@ func (a *audit) checkUnits(chosen *measured) bool {
 	for i := range a.sample {
 		place := &a.sample[i]
 		p := a.pairAt(&chosen.reading, place)
-		rest := a.rest(&a.regions.regions[place.region], &p)
+		rest := a.rest(place.law, &p)
 		for _, c := range components {
 			predicted := p.strain[c] - rest[c]
 			cross += predicted * p.strain[c]

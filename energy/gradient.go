@@ -49,7 +49,7 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 	for q, element := range elements {
 		values := w.cell.Values(rule, q, w.rational)
 		strain := w.strainAt(rule, q, values)
-		stress := w.stressOf(r, &strain)
+		stress := w.stressOf(&strain)
 		energy += float64(Density(&stress, &strain) * element)
 		volumetric += float64(VolumetricDensity(&stress, &strain) * element)
 		measure += element
@@ -66,7 +66,7 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 	}
 	w.noteNonZero(&mean, &mean)
 	w.energy[i], w.volumetric[i], w.curve[i] = energy*factor, 0, curve*factor
-	if r.law.IsIsotropic() {
+	if w.law.IsIsotropic() {
 		w.volumetric[i] = volumetric * factor
 	}
 	w.density[i] = w.energy[i] / w.measure[i]
@@ -122,12 +122,12 @@ func symmetricGradient(displacement []Vector, gradients [][3]float64) (strain me
 
 // stressOf returns the stress of an elastic strain by the law, and completes the
 // strain out of the plane in plane stress.
-func (w *worker) stressOf(r *region, strain *mesh.SymmetricTensor) mesh.SymmetricTensor {
+func (w *worker) stressOf(strain *mesh.SymmetricTensor) mesh.SymmetricTensor {
 	if w.options.Idealisation != PlaneStress {
-		return r.law.Stress(strain)
+		return w.law.Stress(strain)
 	}
-	r.law.CompletePlaneStress(strain)
-	stress := r.law.Stress(strain)
+	w.law.CompletePlaneStress(strain)
+	stress := w.law.Stress(strain)
 	stress[2], stress[4], stress[5] = 0, 0, 0 // but for rounding
 	return stress
 }

@@ -192,7 +192,7 @@ func (w *worker) evaluatePoints(chunk *mesh.Chunk, i int, r *region, orientation
 	w.equivalent[i] = r.limit.governing(largest, least)
 	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	w.energy[i], w.volumetric[i], w.curve[i] = energy*factor, 0, curve*factor
-	if r.law.IsIsotropic() {
+	if w.law.IsIsotropic() {
 		w.volumetric[i] = volumetric * factor
 	}
 	w.density[i] = w.energy[i] / w.measure[i]

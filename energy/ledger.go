@@ -138,7 +138,7 @@ type MaterialUsed struct {
 	PoissonsRatios *[3]float64    `json:"poissons_ratios"`
 	Stiffness      *[6][6]float64 `json:"stiffness"`
 	StiffnessOrder Text           `json:"stiffness_order"`
-	Axes           *[3]Vector     `json:"axes"`
+	Axes           any            `json:"axes"` // rows, the name of a cell array, or null
 
 	Curve               Text `json:"curve"`
 	ProportionalLimitBy Text `json:"proportional_limit_by"`

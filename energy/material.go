@@ -26,7 +26,8 @@ type Material struct {
 	PoissonsRatios *[3]float64    // and ν_xy ν_yz ν_xz
 	Stiffness      *[6][6]float64 // or any stiffness, engineering shear, in
 	StiffnessOrder mesh.Order     // this order; nil: xx yy zz xy yz xz
-	Axes           *[3]Vector     // rows: directions of the material axes; nil: the model's
+	Axes           *[3]Vector     // rows: directions of the material axes; nil: the model's,
+	AxesArray      string         // or a cell array of nine components that holds such rows
 
 	Curve *MaterialCurve // nil: none
 }
@@ -126,7 +127,13 @@ func (m *Material) used() MaterialUsed {
 		Density: Number(m.Density), ThermalExpansion: Number(m.ThermalExpansion),
 		ReferenceTemperature: Number(m.ReferenceTemperature), Source: Text(m.Source),
 		YoungsModuli: m.YoungsModuli, ShearModuli: m.ShearModuli, PoissonsRatios: m.PoissonsRatios,
-		Stiffness: m.Stiffness, Axes: m.Axes, YieldStress: Number(m.YieldStress), HardeningExponent: Number(m.HardeningExponent),
+		Stiffness: m.Stiffness, YieldStress: Number(m.YieldStress), HardeningExponent: Number(m.HardeningExponent),
+	}
+	switch {
+	case m.AxesArray != "":
+		used.Axes = m.AxesArray
+	case m.Axes != nil:
+		used.Axes = *m.Axes
 	}
 	if m.Curve != nil {
 		used.Curve, used.ProportionalLimitBy = Text(m.Curve.Path), Text(m.Curve.Analysis.ProportionalLimit.By)

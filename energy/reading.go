@@ -69,18 +69,18 @@ func (a *audit) pairAt(r *reading, place *samplePlace) pair {
 }
 
 // completePair computes by the law what the file has no array of.
-func (a *audit) completePair(region *region, p *pair) {
+func (a *audit) completePair(law *Law, p *pair) {
 	switch a.from {
 	case FromStress:
 		if a.options.Idealisation == PlaneStrain && !a.inputs.stress.layout.Has(2) {
-			region.law.CompletePlaneStrain(&p.stress, 0)
+			law.CompletePlaneStrain(&p.stress, 0)
 		}
-		p.strain = region.law.Strain(&p.stress)
+		p.strain = law.Strain(&p.stress)
 	case FromStrain:
 		if a.options.Idealisation == PlaneStress {
-			region.law.CompletePlaneStress(&p.strain)
+			law.CompletePlaneStress(&p.strain)
 		}
-		p.stress = region.law.Stress(&p.strain)
+		p.stress = law.Stress(&p.strain)
 	}
 }
 
@@ -167,8 +167,7 @@ func (a *audit) misfitOf(r *reading, sample []samplePlace) misfit {
 	for i := range sample {
 		place := &sample[i]
 		p := a.pairAt(r, place)
-		region := &a.regions.regions[place.region]
-		a.completePair(region, &p)
+		a.completePair(place.law, &p)
 		w := 0.5 * mesh.Product(&p.stress, &p.strain)
 		result.energy += w
 		norms := math.Sqrt(mesh.Product(&p.stress, &p.stress)) * math.Sqrt(mesh.Product(&p.strain, &p.strain))
@@ -179,11 +178,11 @@ func (a *audit) misfitOf(r *reading, sample []samplePlace) misfit {
 		size += square
 		shape += deviator
 		shear += shearSquare
-		if region.law == nil {
+		if place.law == nil {
 			hasLaw = false
 			continue
 		}
-		rest := a.rest(region, &p)
+		rest := a.rest(place.law, &p)
 		square, deviator, _ = squares(&rest, components, normals)
 		law += square
 		lawShape += deviator
@@ -206,12 +205,12 @@ func share(part, whole float64) float64 {
 }
 
 // rest returns ε - S:σ at one place.
-func (a *audit) rest(region *region, p *pair) mesh.SymmetricTensor {
+func (a *audit) rest(law *Law, p *pair) mesh.SymmetricTensor {
 	stress := p.stress
 	if a.options.Idealisation == PlaneStrain && !a.inputs.stress.layout.Has(2) {
-		region.law.CompletePlaneStrain(&stress, p.strain[2])
+		law.CompletePlaneStrain(&stress, p.strain[2])
 	}
-	rest := region.law.Strain(&stress)
+	rest := law.Strain(&stress)
 	for c := range rest {
 		rest[c] = p.strain[c] - rest[c]
 	}

@@ -16,7 +16,8 @@ import (
 type region struct {
 	name      string
 	material  *Material  // nil: none
-	law       *Law       // nil: none
+	law       *Law       // nil: none; in material axes where axes are by cell
+	axes      int        // column of Chunk.Values with the material axes, or -1
 	hencky    *HenckyLaw // nil: no curve
 	limit     limit
 	thickness float64
@@ -73,6 +74,9 @@ func (m *regionMap) add(rule *Region, model *mesh.Model, options *Options, in *i
 	if err := r.setMaterial(rule, options); err != nil {
 		return err
 	}
+	if err := r.setAxes(model, in); err != nil {
+		return err
+	}
 	if err := r.setLimit(rule, options); err != nil {
 		return err
 	}
@@ -123,6 +127,37 @@ func (r *region) setMaterial(rule *Region, options *Options) error {
 		return studyError("material %q: %w", name, err)
 	}
 	return nil
+}
+
+// setAxes finds the cell array of the material's axes, where it has one.
+func (r *region) setAxes(model *mesh.Model, in *inputs) error {
+	r.axes = -1
+	if r.material == nil || r.material.AxesArray == "" {
+		return nil
+	}
+	name := r.material.AxesArray
+	for i := range model.Pieces {
+		piece := &model.Pieces[i]
+		if array := piece.Find(mesh.OnCell, name); piece.CellCount > 0 && (array == nil || array.Components != 9) {
+			return inputError("material %q: %s has no cell array %q with nine components, the rows of the material axes", r.material.Name, model.Sources[piece.Source].Path, name)
+		}
+	}
+	r.axes = wantColumn(&in.want.CellValues, name)
+	return nil
+}
+
+// lawAt returns the law of a cell in model axes. Errors: axes that are no unit vectors
+// at right angles.
+func (r *region) lawAt(chunk *mesh.Chunk, i int) (*Law, error) {
+	if r.axes < 0 || r.law == nil {
+		return r.law, nil
+	}
+	v := chunk.Values[r.axes][9*i : 9*i+9]
+	axes, err := NewAxes([3]Vector{Vector(v[0:3]), Vector(v[3:6]), Vector(v[6:9])})
+	if err != nil {
+		return nil, fmt.Errorf("array %q, cell %d: %w", r.material.AxesArray, chunk.First+int64(i), err)
+	}
+	return r.law.InModelAxes(&axes), nil
 }
 
 // byLabel selects by the values of a cell array.

@@ -25,6 +25,7 @@ const (
 type samplePlace struct {
 	position sampleKey
 	region   int32
+	law      *Law // in model axes; nil: none
 
 	stress, strain, thermal, plastic [9]float64 // as stored
 	expansion                        float64    // thermal strain from temperature
@@ -67,6 +68,9 @@ func (p *plan) takeSample(ctx context.Context, walk *mesh.Walk, gradients *vecto
 		s := &sampler{plan: p, displacement: gradients}
 		return func(chunk *mesh.Chunk) error {
 			places := s.read(chunk)
+			if s.fault != nil {
+				return inputError("%s: %w", p.model.Sources[chunk.Source].Path, s.fault)
+			}
 			lock.Lock()
 			defer lock.Unlock()
 			sample = append(sample, places...)
@@ -208,6 +212,7 @@ type sampler struct {
 	cell         mesh.Cell
 	moves        []Vector
 	slopes       [][3]float64
+	fault        error // the first material axes that are none
 }
 
 // read returns the places of the chunk's cells that will be in an account.
@@ -252,6 +257,10 @@ func (s *sampler) place(chunk *mesh.Chunk, i, k int, node int32) samplePlace {
 	in := s.inputs
 	region := &s.plan.regions.regions[s.regions[i]]
 	place := samplePlace{position: sampleKey{chunk.Piece, chunk.First + int64(i), k}, region: s.regions[i]}
+	var err error
+	if place.law, err = region.lawAt(chunk, i); err != nil && s.fault == nil {
+		s.fault = err
+	}
 	for _, field := range []struct {
 		input *tensorInput
 		to    *[9]float64

@@ -13,6 +13,7 @@ type worker struct {
 	part *part
 	cell mesh.Cell
 
+	law       *Law    // of the current cell, in model axes; nil: none
 	isPerCell bool    // everything that the density needs is cell data
 	smallest  float64 // measure up to which a cell is degenerate
 
@@ -91,6 +92,11 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 	}
 	r := &w.regions.regions[w.region[i]]
 	orientation, reason, err := w.measureCell(chunk, i, r)
+	if reason == notExcluded && err == nil {
+		if w.law, err = r.lawAt(chunk, i); err != nil {
+			err = inputError("%s: %w", w.model.Sources[chunk.Source].Path, err)
+		}
+	}
 	if err != nil || reason != notExcluded {
 		return reason, err
 	}
@@ -171,7 +177,7 @@ func (w *worker) evaluateCell(chunk *mesh.Chunk, i int, r *region) exclusionReas
 	density := Density(&stress, &strain)
 	w.energy[i] = density * w.measure[i]
 	w.volumetric[i] = 0
-	if r.law.IsIsotropic() {
+	if w.law.IsIsotropic() {
 		w.volumetric[i] = VolumetricDensity(&stress, &strain) * w.measure[i]
 	}
 	w.density[i], w.peak[i], w.peakNode[i] = density, density, 0
@@ -291,7 +297,7 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 	w.curve[i] = curve * factor
 	w.energy[i] = energy * factor
 	w.volumetric[i] = 0
-	if r.law.IsIsotropic() {
+	if w.law.IsIsotropic() {
 		w.volumetric[i] = volumetric * factor
 	}
 }
@@ -316,7 +322,7 @@ func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, 
 	if in.stress.exists() {
 		*stress = in.stress.at(chunk, cell, node)
 	}
-	w.complete(r, stress, strain)
+	w.complete(stress, strain)
 	w.noteNonZero(stress, strain)
 	return isYielded
 }
@@ -403,23 +409,23 @@ func (w *worker) temperatureAt(chunk *mesh.Chunk, cell int, node int32) float64 
 
 // complete fills in what the file lacks, by the law: the other tensor where there is
 // only one, and the components out of the plane.
-func (w *worker) complete(r *region, stress, strain *mesh.SymmetricTensor) {
+func (w *worker) complete(stress, strain *mesh.SymmetricTensor) {
 	in := w.inputs
 	switch w.from {
 	case FromStressStrain:
 		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
-			r.law.CompletePlaneStrain(stress, strain[2])
+			w.law.CompletePlaneStrain(stress, strain[2])
 		}
-		if w.options.Idealisation == PlaneStress && !in.strain.layout.Has(2) && r.law != nil {
-			strain[2] = r.law.Strain(stress)[2]
+		if w.options.Idealisation == PlaneStress && !in.strain.layout.Has(2) && w.law != nil {
+			strain[2] = w.law.Strain(stress)[2]
 		}
 	case FromStress:
 		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
-			r.law.CompletePlaneStrain(stress, 0)
+			w.law.CompletePlaneStrain(stress, 0)
 		}
-		*strain = r.law.Strain(stress)
+		*strain = w.law.Strain(stress)
 	case FromStrain:
-		*stress = w.stressOf(r, strain)
+		*stress = w.stressOf(strain)
 	}
 }
 

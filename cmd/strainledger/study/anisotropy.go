@@ -26,7 +26,9 @@ func (r *reading) anisotropy(stated *node, to *energy.Material) {
 		}
 		return
 	}
-	if rows := r.rows(stated, "axes", 3); rows != nil {
+	if axes := stated.get("axes"); axes != nil && axes.shape == isText {
+		to.AxesArray = axes.text
+	} else if rows := r.rows(stated, "axes", 3); rows != nil {
 		to.Axes = &[3]energy.Vector{energy.Vector(rows[0]), energy.Vector(rows[1]), energy.Vector(rows[2])}
 	}
 	if rows := r.rows(stated, "stiffness", 6); rows != nil {

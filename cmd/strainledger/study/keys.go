@@ -131,7 +131,7 @@ var keys = slices.Concat([]key{
 		{path: "material.youngs_moduli", form: numbers, bound: positive},
 		{path: "material.shear_moduli", form: numbers, bound: positive},
 		{path: "material.poissons_ratios", form: numbers},
-		{path: "material.axes", form: matrix},
+		{path: "material.axes", form: matrix | aName},
 		{path: "material.stiffness", form: matrix},
 		{path: "material.stiffness_order", form: aName},
 		{path: "material.curve", form: aName},
