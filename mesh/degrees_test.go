@@ -179,6 +179,23 @@ func TestUnsupportedShapes(t *testing.T) {
 	}
 }
 
+// VTK's numbers without nodes in files, by dimension.
+func TestDimensionsOfCellTypes(t *testing.T) {
+	for dimension, numbers := range map[int][]CellType{
+		-1: {17, 20, 38, 40, 43, 50, 57, 59, 82, 255},
+		0:  {0, 1, 2},
+		1:  {3, 4, 21, 35, 51, 60, 68, 75},
+		2:  {5, 6, 7, 8, 9, 22, 23, 28, 30, 34, 36, 52, 53, 54, 61, 62, 63, 69, 70, 76, 77},
+		3:  {10, 11, 12, 13, 14, 15, 16, 24, 25, 26, 27, 29, 31, 32, 33, 37, 41, 42, 55, 56, 64, 65, 66, 67, 71, 72, 73, 74, 78, 79, 80, 81},
+	} {
+		for _, number := range numbers {
+			if got := number.Dimension(); got != dimension {
+				t.Errorf("type %d has dimension %d, want %d", number, got, dimension)
+			}
+		}
+	}
+}
+
 func TestCellTypeNames(t *testing.T) {
 	if got := Hexahedron.String(); got != "hexahedron" {
 		t.Errorf("type 12 is called %q", got)

@@ -170,6 +170,11 @@ func TestClosedFormsAreTheIntegrals(t *testing.T) {
 		seen := [3]int{}
 		for range 300 {
 			c := shaken(t, s, random, 0.5)
+			if random.IntN(2) == 0 { // mirrored
+				for i := range c.Nodes {
+					c.Points[3*i+1] *= -1
+				}
+			}
 			want, orientation := c.integratedDeterminant(), c.tabulatedOrientation()
 			var got float64
 			var found Orientation
@@ -186,7 +191,7 @@ func TestClosedFormsAreTheIntegrals(t *testing.T) {
 			}
 			seen[found]++
 		}
-		if seen[Regular] == 0 || seen[Tangled] == 0 && s.NodeCount > s.Dimension+1 {
+		if seen[Regular] == 0 || seen[Mirrored] == 0 && s.row.unit != &wedge || seen[Tangled] == 0 && s.NodeCount > s.Dimension+1 {
 			t.Errorf("%s: of the random cells %v are regular, mirrored, tangled", label(s), seen)
 		}
 	}
@@ -374,7 +379,7 @@ func TestCentroids(t *testing.T) {
 		if math.Sqrt(dot(got, got)) > 1e-13 {
 			t.Errorf("%s: centroid is off by %v", label(s), got)
 		}
-		if s.Dimension != 3 {
+		if s.Dimension != 3 || s.NodeCount > 64 {
 			continue
 		}
 		c = shaken(t, s, random, 0.05)
@@ -507,6 +512,7 @@ func TestAreasInSpace(t *testing.T) {
 		isFlat bool
 	}{
 		{"flat", [][3]float64{{0, 0, 0}, {3, 0, 4}, {3, 2, 4}, {0, 1, 0}}, true},
+		{"flat and small", [][3]float64{{0, 0, 0}, {3e-5, 0, 4e-5}, {3e-5, 2e-5, 4e-5}, {0, 1e-5, 0}}, true},
 		{"flat with a corner on an edge", [][3]float64{{0, 0, 0}, {3, 0, 4}, {6, 0, 8}, {0, 1, 0}}, true},
 		{"dart", [][3]float64{{0, 0, 0}, {3, 0, 4}, {0.3, 0.2, 0.4}, {0, 1, 0}}, false},
 		{"bow tie", [][3]float64{{0, 0, 0}, {3, 0, 4}, {0, 1, 0}, {3, 2, 4}}, false},

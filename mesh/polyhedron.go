@@ -43,6 +43,10 @@ type faceEdge struct {
 	backward  bool // as the face lists it
 }
 
+func (e faceEdge) isSame(other faceEdge) bool {
+	return e.low == other.low && e.high == other.high
+}
+
 // findFaces sets the list to the cell's faces. It reports whether the list is complete.
 func (c *Cell) findFaces() bool {
 	f := &c.faces
@@ -111,14 +115,12 @@ func (f *faceList) turnAlike() (paired, orientable bool) {
 	slices.SortFunc(f.edges, func(a, b faceEdge) int {
 		return cmp.Or(cmp.Compare(a.low, b.low), cmp.Compare(a.high, b.high), cmp.Compare(a.face, b.face))
 	})
-	if len(f.edges)%2 == 1 {
-		return false, true
-	}
 	trees := len(f.start)
-	for i := 0; i < len(f.edges); i += 2 {
+	// Edges that do not pair off make closed ways, so that there is never one alone at
+	// the end of the list.
+	for i := 0; i+1 < len(f.edges); i += 2 {
 		a, b := f.edges[i], f.edges[i+1]
-		third := i+2 < len(f.edges) && f.edges[i+2].low == a.low && f.edges[i+2].high == a.high
-		if a.low != b.low || a.high != b.high || third {
+		if !a.isSame(b) || i+2 < len(f.edges) && a.isSame(f.edges[i+2]) {
 			return false, true
 		}
 		rootA, turnedA := f.root(a.face)

@@ -23,6 +23,23 @@ func polyhedronOf(points [][3]float64, faces [][]int32) *Cell {
 	return c
 }
 
+// shuffledPoints returns the points in another order, and the faces with their numbers.
+func shuffledPoints(points [][3]float64, faces [][]int32, random *rand.Rand) (moved [][3]float64, renamed [][]int32) {
+	moved = make([][3]float64, len(points))
+	order := random.Perm(len(points))
+	for i, to := range order {
+		moved[to] = points[i]
+	}
+	for _, face := range faces {
+		var other []int32
+		for _, node := range face {
+			other = append(other, int32(order[node]))
+		}
+		renamed = append(renamed, other)
+	}
+	return moved, renamed
+}
+
 // shuffled returns the faces in another order, each begun elsewhere and half of them
 // backwards.
 func shuffled(faces [][]int32, random *rand.Rand) (other [][]int32) {
@@ -100,8 +117,9 @@ func TestPolyhedra(t *testing.T) {
 		{"hanging nodes", hanging, hangingFaces, 1, [3]float64{0.5, 0.5, 0.5}},
 		{"folded face", cubePoints, append([][]int32{{0, 0, 1, 1}}, cubeFaces...), 1, [3]float64{0.5, 0.5, 0.5}},
 	} {
-		for range 10 {
-			c := polyhedronOf(test.points, shuffled(test.faces, random))
+		for range 50 {
+			points, faces := shuffledPoints(test.points, shuffled(test.faces, random), random)
+			c := polyhedronOf(points, faces)
 			volume, orientation := c.Volume()
 			if !near(volume, test.volume, 1e-14) || orientation != Regular || c.Measure() != volume {
 				t.Errorf("%s: volume %.17g (orientation %d), want %g", test.name, volume, orientation, test.volume)
