@@ -1,6 +1,7 @@
 package energy
 
 import (
+	"cmp"
 	"math"
 	"slices"
 
@@ -21,6 +22,9 @@ func (p *plan) close(total *part) (*Ledger, error) {
 	p.fillAccounts(ledger, total)
 	p.fillLists(ledger, total)
 	p.findInResult(ledger, total)
+	if p.isUnknown {
+		ledger.withoutEnergy()
+	}
 	ledger.Findings = p.findings.sorted(p.options.Acceptances)
 	ledger.Requirements = judge(ledger, p.options.Requirements)
 	return ledger, nil
@@ -90,12 +94,7 @@ func (p *plan) summary() ModelSummary {
 }
 
 // criterion returns the criterion of the study.
-func (p *plan) criterion() Criterion {
-	if p.options.Limit.Criterion == "" {
-		return VonMises
-	}
-	return p.options.Limit.Criterion
-}
+func (p *plan) criterion() Criterion { return cmp.Or(p.options.Limit.Criterion, VonMises) }
 
 // sources lists the files of the model.
 func (p *plan) sources() []SourceFile {
@@ -111,25 +110,10 @@ func (p *plan) materials() []MaterialUsed {
 	list := []MaterialUsed{}
 	for i := range p.options.Materials {
 		m := &p.options.Materials[i]
-		law := "none"
-		isUsed := false
-		for j := range p.regions.regions {
-			if r := &p.regions.regions[j]; r.material == m {
-				isUsed = true
-				if r.law != nil {
-					law = "isotropic"
-				}
-			}
+		isUsed := slices.ContainsFunc(p.regions.regions, func(r region) bool { return r.material == m })
+		if isUsed {
+			list = append(list, m.used())
 		}
-		if !isUsed {
-			continue
-		}
-		list = append(list, MaterialUsed{
-			Name: m.Name, Law: law, YoungsModulus: Number(m.YoungsModulus), PoissonsRatio: Number(m.PoissonsRatio),
-			ProportionalLimit: Number(m.ProportionalLimit), ProportionalLimitCompression: Number(m.ProportionalLimitCompression),
-			Density: Number(m.Density), ThermalExpansion: Number(m.ThermalExpansion),
-			ReferenceTemperature: Number(m.ReferenceTemperature), Source: Text(m.Source),
-		})
 	}
 	return list
 }
@@ -156,17 +140,22 @@ func excluded(total *part) []Exclusion {
 // fillAccounts lays out the accounts of the regions and of the whole.
 func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 	whole := wholeAccount(total)
-	hasLaws, hasDensities := true, true
+	hasLaws, hasDensities, hasCurves := true, true, true
 	ledger.Regions = make([]RegionAccount, len(p.regions.regions))
 	var mass Sum
 	for i := range p.regions.regions {
 		r := &p.regions.regions[i]
-		account := p.layOut(&total.accounts[i], r.law != nil, !math.IsNaN(r.limit))
+		account := p.layOut(&total.accounts[i], r.law.IsIsotropic(), r.limit.exists())
 		account.VolumeWithoutLimit = 0
-		if math.IsNaN(r.limit) {
+		if !r.limit.exists() {
 			account.VolumeWithoutLimit = account.Volume
 		}
-		entry := RegionAccount{Name: r.name, Criterion: string(p.criterion()), Account: account}
+		if account.Cells > 0 {
+			account.MaxEquivalentStress = Number(r.limit.governing(total.accounts[i].maxEquivalent, total.accounts[i].minEquivalent))
+		}
+		account.CurveEnergy = curveEnergy(&total.accounts[i], r.hencky != nil)
+		hasCurves = hasCurves && (r.hencky != nil || account.Cells == 0)
+		entry := RegionAccount{Name: r.name, Criterion: string(r.limit.criterion), Account: account}
 		if r.material != nil {
 			entry.Material = Text(r.material.Name)
 		}
@@ -177,11 +166,13 @@ func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 			hasDensities = false
 		}
 		if total.accounts[i].cells > 0 {
-			hasLaws = hasLaws && r.law != nil
+			hasLaws = hasLaws && r.law.IsIsotropic()
 		}
 		ledger.Regions[i] = entry
 	}
 	ledger.Total = p.layOut(whole, hasLaws, p.hasLimits())
+	ledger.Total.MaxEquivalentStress = p.governingEquivalent(ledger.Regions)
+	ledger.Total.CurveEnergy = curveEnergy(whole, hasCurves)
 	if hasDensities {
 		ledger.Total.Mass = Number(mass.Float64())
 	}
@@ -197,27 +188,59 @@ func (p *plan) fillAccounts(ledger *Ledger, total *part) {
 
 // wholeAccount returns the account of all regions together.
 func wholeAccount(total *part) *account {
-	whole := &account{maxEquivalent: math.Inf(-1)}
+	whole := newAccount()
 	for i := range total.accounts {
 		whole.join(&total.accounts[i])
 	}
-	return whole
+	return &whole
+}
+
+// governingEquivalent returns the equivalent stress that speaks for the whole model: the
+// region's with the largest utilisation where all are judged by max-principal and have a
+// limit, as it is within such a region; else the one of largest size. Of equals it is
+// the tensile one.
+func (p *plan) governingEquivalent(regions []RegionAccount) Number {
+	isByUtilisation := p.hasLimits()
+	for i := range p.regions.regions {
+		isByUtilisation = isByUtilisation && p.regions.regions[i].limit.criterion == MaxPrincipal
+	}
+	governing, largest := None, math.Inf(-1)
+	for i := range regions {
+		equivalent := regions[i].MaxEquivalentStress
+		size := math.Abs(float64(equivalent))
+		if isByUtilisation {
+			size = float64(regions[i].MaxUtilisation)
+		}
+		if size > largest || size == largest && equivalent > governing {
+			governing, largest = equivalent, size
+		}
+	}
+	return governing
+}
+
+// curveEnergy returns the energy under the curves, none where a cell is strained beyond
+// the end of its curve.
+func curveEnergy(a *account, hasCurve bool) Number {
+	if !hasCurve || a.beyondCurve > 0 {
+		return None
+	}
+	return Number(a.curveEnergy.Float64())
 }
 
 // volumeWithoutLimit returns the volume of the regions that have no limit.
 func (p *plan) volumeWithoutLimit(total *part) Number {
 	var volume Sum
 	for i := range p.regions.regions {
-		if math.IsNaN(p.regions.regions[i].limit) {
+		if !p.regions.regions[i].limit.exists() {
 			volume.Join(&total.accounts[i].volume)
 		}
 	}
 	return Number(volume.Float64())
 }
 
-// layOut turns one account into the ledger's form. Without a law there is no split,
-// without a limit no utilisation.
-func (p *plan) layOut(a *account, hasLaw, hasLimit bool) Account {
+// layOut turns one account into the ledger's form. Without an isotropic law there is no
+// split, without a limit no utilisation.
+func (p *plan) layOut(a *account, isIsotropic, hasLimit bool) Account {
 	account := Account{
 		Cells: a.cells, Volume: Number(a.volume.Float64()), Mass: None, Energy: Number(a.energy.Float64()), EnergyShare: None,
 		EnergyVolumetric: None, EnergyDistortional: None, MeanDensity: None,
@@ -228,13 +251,10 @@ func (p *plan) layOut(a *account, hasLaw, hasLimit bool) Account {
 	}
 	account.MaxDensityCell, account.MaxDensitySource, account.MaxDensityAt = a.maxDensity.where()
 	_, _, account.PeakDensityAt = a.peak.where()
-	if a.cells > 0 {
-		account.MaxEquivalentStress = Number(a.maxEquivalent)
-	}
 	if account.Volume != 0 {
 		account.MeanDensity = account.Energy / account.Volume
 	}
-	if hasLaw {
+	if isIsotropic {
 		distortional := a.energy
 		distortional.Subtract(&a.volumetric)
 		account.EnergyVolumetric = Number(a.volumetric.Float64())
@@ -270,7 +290,9 @@ func (p *plan) fillLists(ledger *Ledger, total *part) {
 	ledger.Hotspots = []Hotspot{}
 	total.hotspots.trim()
 	for rank, c := range total.hotspots.list {
-		ledger.Hotspots = append(ledger.Hotspots, p.hotspot(rank+1, &c))
+		entry := p.hotspot(rank+1, &c)
+		entry.LocalEstimate = p.regions.regions[c.region].localEstimate(&ledger.Regions[c.region].Account, &entry)
+		ledger.Hotspots = append(ledger.Hotspots, entry)
 	}
 	ledger.PastLimit = PastLimit{
 		Criterion: string(p.criterion()), Cells: ledger.Total.CellsPastLimit,
@@ -293,10 +315,12 @@ func (p *plan) fillLists(ledger *Ledger, total *part) {
 // hotspot lays out one entry of the list of hotspots: a single cell.
 func (p *plan) hotspot(rank int, c *candidate) Hotspot {
 	at := c.at
+	factor := LoadFactor(p.regions.regions[c.region].limit.criterion, Number(c.limitShare))
 	entry := Hotspot{
 		Rank: rank, Region: p.regions.regions[c.region].name, Cell: c.place.cell, Source: c.place.source, ElementID: elementID(c),
 		At: &at, Density: Number(c.density), PeakDensity: Number(c.peak), Energy: None, EnergyShare: None, Volume: None, Cells: None,
 		Prominence: None, EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
+		StressMargin: factor - 1, LoadFactor: factor,
 	}
 	if !math.IsNaN(c.limitShare) {
 		isPast := c.limitShare > 1
@@ -322,6 +346,32 @@ func elementID(c *candidate) Number {
 	return Number(c.elementID)
 }
 
+// withoutEnergy takes every energy out of a ledger whose stress is known and whose
+// elastic strain is not: they do not exist.
+func (l *Ledger) withoutEnergy() {
+	accounts := []*Account{&l.Total}
+	for i := range l.Regions {
+		accounts = append(accounts, &l.Regions[i].Account)
+	}
+	for _, a := range accounts {
+		a.Energy, a.EnergyShare, a.MeanDensity, a.EnergyPastLimit = None, None, None, None
+		a.MaxDensity, a.MaxDensityCell, a.MaxDensitySource, a.MaxDensityAt = None, None, None, nil
+		a.PeakDensity, a.PeakDensityAt, a.CurveEnergy = None, nil, None
+	}
+	if l.Repeated != nil {
+		l.Repeated.Energy = None
+	}
+	l.PastLimit.Energy, l.PastLimit.EnergyShare = None, None
+	for i := range l.Hotspots {
+		l.Hotspots[i].Density, l.Hotspots[i].PeakDensity = None, None
+	}
+	for _, list := range [][]RankedCell{l.PastLimit.Worst, l.AllPastLimit} {
+		for i := range list {
+			list[i].Density = None
+		}
+	}
+}
+
 // findInResult reports what the evaluated cells have shown.
 func (p *plan) findInResult(ledger *Ledger, total *part) {
 	f := &p.findings
@@ -343,6 +393,9 @@ func (p *plan) findInResult(ledger *Ledger, total *part) {
 	if n := count(degenerateCell); n > 0 {
 		f.add("degenerate-cells", n, "%d cells have no measure worth the name and are left out", n)
 	}
+	if n := count(unsupportedCell); n > 0 {
+		f.add("unsupported-cells", n, "%d cells cannot be computed here and are left out: cells without a measure (convex point sets), or polygons and polyhedra whose stress or strain is on points", n)
+	}
 	if n := total.overlaps; n > 0 {
 		f.add("regions-overlap", n, "%d cells are claimed by more than one region; each is counted in the first", n)
 	}
@@ -354,8 +407,27 @@ func (p *plan) findInResult(ledger *Ledger, total *part) {
 	}
 	p.findNegative(ledger, total)
 	p.findZero(total)
+	p.findPastLimit(ledger)
 	if n := ledger.Total.CellsYielded; n > 0 {
 		f.add("plastic-strain-present", int64(n), "%d cells have plastic strain: the elastic energy stored is not the work done, and the limit's utilisation does not describe them", int64(n))
+	}
+}
+
+// nonlinearShare is the share of a region's volume past the limit above which the totals
+// of a linear run are in doubt (common practice, no source).
+const nonlinearShare = 0.01
+
+// findPastLimit advises a nonlinear run for each region of which too much is past the
+// limit. Where the file has plastic strain the run was one.
+func (p *plan) findPastLimit(ledger *Ledger) {
+	for i := range ledger.Regions {
+		r := &ledger.Regions[i]
+		if r.CellsYielded > 0 || !(r.VolumePastLimit > nonlinearShare*r.Volume) {
+			continue
+		}
+		p.findings.add("nonlinear-run-advised", int64(r.CellsPastLimit),
+			"region %q: %.3g %% of the volume is past the limit, and stress there is more than the material bears, so that the region's linear energy is in doubt: make a nonlinear run",
+			r.Name, 100*float64(r.VolumePastLimit/r.Volume))
 	}
 }
 
@@ -363,6 +435,9 @@ func (p *plan) findInResult(ledger *Ledger, total *part) {
 // of the peak (methods: negative density is an input error; threshold common practice,
 // no source). The amounts are known by their binary exponent only.
 func (p *plan) findNegative(ledger *Ledger, total *part) {
+	if p.isUnknown {
+		return
+	}
 	threshold := 1e-9 * math.Abs(float64(ledger.Total.MaxDensity))
 	first := int(math.Float64bits(threshold)>>52&0x7ff) + 1
 	var cells int64

@@ -12,42 +12,88 @@ import (
 type tensorInput struct {
 	on      mesh.Location // 0: the field is not there
 	layout  mesh.Layout
-	columns []int // positions in Chunk.Values or Chunk.PointValues; several hold one component each
+	columns []int // positions in Chunk.Values, PointValues or FieldValues; several hold one component each
+	points  int   // integration points in a cell, their tuples in a row; 0: none
+
+	order   mesh.Order
+	orderBy decider
+	shear   mesh.Shear
+	shearBy decider
 }
+
+// A decider is who settled how an array is read.
+type decider string
+
+// The deciders, as the ledger names them.
+const (
+	byStudy   decider = "study"
+	byAudit   decider = "audit" // from the numbers
+	byFile    decider = "file"  // the array's own component names
+	byDefault decider = "default"
+)
 
 func (in *tensorInput) exists() bool { return in.on != 0 }
 
-// at returns the tensor of a cell, or of a node where the field is on points.
+// at returns the tensor of a cell, of a node where the field is on points, or of an
+// integration point by its number in the cell.
 func (in *tensorInput) at(chunk *mesh.Chunk, cell int, node int32) mesh.SymmetricTensor {
-	values, index := chunk.Values, cell
-	if in.on == mesh.OnPoint {
-		values, index = chunk.PointValues, int(node)
+	if len(in.columns) > 1 {
+		tuple := in.stored(chunk, cell, node)
+		return in.layout.At(tuple[:])
 	}
+	values, index := in.values(chunk, cell, node)
+	n := in.layout.Components
+	return in.layout.At(values[in.columns[0]][index*n : index*n+n])
+}
+
+// values returns where the field's numbers are and the index of a place in them.
+func (in *tensorInput) values(chunk *mesh.Chunk, cell int, node int32) ([][]float64, int) {
+	return placeIn(chunk, in.on, in.points, cell, node)
+}
+
+// placeIn returns the numbers of a location and the index of a place in them.
+func placeIn(chunk *mesh.Chunk, on mesh.Location, points, cell int, node int32) ([][]float64, int) {
+	index := cell
+	if points > 0 {
+		index = cell*points + int(node)
+	}
+	switch on {
+	case mesh.OnPoint:
+		return chunk.PointValues, int(node)
+	case mesh.OnField:
+		return chunk.FieldValues, index
+	}
+	return chunk.Values, index
+}
+
+// stored returns the numbers of a place as the file has them.
+func (in *tensorInput) stored(chunk *mesh.Chunk, cell int, node int32) (tuple [9]float64) {
+	values, index := in.values(chunk, cell, node)
 	if len(in.columns) == 1 {
 		n := in.layout.Components
-		return in.layout.At(values[in.columns[0]][index*n : index*n+n])
+		copy(tuple[:], values[in.columns[0]][index*n:index*n+n])
+		return tuple
 	}
-	var tuple [9]float64
 	for i, column := range in.columns {
 		tuple[i] = values[column][index]
 	}
-	return in.layout.At(tuple[:len(in.columns)])
+	return tuple
 }
 
 // A scalarInput reads one field of single numbers from a chunk.
 type scalarInput struct {
 	on     mesh.Location // 0: the field is not there
 	column int
+	points int // as in a tensorInput
 }
 
 func (in *scalarInput) exists() bool { return in.on != 0 }
 
-// at returns the number of a cell, or of a node where the field is on points.
+// at returns the number of a cell, of a node where the field is on points, or of an
+// integration point by its number in the cell.
 func (in *scalarInput) at(chunk *mesh.Chunk, cell int, node int32) float64 {
-	if in.on == mesh.OnPoint {
-		return chunk.PointValues[in.column][node]
-	}
-	return chunk.Values[in.column][cell]
+	values, index := placeIn(chunk, in.on, in.points, cell, node)
+	return values[in.column][index]
 }
 
 // inputs are the fields that a tally reads.
@@ -55,16 +101,20 @@ type inputs struct {
 	stress, strain, thermalStrain, plasticStrain tensorInput
 	equivalentPlasticStrain, temperature         scalarInput
 	thickness                                    scalarInput
-	elementID                                    int // column of Chunk.Labels, or -1
+	displacement                                 vectorInput     // read where the energy comes from it
+	elementID                                    int             // column of Chunk.Labels, or -1
+	rule                                         *mesh.GaussRule // of integration points; nil: none
 
 	strainIsElastic bool
+	kindBy          decider // byFile: the strain's name tells
+	rolesBy         decider // byDefault: the names do not tell stress from strain
 	used            FieldsUsed
 	want            mesh.Want
 }
 
 // isPerCell reports whether everything that the density needs is cell data.
 func (in *inputs) isPerCell() bool {
-	return in.stress.on != mesh.OnPoint && in.strain.on != mesh.OnPoint && in.thermalStrain.on != mesh.OnPoint &&
+	return in.rule == nil && in.stress.on != mesh.OnPoint && in.strain.on != mesh.OnPoint && in.thermalStrain.on != mesh.OnPoint &&
 		in.plasticStrain.on != mesh.OnPoint && in.temperature.on != mesh.OnPoint
 }
 
@@ -79,10 +129,14 @@ func wantColumn(list *[]string, name string) int {
 
 // A fieldFinder decides which arrays are taken for which fields.
 type fieldFinder struct {
-	options  *Options
-	arrays   []mesh.Array // those that every piece with cells has
-	findings *findings
-	in       *inputs
+	options        *Options
+	arrays         []mesh.Array // those that every piece with cells has
+	findings       *findings
+	in             *inputs
+	described      map[string]int // Gauss points along each direction, by array
+	cells          int64
+	hasIntegration bool      // there are results at integration points
+	unnamed        [2]string // two arrays taken for stress and strain although their names say nothing
 }
 
 // commonArrays returns the point and cell arrays that every piece with cells has with
@@ -104,13 +158,14 @@ func commonArrays(model *mesh.Model) []mesh.Array {
 			return other == nil || other.Components != a.Components
 		})
 	}
-	return slices.DeleteFunc(common, func(a mesh.Array) bool { return a.Type == "String" })
+	return slices.DeleteFunc(common, func(a mesh.Array) bool { return !isNumeric(a) })
 }
 
 // findInputs resolves every field of the study and of the file. The energy's source
 // is decided with them.
 func findInputs(model *mesh.Model, options *Options, found *findings) (*inputs, EnergySource, error) {
 	f := &fieldFinder{options: options, arrays: commonArrays(model), findings: found, in: &inputs{elementID: -1}}
+	f.findIntegrationArrays(model)
 	source, on, err := f.chooseSource()
 	if err != nil {
 		return nil, "", err
@@ -118,7 +173,7 @@ func findInputs(model *mesh.Model, options *Options, found *findings) (*inputs, 
 	if err := f.findTensors(source, on); err != nil {
 		return nil, "", err
 	}
-	if err := f.findOthers(on); err != nil {
+	if err := f.findOthers(source, on); err != nil {
 		return nil, "", err
 	}
 	return f.in, source, nil
@@ -136,6 +191,11 @@ func (f *fieldFinder) candidates(on mesh.Location, fits func(components int) boo
 	return list
 }
 
+// allows reports whether the study leaves a location open for the field.
+func (f *Field) allows(on mesh.Location) bool {
+	return (f.On == 0 || f.On == on) && (!f.Integration || on == mesh.OnField)
+}
+
 // isTensor reports whether so many components can be a tensor in this idealisation.
 func (f *fieldFinder) isTensor(components int) bool {
 	switch f.options.Idealisation {
@@ -151,9 +211,6 @@ func isScalar(components int) bool { return components == 1 }
 
 func isVector(components int) bool { return components == 2 || components == 3 }
 
-// locations are tried in this order where the study does not say.
-var locations = []mesh.Location{mesh.OnCell, mesh.OnPoint}
-
 // strainRoles are tried in this order: an elastic strain needs nothing subtracted.
 var strainRoles = [][]role{{elasticStrainRole}, {strainRole}}
 
@@ -167,7 +224,7 @@ func (f *fieldFinder) has(field *Field, on mesh.Location, roles ...role) bool {
 		array := f.stated(field)
 		return array == nil || array.On == on // a missing array is told later, by name
 	}
-	return (field.On == 0 || field.On == on) && len(f.candidates(on, f.isTensor, roles...)) > 0
+	return field.allows(on) && len(f.candidates(on, f.isTensor, roles...)) > 0
 }
 
 // chooseSource returns the source of the energy and the location of its fields: what
@@ -175,9 +232,6 @@ func (f *fieldFinder) has(field *Field, on mesh.Location, roles ...role) bool {
 func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
 	stress, strain := &f.options.Fields.Stress, &f.options.Fields.Strain
 	from := f.options.From
-	if from == FromDisplacement {
-		return "", 0, studyError("[energy] from = \"displacement\" is not built yet")
-	}
 	if stress.IsStated() && strain.IsStated() && (from == "" || from == FromStressStrain) {
 		return FromStressStrain, 0, nil // also at two locations, because the study says so
 	}
@@ -185,7 +239,7 @@ func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
 		if from != "" && from != source {
 			continue
 		}
-		for _, on := range locations {
+		for _, on := range f.locations() {
 			hasStress := f.has(stress, on, stressRole)
 			hasStrain := f.has(strain, on, strainRole, elasticStrainRole)
 			if (hasStress || source == FromStrain) && (hasStrain || source == FromStress) {
@@ -193,7 +247,44 @@ func (f *fieldFinder) chooseSource() (EnergySource, mesh.Location, error) {
 			}
 		}
 	}
+	if from == "" || from == FromStressStrain {
+		if on := f.takeUnnamed(); on != 0 {
+			return FromStressStrain, on, nil
+		}
+	}
+	if (from == "" || from == FromDisplacement) && f.hasDisplacement() {
+		return FromDisplacement, mesh.OnPoint, nil
+	}
 	return "", 0, f.nothingFound(from)
+}
+
+// takeUnnamed takes two tensor arrays whose names say nothing for stress and strain,
+// where they are the only two at a location and nothing is stated; which is which is
+// left to the numbers. It returns their location, or 0.
+func (f *fieldFinder) takeUnnamed() mesh.Location {
+	fields := &f.options.Fields
+	if fields.Stress.Off || fields.Strain.Off || fields.Stress.IsStated() || fields.Strain.IsStated() {
+		return 0
+	}
+	for _, on := range f.locations() {
+		list := f.candidates(on, f.isTensor, noRole)
+		if len(list) == 2 && list[0].Components == list[1].Components {
+			f.unnamed = [2]string{list[0].Name, list[1].Name}
+			f.in.rolesBy = byDefault
+			return on
+		}
+	}
+	return 0
+}
+
+// hasDisplacement reports whether a displacement is stated by the study or can be
+// found.
+func (f *fieldFinder) hasDisplacement() bool {
+	field := &f.options.Fields.Displacement
+	if field.Off || field.IsStated() {
+		return !field.Off
+	}
+	return len(f.candidates(mesh.OnPoint, isVector, displacementRole)) > 0
 }
 
 // nothingFound says which fields are missing and what the file has instead.
@@ -204,15 +295,14 @@ func (f *fieldFinder) nothingFound(from EnergySource) error {
 	}
 	needed := "a stress or strain array"
 	switch from {
+	case FromDisplacement:
+		return inputError("found no displacement on points; the file has %s; name it in [fields] displacement", orNoArrays(have))
 	case FromStressStrain:
 		needed = "a stress and a strain array at one location"
 	case FromStress:
 		needed = "a stress array"
 	case FromStrain:
 		needed = "a strain array"
-	}
-	if len(have) == 0 {
-		have = []string{"no arrays"}
 	}
 	components := "6 or 9 components"
 	switch f.options.Idealisation {
@@ -222,19 +312,27 @@ func (f *fieldFinder) nothingFound(from EnergySource) error {
 		components = "4, 6 or 9 components, the hoop term among them"
 	}
 	return inputError("found no %s with %s; the file has %s; name the arrays in [fields]",
-		strings.TrimPrefix(needed, "a "), components, strings.Join(have, ", "))
+		strings.TrimPrefix(needed, "a "), components, orNoArrays(have))
+}
+
+// orNoArrays lists arrays for a message.
+func orNoArrays(have []string) string {
+	if len(have) == 0 {
+		return "no arrays"
+	}
+	return strings.Join(have, ", ")
 }
 
 // describe names an array for a message.
 func describe(array mesh.Array) string {
-	return fmt.Sprintf("%q (%d on %ss)", array.Name, array.Components, array.On)
+	return fmt.Sprintf("%q (%d on %s)", array.Name, array.Components, placesName(array.On))
 }
 
 // stated returns the array that the study names, nil when it is not in the file. The
 // first of several component arrays stands for all.
 func (f *fieldFinder) stated(field *Field) *mesh.Array {
-	for _, on := range locations {
-		if field.On != 0 && field.On != on {
+	for _, on := range f.locations() {
+		if field.On != 0 && field.On != on || field.Integration && on == mesh.OnPoint {
 			continue
 		}
 		for i := range f.arrays {
@@ -257,15 +355,22 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 		if array == nil {
 			return nil, "", f.missing(key, field)
 		}
-		if field.On == 0 {
+		if field.On == 0 && !field.Integration {
 			f.noteSeveralLocations(key, array)
 		}
-		return array, "named in the study", nil
+		return array, "the study names it", nil
 	}
-	if field.On != 0 {
+	switch {
+	case field.Integration:
+		on = mesh.OnField
+	case field.On != 0:
 		on = field.On
 	}
 	list := f.candidates(on, fits, roles...)
+	if f.unnamed[0] != "" && (key == "stress" || key == "strain") {
+		list = f.candidates(on, fits, noRole)
+		return &list[slices.Index([]string{"stress", "strain"}, key)], "one of the two tensor arrays of the file", nil
+	}
 	switch {
 	case len(list) == 0:
 		return nil, "", nil
@@ -276,9 +381,10 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 		}
 		return nil, "", inputError("the %s could be any of %s; name one in [fields] %s", plain(key), strings.Join(names, ", "), key)
 	}
-	for _, other := range locations {
-		if other != list[0].On && on != 0 && field.On == 0 && len(f.candidates(other, fits, roles...)) > 0 {
-			f.findings.add("several-locations", 0, "the %s is on cells and on points; taken on %ss: state [fields] %s = { on = ... } for the other", plain(key), list[0].On, key)
+	for _, other := range f.locations() {
+		if other != list[0].On && on != 0 && field.On == 0 && !field.Integration && len(f.candidates(other, fits, roles...)) > 0 {
+			f.findings.add("several-locations", 0, "the %s is at several locations; taken on %s: state [fields] %s = { on = ... } for another", plain(key), placesName(list[0].On), key)
+			break
 		}
 	}
 	return &list[0], fmt.Sprintf("its name says %s and it has %d components", plain(key), list[0].Components), nil
@@ -288,7 +394,7 @@ func (f *fieldFinder) choose(key string, field *Field, on mesh.Location, fits fu
 func (f *fieldFinder) noteSeveralLocations(key string, array *mesh.Array) {
 	for _, other := range f.arrays {
 		if other.Name == array.Name && other.On != array.On {
-			f.findings.add("several-locations", 0, "array %q is on cells and on points; taken on %ss: state [fields] %s = { array = %q, on = ... } for the other", array.Name, array.On, key, array.Name)
+			f.findings.add("several-locations", 0, "array %q is at several locations; taken on %s: state [fields] %s = { array = %q, on = ... } for another", array.Name, placesName(array.On), key, array.Name)
 			return
 		}
 	}
@@ -303,8 +409,11 @@ func (f *fieldFinder) missing(key string, field *Field) error {
 		}
 	}
 	where := "cells or points"
-	if field.On != 0 {
-		where = field.On.String() + "s"
+	switch {
+	case field.Integration:
+		where = "integration points"
+	case field.On != 0:
+		where = placesName(field.On)
 	}
 	if len(have) == 0 {
 		have = []string{"none"}
@@ -318,12 +427,12 @@ func plain(key string) string { return strings.ReplaceAll(key, "_", " ") }
 // findTensors resolves stress, strain and what is subtracted from the strain.
 func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
 	fields, in := &f.options.Fields, f.in
-	if source != FromStrain {
+	if source == FromStressStrain || source == FromStress {
 		if err := f.tensor("stress", &fields.Stress, on, &in.stress, &in.used.Stress, stressRole); err != nil {
 			return err
 		}
 	}
-	if source != FromStress {
+	if source == FromStressStrain || source == FromStrain {
 		for _, roles := range strainRoles {
 			if err := f.tensor("strain", &fields.Strain, on, &in.strain, &in.used.Strain, roles...); err != nil {
 				return err
@@ -334,35 +443,61 @@ func (f *fieldFinder) findTensors(source EnergySource, on mesh.Location) error {
 		}
 		f.decideKind()
 	}
-	if in.strain.exists() && !in.strainIsElastic {
-		if err := f.tensor("thermal_strain", &fields.ThermalStrain, in.strain.on, &in.thermalStrain, &in.used.ThermalStrain, thermalStrainRole); err != nil {
+	// An elastic strain without zz gets it in plane strain from what is subtracted.
+	needsThermal := !in.strainIsElastic || f.options.Idealisation == PlaneStrain && !in.strain.layout.Has(2)
+	if in.strain.exists() && needsThermal || source == FromDisplacement {
+		where := in.strain.on
+		if source == FromDisplacement {
+			where = f.locationOf(f.isTensor, thermalStrainRole)
+		}
+		if err := f.tensor("thermal_strain", &fields.ThermalStrain, where, &in.thermalStrain, &in.used.ThermalStrain, thermalStrainRole); err != nil {
 			return err
 		}
 	}
 	// The plastic strain also tells which cells have yielded.
-	if on == 0 {
+	switch {
+	case source == FromDisplacement:
+		on = f.locationOf(f.isTensor, plasticStrainRole)
+	case on == 0:
 		on = in.strain.on
 	}
 	if err := f.tensor("plastic_strain", &fields.PlasticStrain, on, &in.plasticStrain, &in.used.PlasticStrain, plasticStrainRole); err != nil {
 		return err
 	}
+	if in.stress.exists() && in.strain.exists() && (in.stress.points > 0) != (in.strain.points > 0) {
+		return inputError("stress is on %s and strain on %s: values at integration points cannot be multiplied with others", placesName(in.stress.on), placesName(in.strain.on))
+	}
 	if in.stress.exists() && in.strain.exists() && in.stress.on != in.strain.on {
-		f.findings.add("mixed-locations", 0, "stress is on %ss and strain on %ss, as the study names them: their product mixes averages of different kinds", in.stress.on, in.strain.on)
+		f.findings.add("mixed-locations", 0, "stress is on %s and strain on %s, as the study names them: their product mixes averages of different kinds", placesName(in.stress.on), placesName(in.strain.on))
 	}
 	return f.checkComponents(source)
 }
 
-// decideKind settles whether the strain is the total or the elastic one.
+// locationOf returns the first location at which a field can be found, cells where it
+// cannot.
+func (f *fieldFinder) locationOf(fits func(int) bool, roles ...role) mesh.Location {
+	for _, on := range f.locations() {
+		if len(f.candidates(on, fits, roles...)) > 0 {
+			return on
+		}
+	}
+	return mesh.OnCell
+}
+
+// decideKind settles whether the strain is the total or the elastic one, as far as the
+// study and the array's name tell.
 func (f *fieldFinder) decideKind() {
-	used := f.in.used.Strain
-	if used == nil {
+	in := f.in
+	if in.used.Strain == nil {
 		return
 	}
-	f.in.strainIsElastic = f.options.Fields.Strain.Kind == "elastic" ||
-		f.options.Fields.Strain.Kind == "" && roleOf(used.Array) == elasticStrainRole
-	used.Kind = "total"
-	if f.in.strainIsElastic {
-		used.Kind = "elastic"
+	switch stated := f.options.Fields.Strain.Kind; {
+	case stated != "":
+		in.strainIsElastic, in.kindBy = stated == "elastic", byStudy
+	case roleOf(in.used.Strain.Array) == elasticStrainRole:
+		in.strainIsElastic, in.kindBy = true, byFile
+	default:
+		in.kindBy = byDefault
 	}
 }
 
@@ -378,7 +513,13 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 			return err
 		}
 	}
-	order, orderFrom, err := f.order(key, field, array, components)
+	points := 0
+	if field.Integration || array.On == mesh.OnField {
+		if points, components, err = f.settleRule(key, field, array); err != nil {
+			return err
+		}
+	}
+	order, orderBy, err := f.order(key, field, array, components)
 	if err != nil {
 		return err
 	}
@@ -399,7 +540,10 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 	if err != nil {
 		return inputError("[fields] %s: array %q: %w", key, array.Name, err)
 	}
-	*to = tensorInput{on: array.On, layout: layout}
+	*to = tensorInput{on: array.On, layout: layout, points: points, order: order, orderBy: orderBy, shear: shear, shearBy: byDefault}
+	if field.Shear != "" || key == "stress" {
+		to.shearBy = byStudy
+	}
 	names := []string{array.Name}
 	if len(field.Arrays) > 1 {
 		names = field.Arrays
@@ -407,66 +551,36 @@ func (f *fieldFinder) tensor(key string, field *Field, on mesh.Location, to *ten
 	for _, name := range names {
 		to.columns = append(to.columns, f.column(array.On, name))
 	}
-	record := &FieldUsed{
-		Array: strings.Join(names, " "), On: array.On.String(), Order: Text(order.String()), Sign: signName,
-		DecidedBy: "default", Why: why,
-	}
-	if key != "stress" || field.Shear != "" {
-		record.Shear = Text(shear.String())
-	}
-	f.recordDecision(record, key, field, orderFrom)
-	*used = record
+	*used = &FieldUsed{Array: strings.Join(names, " "), On: usedOn(array.On, points), Sign: signName, DecidedBy: string(byStudy), Why: why}
 	return nil
 }
 
-// recordDecision says who decided the order and the shear convention, and warns where
-// nobody did.
-func (f *fieldFinder) recordDecision(record *FieldUsed, key string, field *Field, orderFrom string) {
-	stated := field.Shear != "" || key == "stress"
-	switch {
-	case orderFrom == "study" && stated:
-		record.DecidedBy = "study"
-	case orderFrom == "file" && stated:
-		record.DecidedBy = "file"
+// usedOn names where the values of a field are.
+func usedOn(on mesh.Location, points int) string {
+	if points > 0 {
+		on = mesh.OnField
 	}
-	record.Why += "; component order " + orderWords[orderFrom]
-	if key != "stress" {
-		if field.Shear != "" {
-			record.Why += ", shear as the study states"
-		} else {
-			record.Why += ", shear taken as tensor components"
-		}
-	}
-	if orderFrom == "default" {
-		f.findings.add("default-order", 0, "the component order of the %s is not stated; taken as %s: state [fields] %s = { order = ... } if it is another", plain(key), record.Order, key)
-	}
-	if !stated && record.Order != "xx yy zz" {
-		f.findings.add("shear-convention", 0, "the shear terms of the %s are not stated; taken as tensor components: state [fields] %s = { shear = \"engineering\" } if they are γ", plain(key), key)
-	}
-}
-
-var orderWords = map[string]string{
-	"study": "as the study states", "file": "from the array's component names", "default": "by default for its number of components",
+	return placeName(on)
 }
 
 // order returns the component order of an array and who decided it.
-func (f *fieldFinder) order(key string, field *Field, array *mesh.Array, components int) (mesh.Order, string, error) {
+func (f *fieldFinder) order(key string, field *Field, array *mesh.Array, components int) (mesh.Order, decider, error) {
 	if len(field.Order) > 0 {
 		if len(field.Order) != components {
 			return nil, "", inputError("[fields] %s: array %q has %d components, the order %q names %d", key, array.Name, components, field.Order, len(field.Order))
 		}
-		return field.Order, "study", nil
+		return field.Order, byStudy, nil
 	}
 	if len(array.ComponentNames) == components {
 		if order, err := mesh.ParseOrder(strings.Join(array.ComponentNames, " "), f.options.AxisX); err == nil && len(order) == components {
-			return order, "file", nil
+			return order, byFile, nil
 		}
 	}
 	order := mesh.DefaultOrder(components)
 	if order == nil {
 		return nil, "", inputError("[fields] %s: array %q has %d components, a tensor has 3, 4, 6 or 9; state its order", key, array.Name, components)
 	}
-	return order, "default", nil
+	return order, byDefault, nil
 }
 
 // componentArrays checks the arrays of a tensor that is stored component by component
@@ -489,22 +603,31 @@ func (f *fieldFinder) componentArrays(key string, field *Field, on mesh.Location
 
 // column adds an array to what is read.
 func (f *fieldFinder) column(on mesh.Location, name string) int {
-	if on == mesh.OnPoint {
+	switch on {
+	case mesh.OnPoint:
 		return wantColumn(&f.in.want.PointValues, name)
+	case mesh.OnField:
+		return wantColumn(&f.in.want.FieldValues, name)
 	}
 	return wantColumn(&f.in.want.CellValues, name)
+}
+
+// neededComponents returns the places of a tensor that a file must have; the law
+// completes the others.
+func neededComponents(idealisation Idealisation) []int {
+	switch idealisation {
+	case Axisymmetric:
+		return []int{0, 1, 2, 3}
+	case Solid:
+		return []int{0, 1, 2, 3, 4, 5}
+	}
+	return []int{0, 1, 3}
 }
 
 // checkComponents refuses tensors that lack components which no law can complete.
 func (f *fieldFinder) checkComponents(source EnergySource) error {
 	in := f.in
-	needed := []int{0, 1, 3}
-	switch f.options.Idealisation {
-	case Axisymmetric:
-		needed = []int{0, 1, 2, 3}
-	case Solid:
-		needed = []int{0, 1, 2, 3, 4, 5}
-	}
+	needed := neededComponents(f.options.Idealisation)
 	names := []string{"xx", "yy", "zz", "xy", "yz", "xz"}
 	for _, field := range []struct {
 		key   string
@@ -533,26 +656,19 @@ func (f *fieldFinder) checkComponents(source EnergySource) error {
 }
 
 // findOthers resolves the fields of single numbers and the displacement.
-func (f *fieldFinder) findOthers(on mesh.Location) error {
+func (f *fieldFinder) findOthers(source EnergySource, on mesh.Location) error {
 	fields, in := &f.options.Fields, f.in
 	if err := f.scalar("equivalent_plastic_strain", &fields.EquivalentPlasticStrain, on, &in.equivalentPlasticStrain, &in.used.EquivalentPlasticStrain, equivalentPlasticStrainRole); err != nil {
 		return err
 	}
 	// An array of thermal strain wins over temperature with expansion.
-	if in.strain.exists() && !in.strainIsElastic && !in.thermalStrain.exists() {
-		if err := f.findTemperature(); err != nil {
+	if (in.strain.exists() && !in.strainIsElastic || source == FromDisplacement) && !in.thermalStrain.exists() {
+		if err := f.findTemperature(source); err != nil {
 			return err
 		}
 	}
-	displacement, why, err := f.choose("displacement", &fields.Displacement, mesh.OnPoint, isVector, displacementRole)
-	if err != nil {
-		if fields.Displacement.IsStated() {
-			return err
-		}
-		displacement = nil // not used, so that several candidates do no harm
-	}
-	if displacement != nil {
-		in.used.Displacement = &FieldUsed{Array: displacement.Name, On: displacement.On.String(), DecidedBy: decidedBy(&fields.Displacement), Why: why + "; the energy does not use it"}
+	if err := f.findDisplacement(source); err != nil {
+		return err
 	}
 	if f.options.ThicknessArray != "" {
 		thickness := &Field{Arrays: []string{f.options.ThicknessArray}, On: mesh.OnCell}
@@ -560,13 +676,45 @@ func (f *fieldFinder) findOthers(on mesh.Location) error {
 		if array == nil || array.Components != 1 {
 			return inputError("[model] thickness: no cell array %q with one component", f.options.ThicknessArray)
 		}
-		in.thickness = scalarInput{mesh.OnCell, f.column(mesh.OnCell, array.Name)}
+		in.thickness = scalarInput{on: mesh.OnCell, column: f.column(mesh.OnCell, array.Name)}
 	}
 	return f.findElementID()
 }
 
-// findTemperature resolves the temperature, on cells or on points.
-func (f *fieldFinder) findTemperature() error {
+// findDisplacement resolves the displacement: needed where the energy comes from it,
+// else only named.
+func (f *fieldFinder) findDisplacement(source EnergySource) error {
+	field := &f.options.Fields.Displacement
+	array, why, err := f.choose("displacement", field, mesh.OnPoint, isVector, displacementRole)
+	if err != nil && source != FromDisplacement && !field.IsStated() {
+		return nil // not used, so that several candidates do no harm
+	}
+	if err != nil || array == nil {
+		return err
+	}
+	f.in.displacement = vectorInput{name: array.Name, components: array.Components}
+	f.in.used.Displacement = &FieldUsed{Array: array.Name, On: array.On.String(), DecidedBy: decidedBy(field), Why: why}
+	if source != FromDisplacement {
+		f.in.used.Displacement.Why += "; the energy does not use it"
+		return nil
+	}
+	if array.On != mesh.OnPoint || !isVector(array.Components) {
+		return inputError("[fields] displacement: array %s is no vector on points", describe(*array))
+	}
+	f.in.displacement.column = f.column(mesh.OnPoint, array.Name)
+	return nil
+}
+
+// findTemperature resolves the temperature. One that the study does not name, and that
+// some material has no reference for, is left alone beside a stress: the numbers then
+// tell whether the strain carries a thermal part.
+func (f *fieldFinder) findTemperature(source EnergySource) error {
+	if !f.options.Fields.Temperature.IsStated() && source == FromStressStrain &&
+		slices.ContainsFunc(f.options.Materials, func(m Material) bool {
+			return Number(m.ThermalExpansion).Exists() && !Number(m.ReferenceTemperature).Exists()
+		}) {
+		return nil
+	}
 	if !slices.ContainsFunc(f.options.Materials, func(m Material) bool { return Number(m.ThermalExpansion).Exists() }) {
 		if f.options.Fields.Temperature.IsStated() {
 			return studyError("[fields] temperature is stated, but no material has a thermal_expansion")
@@ -574,7 +722,7 @@ func (f *fieldFinder) findTemperature() error {
 		return nil
 	}
 	field := &f.options.Fields.Temperature
-	for _, on := range locations {
+	for _, on := range f.locations() {
 		if err := f.scalar("temperature", field, on, &f.in.temperature, &f.in.used.Temperature, temperatureRole); err != nil || f.in.temperature.exists() {
 			return err
 		}
@@ -615,15 +763,21 @@ func (f *fieldFinder) scalar(key string, field *Field, on mesh.Location, to *sca
 	if array.Components != 1 {
 		return inputError("[fields] %s: array %q has %d components, want 1", key, array.Name, array.Components)
 	}
-	*to = scalarInput{array.On, f.column(array.On, array.Name)}
-	*used = &FieldUsed{Array: array.Name, On: array.On.String(), DecidedBy: decidedBy(field), Why: why}
+	points := 0
+	if field.Integration || array.On == mesh.OnField {
+		if points, _, err = f.settleRule(key, field, array); err != nil {
+			return err
+		}
+	}
+	*to = scalarInput{array.On, f.column(array.On, array.Name), points}
+	*used = &FieldUsed{Array: array.Name, On: usedOn(array.On, points), DecidedBy: decidedBy(field), Why: why}
 	return nil
 }
 
 // decidedBy tells a stated field from one that was found by its name.
 func decidedBy(field *Field) string {
 	if field.IsStated() {
-		return "study"
+		return string(byStudy)
 	}
-	return "default"
+	return string(byDefault)
 }

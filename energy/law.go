@@ -2,31 +2,36 @@ package energy
 
 import (
 	"fmt"
+	"math"
 
 	"strainledger/mesh"
 )
 
 // A Law is the linear elastic law of one material: isotropic, with Young's modulus E
-// and Poisson's ratio ν.
+// and Poisson's ratio ν, or any positive definite stiffness.
 //
 // Strains are elastic strains with tensor shear; all methods take and return tensors
-// in the order xx yy zz xy yz xz.
+// in the order xx yy zz xy yz xz, in the axes in which the law is given
+// (NewIsotropicLaw, NewOrthotropicLaw, NewStiffnessLaw) or to which it was turned
+// (InModelAxes).
 type Law struct {
 	youngsModulus float64
 	poissonsRatio float64
 	shearModulus  float64 // G = E / 2(1+ν)
 	bulkModulus   float64 // K = E / 3(1-2ν)
 	lame          float64 // λ = E ν / (1+ν)(1-2ν)
+
+	general *stiffness // nil: the five numbers above; else they are not used
 }
 
 // NewIsotropicLaw returns the law of a stable isotropic material. Errors name the
 // violated condition: E > 0, -1 < ν < 0.5.
 func NewIsotropicLaw(youngsModulus, poissonsRatio float64) (*Law, error) {
 	if !(youngsModulus > 0) {
-		return nil, fmt.Errorf("Young's modulus is %g, must be above 0", youngsModulus)
+		return nil, fmt.Errorf("the Young's modulus is %g, must be above 0", youngsModulus)
 	}
 	if !(poissonsRatio > -1 && poissonsRatio < 0.5) {
-		return nil, fmt.Errorf("Poisson's ratio is %g, must lie between -1 and 0.5", poissonsRatio)
+		return nil, fmt.Errorf("the Poisson's ratio is %g, must lie between -1 and 0.5", poissonsRatio)
 	}
 	e, nu := youngsModulus, poissonsRatio
 	return &Law{
@@ -38,8 +43,29 @@ func NewIsotropicLaw(youngsModulus, poissonsRatio float64) (*Law, error) {
 	}, nil
 }
 
+// IsIsotropic reports whether there is a law that is the same in all directions, which
+// the split into volumetric and distortional energy needs. A stiffness that is isotropic
+// but for the rounding of typed numbers counts as isotropic.
+func (l *Law) IsIsotropic() bool { return l != nil && (l.general == nil || l.general.isotropic) }
+
+// isotropicConstants returns Young's modulus and Poisson's ratio, NaN unless the law is
+// isotropic.
+func (l *Law) isotropicConstants() (youngsModulus, poissonsRatio float64) {
+	switch {
+	case !l.IsIsotropic():
+		return math.NaN(), math.NaN()
+	case l.general == nil:
+		return l.youngsModulus, l.poissonsRatio
+	}
+	compliance := &l.general.strain
+	return 1 / compliance[0][0], -compliance[1][0] / compliance[0][0]
+}
+
 // Strain returns the elastic strain ε = S:σ of a stress.
 func (l *Law) Strain(stress *mesh.SymmetricTensor) mesh.SymmetricTensor {
+	if l.general != nil {
+		return l.general.strain.apply(stress)
+	}
 	trace := stress.Trace()
 	normal, shear := (1+l.poissonsRatio)/l.youngsModulus, 0.5/l.shearModulus
 	volumetric := l.poissonsRatio / l.youngsModulus * trace
@@ -53,6 +79,9 @@ func (l *Law) Strain(stress *mesh.SymmetricTensor) mesh.SymmetricTensor {
 
 // Stress returns the stress σ = C:ε of an elastic strain.
 func (l *Law) Stress(strain *mesh.SymmetricTensor) mesh.SymmetricTensor {
+	if l.general != nil {
+		return l.general.stress.apply(strain)
+	}
 	double := 2 * l.shearModulus
 	volumetric := l.lame * strain.Trace()
 	return mesh.SymmetricTensor{
@@ -63,16 +92,28 @@ func (l *Law) Stress(strain *mesh.SymmetricTensor) mesh.SymmetricTensor {
 	}
 }
 
-// PlaneStressStrainZZ returns ε_zz = -ν/(1-ν) (ε_xx + ε_yy), which makes σ_zz vanish
-// at the given in-plane elastic strain.
-func (l *Law) PlaneStressStrainZZ(strain *mesh.SymmetricTensor) float64 {
-	return -l.poissonsRatio / (1 - l.poissonsRatio) * (strain[0] + strain[1])
+// CompletePlaneStress sets the strains out of the plane, ε_zz, ε_yz and ε_xz, to what
+// makes the stresses out of the plane vanish at the given in-plane elastic strain.
+// Isotropic: ε_zz = -ν/(1-ν) (ε_xx + ε_yy).
+func (l *Law) CompletePlaneStress(strain *mesh.SymmetricTensor) {
+	if l.general != nil {
+		l.general.stress.complete(strain, 0)
+		return
+	}
+	strain[2] = -l.poissonsRatio / (1 - l.poissonsRatio) * (strain[0] + strain[1])
+	strain[4], strain[5] = 0, 0
 }
 
-// StressZZ returns the σ_zz that belongs to the other normal stresses and an elastic
-// strain ε_zz: E ε_zz + ν (σ_xx + σ_yy).
-func (l *Law) StressZZ(stress *mesh.SymmetricTensor, strainZZ float64) float64 {
-	return float64(l.youngsModulus*strainZZ) + float64(l.poissonsRatio*(stress[0]+stress[1]))
+// CompletePlaneStrain sets the stresses out of the plane, σ_zz, σ_yz and σ_xz, to what
+// belongs to the in-plane stress, an elastic strain ε_zz and no shear strain out of the
+// plane. Isotropic: σ_zz = E ε_zz + ν (σ_xx + σ_yy).
+func (l *Law) CompletePlaneStrain(stress *mesh.SymmetricTensor, strainZZ float64) {
+	if l.general != nil {
+		l.general.strain.complete(stress, strainZZ)
+		return
+	}
+	stress[2] = float64(l.youngsModulus*strainZZ) + float64(l.poissonsRatio*(stress[0]+stress[1]))
+	stress[4], stress[5] = 0, 0
 }
 
 // VolumetricDensity returns w_v = ⅙ tr σ tr ε, the share of ½ σ:ε that changes the

@@ -91,6 +91,21 @@ type FieldsUsed struct {
 	ElementID               *FieldUsed `json:"element_id"`
 }
 
+// all lists the fields with their keys in the study.
+func (f *FieldsUsed) all() []struct {
+	key  string
+	used *FieldUsed
+} {
+	return []struct {
+		key  string
+		used *FieldUsed
+	}{
+		{"stress", f.Stress}, {"strain", f.Strain}, {"thermal_strain", f.ThermalStrain}, {"plastic_strain", f.PlasticStrain},
+		{"equivalent_plastic_strain", f.EquivalentPlasticStrain}, {"displacement", f.Displacement}, {"temperature", f.Temperature},
+		{"nodal_force", f.NodalForce}, {"element_id", f.ElementID},
+	}
+}
+
 // FieldUsed is one array's part in the account. Order, Shear and Kind are empty where
 // they have no meaning.
 type FieldUsed struct {
@@ -116,6 +131,20 @@ type MaterialUsed struct {
 	ThermalExpansion             Number `json:"thermal_expansion"`
 	ReferenceTemperature         Number `json:"reference_temperature"`
 	Source                       Text   `json:"source"`
+
+	// What an anisotropic law has instead of one modulus and one ratio.
+	YoungsModuli   *[3]float64    `json:"youngs_moduli"`
+	ShearModuli    *[3]float64    `json:"shear_moduli"`
+	PoissonsRatios *[3]float64    `json:"poissons_ratios"`
+	Stiffness      *[6][6]float64 `json:"stiffness"`
+	StiffnessOrder Text           `json:"stiffness_order"`
+	Axes           *[3]Vector     `json:"axes"`
+
+	Curve               Text `json:"curve"`
+	ProportionalLimitBy Text `json:"proportional_limit_by"`
+
+	YieldStress       Number `json:"yield_stress"`
+	HardeningExponent Number `json:"hardening_exponent"`
 }
 
 // A Vector is a place or a direction in the model's axes: x, y, z.
@@ -205,6 +234,10 @@ type Hotspot struct {
 	Utilisation      Number  `json:"utilisation"`
 	PastLimit        *bool   `json:"past_limit"` // nil where the region has no limit
 	Singular         Text    `json:"singular"`
+	StressMargin     Number  `json:"stress_margin"`
+	LoadFactor       Number  `json:"load_factor"`
+
+	LocalEstimate *LocalEstimate `json:"local_estimate"`
 }
 
 // PastLimit lists the cells whose utilisation is above 1. Cells, Volume and Energy are

@@ -1,6 +1,7 @@
 package energy
 
 import (
+	"bytes"
 	"encoding/json"
 	"math"
 	"strconv"
@@ -43,12 +44,17 @@ func (n *Number) UnmarshalJSON(data []byte) error {
 // A Text is a string that may not exist: empty is written as null.
 type Text string
 
-// MarshalJSON writes null for an empty text.
+// MarshalJSON writes null for an empty text, and leaves it to the encoder around it
+// whether <, > and & are escaped.
 func (t Text) MarshalJSON() ([]byte, error) {
 	if t == "" {
 		return []byte("null"), nil
 	}
-	return json.Marshal(string(t))
+	var text bytes.Buffer
+	encoder := json.NewEncoder(&text)
+	encoder.SetEscapeHTML(false)
+	err := encoder.Encode(string(t))
+	return text.Bytes(), err
 }
 
 // String returns the number as it is written in a file, "null" for none.

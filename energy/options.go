@@ -96,29 +96,6 @@ type Field struct {
 // IsStated reports whether the study names the field's array.
 func (f *Field) IsStated() bool { return len(f.Arrays) > 0 }
 
-// A Material is one entry of the study's table of materials. Optional numbers are NaN
-// where they are not given; see NewMaterial.
-type Material struct {
-	Name                         string
-	YoungsModulus                float64
-	PoissonsRatio                float64
-	ProportionalLimit            float64
-	ProportionalLimitCompression float64
-	Source                       string // where the limit comes from
-	Density                      float64
-	ThermalExpansion             float64
-	ReferenceTemperature         float64
-}
-
-// NewMaterial returns a material of which nothing but the name is given.
-func NewMaterial(name string) Material {
-	none := float64(None)
-	return Material{
-		Name: name, YoungsModulus: none, PoissonsRatio: none, ProportionalLimit: none,
-		ProportionalLimitCompression: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
-	}
-}
-
 // A Region selects cells and gives them a material. One of Array, Block, Box and Rest
 // is set.
 type Region struct {

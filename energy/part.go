@@ -39,9 +39,16 @@ type account struct {
 
 	volume, energy, volumetric Sum
 	pastVolume, pastEnergy     Sum
+	curveEnergy                Sum
+	beyondCurve                int64 // cells strained beyond the last point of their curve
 
 	maxDensity, peak, maxUtilisation best
-	maxEquivalent                    float64 // -Inf before the first cell
+	maxEquivalent, minEquivalent     float64 // -Inf and Inf before the first cell
+}
+
+// newAccount returns the account of no cell.
+func newAccount() account {
+	return account{maxEquivalent: math.Inf(-1), minEquivalent: math.Inf(1)}
 }
 
 // join adds another account of the same region, or of another one for the total.
@@ -52,12 +59,15 @@ func (a *account) join(other *account) {
 	a.volume.Join(&other.volume)
 	a.energy.Join(&other.energy)
 	a.volumetric.Join(&other.volumetric)
+	a.curveEnergy.Join(&other.curveEnergy)
+	a.beyondCurve += other.beyondCurve
 	a.pastVolume.Join(&other.pastVolume)
 	a.pastEnergy.Join(&other.pastEnergy)
 	a.maxDensity.join(&other.maxDensity)
 	a.peak.join(&other.peak)
 	a.maxUtilisation.join(&other.maxUtilisation)
 	a.maxEquivalent = max(a.maxEquivalent, other.maxEquivalent)
+	a.minEquivalent = min(a.minEquivalent, other.minEquivalent)
 }
 
 // A part is the account of some of a model's cells. Parts of one model join to the
@@ -82,7 +92,7 @@ type part struct {
 func newPart(p *plan) *part {
 	result := &part{accounts: make([]account, len(p.regions.regions))}
 	for i := range result.accounts {
-		result.accounts[i].maxEquivalent = math.Inf(-1)
+		result.accounts[i] = newAccount()
 	}
 	result.hotspots.count = p.hotspotCount
 	result.worst.count = p.listCount

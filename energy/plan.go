@@ -2,7 +2,6 @@ package energy
 
 import (
 	"context"
-	"math"
 	"slices"
 
 	"strainledger/mesh"
@@ -21,6 +20,8 @@ type plan struct {
 	hotspotCount int
 	listCount    int
 	bounds       mesh.Bounds
+	border       pointSet // points that regions share, where fields are on points
+	isUnknown    bool     // the energy cannot be told: inelastic strain and no law
 	findings     findings
 }
 
@@ -35,9 +36,10 @@ type Plan struct {
 
 // A PlannedRegion is one region of a Plan.
 type PlannedRegion struct {
-	Name     string
-	Material string
-	Limit    Number
+	Name      string
+	Material  string
+	Criterion Criterion
+	Limit     Number // in tension
 }
 
 // PlanTally decides everything that a tally would decide from the headers and the
@@ -53,7 +55,7 @@ func PlanTally(ctx context.Context, model *mesh.Model, options *Options) (*Plan,
 	result := &Plan{EnergyFrom: p.from, Fields: p.inputs.used, Cells: model.CellCount(), Findings: p.findings.sorted(options.Acceptances)}
 	for i := range p.regions.regions {
 		r := &p.regions.regions[i]
-		planned := PlannedRegion{Name: r.name, Limit: Number(r.limit)}
+		planned := PlannedRegion{Name: r.name, Criterion: r.limit.criterion, Limit: Number(r.limit.tension)}
 		if r.material != nil {
 			planned.Material = r.material.Name
 		}
@@ -88,6 +90,9 @@ func newPlan(ctx context.Context, walk *mesh.Walk, model *mesh.Model, options *O
 	if err := p.checkRequirements(); err != nil {
 		return nil, err
 	}
+	if err := p.audit(ctx, walk); err != nil {
+		return nil, err
+	}
 	p.chooseLists()
 	p.noteSettings()
 	return p, nil
@@ -107,7 +112,7 @@ func (p *plan) checkRegions() error {
 		if r.law == nil && p.from != FromStressStrain {
 			return studyError("region %q: energy from %s alone needs a material with youngs_modulus and poissons_ratio", r.name, p.from)
 		}
-		if r.law == nil && p.options.Idealisation == PlaneStrain && !p.inputs.stress.layout.Has(2) {
+		if r.law == nil && p.options.Idealisation == PlaneStrain && p.inputs.stress.exists() && !p.inputs.stress.layout.Has(2) {
 			return inputError("region %q: the stress has no zz component, which in plane strain comes from the material's law; give the region a material with youngs_modulus and poissons_ratio", r.name)
 		}
 		if p.options.Idealisation == PlaneStress && r.thickness == 0 && p.options.ThicknessArray == "" {
@@ -145,7 +150,7 @@ func (p *plan) checkRequirements() error {
 // hasLimits reports whether every region has a proportional limit.
 func (p *plan) hasLimits() bool {
 	for i := range p.regions.regions {
-		if math.IsNaN(p.regions.regions[i].limit) {
+		if !p.regions.regions[i].limit.exists() {
 			return false
 		}
 	}
@@ -186,7 +191,13 @@ func (p *plan) noteSettings() {
 			p.findings.add("limit-without-source", 0, "the proportional limit of material %q is given without its source", m.Name)
 		}
 	}
-	if p.inputs.isPerCell() {
+	for i := range p.regions.regions {
+		r := &p.regions.regions[i]
+		if c := r.limit.criterion; r.law != nil && !r.law.IsIsotropic() && (c == VonMises || c == Tresca) {
+			p.findings.add("criterion-unsuited", 0, "region %q: criterion %s takes material %q for isotropic, which its law is not: read its equivalent stress with care, or judge by max-principal", r.name, c, r.material.Name)
+		}
+	}
+	if p.from != FromDisplacement && p.inputs.isPerCell() {
 		p.findings.add("one-value-per-cell", 0, "stress and strain are one value per cell: energy that varies within cells (bending) is not in the sum, which is a lower estimate for the solution")
 	}
 }

@@ -15,9 +15,10 @@ import (
 // A region is one region of the study with all that its cells need.
 type region struct {
 	name      string
-	material  *Material // nil: none
-	law       *Law      // nil: none
-	limit     float64   // proportional limit, NaN: none
+	material  *Material  // nil: none
+	law       *Law       // nil: none
+	hencky    *HenckyLaw // nil: no curve
+	limit     limit
 	thickness float64
 	optional  bool
 }
@@ -65,11 +66,14 @@ func newRegionMap(ctx context.Context, walk *mesh.Walk, model *mesh.Model, optio
 
 // add resolves one region.
 func (m *regionMap) add(rule *Region, model *mesh.Model, options *Options, in *inputs) error {
-	r := region{name: rule.Name, limit: math.NaN(), thickness: rule.Thickness, optional: rule.Optional}
+	r := region{name: rule.Name, thickness: rule.Thickness, optional: rule.Optional}
 	if r.thickness == 0 {
 		r.thickness = options.Thickness
 	}
 	if err := r.setMaterial(rule, options); err != nil {
+		return err
+	}
+	if err := r.setLimit(rule, options); err != nil {
 		return err
 	}
 	s := selector{label: -1, box: rule.Box, rest: rule.Rest}
@@ -110,15 +114,14 @@ func (r *region) setMaterial(rule *Region, options *Options) error {
 		return studyError("region %q: no material %q", rule.Name, name)
 	}
 	r.material = &options.Materials[i]
-	r.limit = r.material.ProportionalLimit
-	if !Number(r.material.YoungsModulus).Exists() || !Number(r.material.PoissonsRatio).Exists() {
-		return nil
-	}
-	law, err := NewIsotropicLaw(r.material.YoungsModulus, r.material.PoissonsRatio)
+	law, err := r.material.Law()
 	if err != nil {
 		return studyError("material %q: %w", name, err)
 	}
 	r.law = law
+	if r.hencky, err = r.material.henckyLaw(law); err != nil {
+		return studyError("material %q: %w", name, err)
+	}
 	return nil
 }
 

@@ -74,6 +74,12 @@ func (s *Sum) Subtract(other *Sum) {
 
 // Float64 returns the sum, rounded once to the nearest double, ties to even.
 func (s *Sum) Float64() float64 {
+	value, _ := s.exact().Float64()
+	return value
+}
+
+// exact returns the sum without rounding.
+func (s *Sum) exact() *big.Float {
 	var total, term big.Int
 	for i := len(s.digit) - 1; i >= 0; i-- {
 		total.Lsh(&total, 32)
@@ -86,12 +92,7 @@ func (s *Sum) Float64() float64 {
 		total.Add(&total, &term)
 		total.Add(&total, term.SetUint64(d.low))
 	}
-	if total.Sign() == 0 {
-		return 0
-	}
-	// Exact so far; a precision of all its bits makes the last step the only rounding.
-	exact := new(big.Float).SetPrec(uint(total.BitLen())).SetInt(&total)
-	exact.SetMantExp(exact, -1075)
-	value, _ := exact.Float64()
-	return value
+	// A precision of all its bits makes the conversion exact.
+	exact := new(big.Float).SetPrec(uint(max(total.BitLen(), 1))).SetInt(&total)
+	return exact.SetMantExp(exact, -1075)
 }

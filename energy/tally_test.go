@@ -455,8 +455,18 @@ func TestElasticStrain(t *testing.T) {
 	m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: []memoryCell{cell}, arrays: []memoryArray{
 		cellArray("stress", make([]float64, 6)), cellArray("strain", make([]float64, 6)), cellArray("temperature", []float64{120})}}}}
 	var study *StudyError
-	if err := tallyError(t, m, solidOptions(mesh.OnCell, heated)); !errors.As(err, &study) || !strings.Contains(err.Error(), "reference_temperature") {
+	stated := solidOptions(mesh.OnCell, heated)
+	stated.Fields.Temperature.Arrays = []string{"temperature"}
+	if err := tallyError(t, m, stated); !errors.As(err, &study) || !strings.Contains(err.Error(), "reference_temperature") {
 		t.Errorf("without a reference temperature: %v", err)
+	}
+	// Not named, the temperature is left alone, and the offset that it would explain is
+	// found from the numbers: T-10b plate.
+	m.pieces[0].arrays[0] = cellArray("stress", []float64{-360, -360, 0, 0, 0, 0})
+	m.pieces[0].arrays[1] = cellArray("strain", []float64{0, 0, rise + 0.6*360/210000, 0, 0, 0})
+	ledger := tally(t, m, solidOptions(mesh.OnCell, heated))
+	if !hasFinding(ledger, "total-strain-used") || !within(float64(ledger.Total.Energy), 0.432, 1e-12) {
+		t.Errorf("energy %.12g, want 0.432; %+v", ledger.Total.Energy, ledger.Findings)
 	}
 }
 
@@ -466,8 +476,8 @@ func TestPlasticStrainIsSubtracted(t *testing.T) {
 	points, cell := brick(1, 1, 1)
 	m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: []memoryCell{cell}, arrays: []memoryArray{
 		cellArray("stress", []float64{250, 0, 0, 0, 0, 0}),
-		cellArray("strain", []float64{0.005, 0, 0, 0, 0, 0}),
-		cellArray("plastic_strain", []float64{0.00375, 0, 0, 0, 0, 0}),
+		cellArray("strain", []float64{0.005, -0.00225, -0.00225, 0, 0, 0}), // ν 0.3 elastic, ½ plastic
+		cellArray("plastic_strain", []float64{0.00375, -0.001875, -0.001875, 0, 0, 0}),
 	}}}}
 	material := steel()
 	material.YoungsModulus = 200000
@@ -492,9 +502,9 @@ func TestPlasticStrainIsSubtracted(t *testing.T) {
 // D-08 (derived): a bar of two halves in series; each region has its own energy.
 func TestRegionsByLabel(t *testing.T) {
 	points, cells := row(2)
-	strain := func(e float64) []float64 { return []float64{70 / e, 0, 0, 0, 0, 0} }
+	strain := func(e, nu float64) []float64 { return []float64{70 / e, -nu * 70 / e, -nu * 70 / e, 0, 0, 0} }
 	m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: cells, arrays: []memoryArray{
-		cellArray("stress", uniform(2, 70, 0, 0, 0, 0, 0)...), cellArray("strain", strain(210000), strain(70000)), labels1("part", 7, 3)}}}}
+		cellArray("stress", uniform(2, 70, 0, 0, 0, 0, 0)...), cellArray("strain", strain(210000, 0.3), strain(70000, 0.33)), labels1("part", 7, 3)}}}}
 	options := solidOptions(mesh.OnCell, steel(), aluminium())
 	options.Regions = []Region{
 		{Name: "stiff", Array: "part", Values: []float64{7}, Material: "steel"},
@@ -786,12 +796,12 @@ func TestFindingFields(t *testing.T) {
 		wants string // source, stress on, strain on
 		codes string
 	}{
-		{"cells", piece(cellArray("Sigma", six), cellArray("total strain", six)), "stress-strain cell cell", "default-order shear-convention"},
+		{"cells", piece(cellArray("Sigma", six), cellArray("total strain", six)), "stress-strain cell cell", ""},
 		{"points", piece(nodal("Sigma"), nodal("eps")), "stress-strain point point", ""},
 		{"both: cells", piece(nodal("stress"), nodal("strain"), cellArray("stress", six), cellArray("strain", six)), "stress-strain cell cell", "several-locations"},
 		{"a pair beats a single", piece(nodal("stress"), nodal("strain"), cellArray("stress", six)), "stress-strain point point", ""},
-		{"stress alone", piece(cellArray("stress", six)), "stress cell ", "default-order"},
-		{"strain alone", piece(cellArray("strain", six)), "strain  cell", "shear-convention"},
+		{"stress alone", piece(cellArray("stress", six)), "stress cell ", ""},
+		{"strain alone", piece(cellArray("strain", six)), "strain  cell", ""},
 		{"elastic before total", piece(cellArray("stress", six), cellArray("strain", six), cellArray("elastic strain", six)), "stress-strain cell cell", ""},
 		{"vectors are no tensors", piece(cellArray("stress vector", six[:3]), cellArray("stress", six), cellArray("strain", six)), "stress-strain cell cell", ""},
 	} {
@@ -886,7 +896,7 @@ func TestComponentNamesOfTheFile(t *testing.T) {
 	}
 	stress.names = []string{"a", "b", "c", "d", "e", "f"}
 	m.pieces[0].arrays[0] = stress
-	if ledger := tally(t, m, Options{}); ledger.Fields.Stress.DecidedBy != "default" {
+	if ledger := tally(t, m, Options{}); ledger.Fields.Stress.DecidedBy != "audit" {
 		t.Errorf("names that are none: %+v", *ledger.Fields.Stress)
 	}
 }

@@ -13,6 +13,9 @@ type worker struct {
 	part *part
 	cell mesh.Cell
 
+	isPerCell bool    // everything that the density needs is cell data
+	smallest  float64 // measure up to which a cell is degenerate
+
 	region      []int32 // -1: in no account
 	measure     []float64
 	energy      []float64
@@ -23,15 +26,25 @@ type worker struct {
 	equivalent  []float64
 	utilisation []float64 // NaN without a limit
 	isYielded   []bool
+	curve       []float64 // energy under the material's curve; NaN beyond its end
 
 	// The places of the current cell: its nodes, or one place for cell data.
 	stress, strain []mesh.SymmetricTensor
+	plastic        []mesh.SymmetricTensor
+	displacement   []Vector
+	gradients      [][3]float64
 	elements       []float64
-	rational       []float64 // room for the shape functions of Bézier cells
+	rational       []float64        // room for the shape functions of Bézier cells
+	rule           *mesh.Tabulation // of integration points, for
+	ruleShape      *mesh.Shape
+	placeValues    []float64 // shape functions at the current integration point; nil elsewhere
 }
 
 func newWorker(p *plan) *worker {
-	return &worker{plan: p, part: newPart(p)}
+	return &worker{
+		plan: p, part: newPart(p), isPerCell: p.inputs.isPerCell(),
+		smallest: 1e-12 * math.Pow(p.bounds.Diagonal(), float64(p.dimension)),
+	}
 }
 
 // visit takes one chunk.
@@ -59,7 +72,7 @@ func (w *worker) grow(count int) {
 		return
 	}
 	w.region, w.peakNode, w.isYielded = make([]int32, count), make([]int32, count), make([]bool, count)
-	for _, column := range []*[]float64{&w.measure, &w.energy, &w.volumetric, &w.density, &w.peak, &w.equivalent, &w.utilisation} {
+	for _, column := range []*[]float64{&w.measure, &w.energy, &w.volumetric, &w.density, &w.peak, &w.equivalent, &w.utilisation, &w.curve} {
 		*column = make([]float64, count)
 	}
 }
@@ -81,10 +94,18 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 	if err != nil || reason != notExcluded {
 		return reason, err
 	}
-	if w.inputs.isPerCell() {
+	switch {
+	case w.from == FromDisplacement:
+		reason = w.evaluateGradients(chunk, i, r, orientation)
+	case w.isPerCell:
 		reason = w.evaluateCell(chunk, i, r)
-	} else {
+	case w.inputs.rule != nil:
+		reason, err = w.evaluatePoints(chunk, i, r, orientation)
+	default:
 		reason = w.evaluateNodes(chunk, i, r, orientation)
+	}
+	if err != nil {
+		return 0, err
 	}
 	if reason == notExcluded {
 		switch orientation {
@@ -124,9 +145,9 @@ func (w *worker) measureCell(chunk *mesh.Chunk, i int, r *region) (mesh.Orientat
 	}
 	w.measure[i] = measure
 	switch {
-	case math.IsNaN(measure) || math.IsInf(measure, 0):
+	case !isFinite(measure):
 		return 0, notFinite, nil
-	case math.Abs(flat) <= 1e-12*math.Pow(w.bounds.Diagonal(), float64(w.dimension)):
+	case math.Abs(flat) <= w.smallest:
 		return 0, degenerateCell, nil
 	}
 	return orientation, notExcluded, nil
@@ -150,22 +171,21 @@ func (w *worker) evaluateCell(chunk *mesh.Chunk, i int, r *region) exclusionReas
 	density := Density(&stress, &strain)
 	w.energy[i] = density * w.measure[i]
 	w.volumetric[i] = 0
-	if r.law != nil {
+	if r.law.IsIsotropic() {
 		w.volumetric[i] = VolumetricDensity(&stress, &strain) * w.measure[i]
 	}
 	w.density[i], w.peak[i], w.peakNode[i] = density, density, 0
 	w.isYielded[i] = isYielded
-	w.judge(i, r, &stress)
+	if r.hencky != nil {
+		reached := sum(&strain, w.plasticAt(chunk, i, 0))
+		w.curve[i] = r.hencky.Density(&reached) * w.measure[i]
+	}
+	w.equivalent[i] = r.limit.equivalent(&stress)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i]) || !stress.IsFinite() || !strain.IsFinite() {
 		return notFinite
 	}
 	return notExcluded
-}
-
-// judge writes the equivalent stress and the utilisation of one place.
-func (w *worker) judge(i int, r *region, stress *mesh.SymmetricTensor) {
-	w.equivalent[i] = VonMisesStress(stress)
-	w.utilisation[i] = w.equivalent[i] / r.limit
 }
 
 // evaluateNodes fills the columns of a cell whose fields, or some of them, are on its
@@ -176,17 +196,17 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	if !shape.Interpolates() {
 		return unsupportedCell
 	}
-	if count := shape.NodeCount; len(w.stress) < count {
-		w.stress, w.strain = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
-		w.rational = make([]float64, count)
-	}
+	w.growNodes(shape.NodeCount)
 	w.isYielded[i] = false
-	w.peak[i] = math.Inf(-1)
-	largest := math.Inf(-1)
+	w.peak[i] = -infinity
+	largest, least := -infinity, infinity
 	for k, node := range w.cell.Nodes {
 		stress, strain := &w.stress[k], &w.strain[k]
 		if w.at(chunk, i, node, r, stress, strain) {
 			w.isYielded[i] = true
+		}
+		if r.hencky != nil {
+			w.plastic[k] = *w.plasticAt(chunk, i, node)
 		}
 		if !stress.IsFinite() || !strain.IsFinite() {
 			return notFinite
@@ -194,11 +214,11 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 		if density := Density(stress, strain); density > w.peak[i] {
 			w.peak[i], w.peakNode[i] = density, int32(k)
 		}
-		w.judge(i, r, stress)
-		largest = max(largest, w.equivalent[i])
+		equivalent := r.limit.equivalent(stress)
+		largest, least = max(largest, equivalent), min(least, equivalent)
 	}
-	w.equivalent[i] = largest
-	w.utilisation[i] = largest / r.limit
+	w.equivalent[i] = r.limit.governing(largest, least)
+	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
 	w.integrate(chunk, i, r, orientation)
 	w.density[i] = w.energy[i] / w.measure[i]
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
@@ -207,18 +227,30 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 	return notExcluded
 }
 
-// integrate computes ∫ ½ σ:ε dV and its volumetric share from the nodal tensors.
-func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) {
-	shape := w.cell.Shape
-	rule := shape.ProductRule()
-	if w.options.Idealisation == Axisymmetric {
-		rule = shape.RingProductRule()
+// growNodes makes room for the nodes of a cell.
+func (w *worker) growNodes(count int) {
+	if len(w.stress) >= count {
+		return
 	}
+	w.stress, w.strain, w.plastic = make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count), make([]mesh.SymmetricTensor, count)
+	w.displacement, w.gradients, w.rational = make([]Vector, count), make([][3]float64, count), make([]float64, count)
+}
+
+// productRule returns the rule that integrates the product of two interpolated fields.
+func (w *worker) productRule() *mesh.Tabulation {
+	if w.options.Idealisation == Axisymmetric {
+		return w.cell.Shape.RingProductRule()
+	}
+	return w.cell.Shape.ProductRule()
+}
+
+// elementsOf returns the measure that belongs to each point of the rule, and the
+// factor (thickness, sign of a mirrored cell) that is common to all.
+func (w *worker) elementsOf(rule *mesh.Tabulation, chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) (elements []float64, factor float64) {
 	if len(w.elements) < len(rule.Weights) {
 		w.elements = make([]float64, len(rule.Weights))
 	}
-	elements := w.elements[:len(rule.Weights)]
-	factor := 1.0
+	elements, factor = w.elements[:len(rule.Weights)], 1
 	switch w.options.Idealisation {
 	case Solid:
 		w.cell.VolumeElements(rule, elements)
@@ -231,7 +263,14 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 	if orientation == mesh.Mirrored {
 		factor = -factor
 	}
-	var energy, volumetric float64
+	return elements, factor
+}
+
+// integrate computes ∫ ½ σ:ε dV and its volumetric share from the nodal tensors.
+func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh.Orientation) {
+	rule := w.productRule()
+	elements, factor := w.elementsOf(rule, chunk, i, r, orientation)
+	var energy, volumetric, curve float64
 	for q, element := range elements {
 		values := w.cell.Values(rule, q, w.rational)
 		var stress, strain mesh.SymmetricTensor
@@ -244,10 +283,15 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 		}
 		energy += float64(Density(&stress, &strain) * element)
 		volumetric += float64(VolumetricDensity(&stress, &strain) * element)
+		if r.hencky != nil {
+			reached := w.reachedAt(&strain, values)
+			curve += float64(r.hencky.Density(&reached) * element)
+		}
 	}
+	w.curve[i] = curve * factor
 	w.energy[i] = energy * factor
 	w.volumetric[i] = 0
-	if r.law != nil {
+	if r.law.IsIsotropic() {
 		w.volumetric[i] = volumetric * factor
 	}
 }
@@ -257,50 +301,104 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 // strain.
 func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, strain *mesh.SymmetricTensor) (isYielded bool) {
 	in := w.inputs
-	var plastic mesh.SymmetricTensor
-	if in.plasticStrain.exists() {
-		plastic = in.plasticStrain.at(chunk, cell, node)
-		isYielded = plastic != mesh.SymmetricTensor{}
-	}
-	if in.equivalentPlasticStrain.exists() && in.equivalentPlasticStrain.at(chunk, cell, node) != 0 {
-		isYielded = true
-	}
+	inelastic, isYielded := w.inelasticAt(chunk, cell, node, r)
 	if in.strain.exists() {
 		*strain = in.strain.at(chunk, cell, node)
-		w.subtractInelastic(chunk, cell, node, r, &plastic, strain)
+		switch {
+		case !in.strainIsElastic:
+			for i := range strain {
+				strain[i] -= inelastic[i]
+			}
+		case w.options.Idealisation == PlaneStrain && !in.strain.layout.Has(2):
+			strain[2] = -inelastic[2] // the total is 0
+		}
 	}
 	if in.stress.exists() {
 		*stress = in.stress.at(chunk, cell, node)
 	}
 	w.complete(r, stress, strain)
+	w.noteNonZero(stress, strain)
+	return isYielded
+}
+
+// plasticAt returns the plastic strain at one place, zero where the file has none.
+func (w *worker) plasticAt(chunk *mesh.Chunk, cell int, node int32) *mesh.SymmetricTensor {
+	var plastic mesh.SymmetricTensor
+	if w.inputs.plasticStrain.exists() {
+		plastic = w.inputs.plasticStrain.at(chunk, cell, node)
+	}
+	return &plastic
+}
+
+// reachedAt returns the strain that the curve was loaded to at a point of the rule:
+// the elastic strain and the interpolated plastic one, without the thermal.
+func (w *worker) reachedAt(elastic *mesh.SymmetricTensor, values []float64) mesh.SymmetricTensor {
+	reached := *elastic
+	for k, value := range values {
+		for c := range reached {
+			reached[c] += float64(value * w.plastic[k][c])
+		}
+	}
+	return reached
+}
+
+// sum adds two tensors.
+func sum(a, b *mesh.SymmetricTensor) mesh.SymmetricTensor {
+	result := *a
+	for c := range result {
+		result[c] += b[c]
+	}
+	return result
+}
+
+// noteNonZero remembers that there was a value which is not zero.
+func (w *worker) noteNonZero(stress, strain *mesh.SymmetricTensor) {
 	if !w.part.hasStress {
 		w.part.hasStress = *stress != mesh.SymmetricTensor{}
 	}
 	if !w.part.hasStrain {
 		w.part.hasStrain = *strain != mesh.SymmetricTensor{}
 	}
-	return isYielded
 }
 
-// subtractInelastic turns the strain array's value into the elastic strain: the total
-// minus the thermal minus the plastic one. An elastic strain that lacks zz gets its zz
-// this way in plane strain, where the total is 0.
-func (w *worker) subtractInelastic(chunk *mesh.Chunk, cell int, node int32, r *region, plastic, strain *mesh.SymmetricTensor) {
+// inelasticAt returns the thermal and plastic strain at one place, and whether there
+// is any plastic strain. An array of thermal strain wins over temperature.
+func (w *worker) inelasticAt(chunk *mesh.Chunk, cell int, node int32, r *region) (inelastic mesh.SymmetricTensor, isYielded bool) {
 	in := w.inputs
-	var thermal mesh.SymmetricTensor
+	if in.plasticStrain.exists() {
+		inelastic = in.plasticStrain.at(chunk, cell, node)
+		isYielded = inelastic != mesh.SymmetricTensor{}
+	}
+	if in.equivalentPlasticStrain.exists() && in.equivalentPlasticStrain.at(chunk, cell, node) != 0 {
+		isYielded = true
+	}
 	switch {
 	case in.thermalStrain.exists():
-		thermal = in.thermalStrain.at(chunk, cell, node)
+		thermal := in.thermalStrain.at(chunk, cell, node)
+		for i := range thermal {
+			inelastic[i] += thermal[i]
+		}
 	case in.temperature.exists() && r.material != nil && !math.IsNaN(r.material.ThermalExpansion):
-		rise := in.temperature.at(chunk, cell, node) - r.material.ReferenceTemperature
-		expansion := r.material.ThermalExpansion * rise
-		thermal = mesh.SymmetricTensor{expansion, expansion, expansion}
-	}
-	for i := range strain {
-		if !in.strainIsElastic || i == 2 && w.options.Idealisation == PlaneStrain && !in.strain.layout.Has(2) {
-			strain[i] -= thermal[i] + plastic[i]
+		rise := w.temperatureAt(chunk, cell, node) - r.material.ReferenceTemperature
+		for i := range 3 {
+			inelastic[i] += float64(r.material.ThermalExpansion * rise)
 		}
 	}
+	return inelastic, isYielded
+}
+
+// temperatureAt returns the temperature at one place; at an integration point that of
+// the nodes is interpolated.
+func (w *worker) temperatureAt(chunk *mesh.Chunk, cell int, node int32) float64 {
+	in := &w.inputs.temperature
+	if w.placeValues == nil || in.on != mesh.OnPoint {
+		return in.at(chunk, cell, node)
+	}
+	var temperature float64
+	for k, value := range w.placeValues {
+		temperature += float64(value * in.at(chunk, cell, w.cell.Nodes[k]))
+	}
+	return temperature
 }
 
 // complete fills in what the file lacks, by the law: the other tensor where there is
@@ -310,26 +408,22 @@ func (w *worker) complete(r *region, stress, strain *mesh.SymmetricTensor) {
 	switch w.from {
 	case FromStressStrain:
 		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
-			stress[2] = r.law.StressZZ(stress, strain[2])
+			r.law.CompletePlaneStrain(stress, strain[2])
 		}
 		if w.options.Idealisation == PlaneStress && !in.strain.layout.Has(2) && r.law != nil {
 			strain[2] = r.law.Strain(stress)[2]
 		}
 	case FromStress:
 		if w.options.Idealisation == PlaneStrain && !in.stress.layout.Has(2) {
-			stress[2] = r.law.StressZZ(stress, 0)
+			r.law.CompletePlaneStrain(stress, 0)
 		}
 		*strain = r.law.Strain(stress)
 	case FromStrain:
-		if w.options.Idealisation == PlaneStress {
-			strain[2] = r.law.PlaneStressStrainZZ(strain)
-		}
-		*stress = r.law.Stress(strain)
-		if w.options.Idealisation == PlaneStress {
-			stress[2] = 0 // but for rounding
-		}
+		*stress = w.stressOf(r, strain)
 	}
 }
+
+var infinity = math.Inf(1)
 
 // isFinite reports whether all values are finite.
 func isFinite(values ...float64) bool {
@@ -363,6 +457,9 @@ func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 	a.volume.AddAll(w.measure[low:high])
 	a.energy.AddAll(w.energy[low:high])
 	a.volumetric.AddAll(w.volumetric[low:high])
+	if w.regions.regions[number].hencky != nil {
+		w.gatherCurve(a, low, high)
+	}
 	for i := low; i < high; i++ {
 		p := place{source: chunk.Source, cell: chunk.First + int64(i)}
 		if w.isYielded[i] {
@@ -371,14 +468,25 @@ func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 		if density := w.density[i]; density < 0 {
 			w.part.negative[math.Float64bits(density)>>52&0x7ff]++
 		}
-		a.maxEquivalent = max(a.maxEquivalent, w.equivalent[i])
+		a.maxEquivalent, a.minEquivalent = max(a.maxEquivalent, w.equivalent[i]), min(a.minEquivalent, w.equivalent[i])
 		if a.maxDensity.takes(w.density[i], p) {
 			a.maxDensity = best{true, w.density[i], p, w.centroidOf(chunk, i)}
 		}
-		if at := (place{p.source, p.cell, w.peakNode[i]}); a.peak.takes(w.peak[i], at) {
+		if at := (place{p.source, p.cell, w.peakNode[i]}); !math.IsNaN(w.peak[i]) && a.peak.takes(w.peak[i], at) {
 			a.peak = best{true, w.peak[i], at, w.peakPlace(chunk, i)}
 		}
 		w.rank(chunk, i, p, a)
+	}
+}
+
+// gatherCurve adds the energies under the curve of the cells [low, high).
+func (w *worker) gatherCurve(a *account, low, high int) {
+	for _, energy := range w.curve[low:high] {
+		if math.IsNaN(energy) {
+			a.beyondCurve++
+			continue
+		}
+		a.curveEnergy.Add(energy)
 	}
 }
 
@@ -421,8 +529,16 @@ func (w *worker) centroidOf(chunk *mesh.Chunk, i int) Vector {
 
 // peakPlace returns where the peak density of cell i was seen.
 func (w *worker) peakPlace(chunk *mesh.Chunk, i int) Vector {
-	if w.inputs.isPerCell() {
+	if w.isPerCell {
 		return w.centroidOf(chunk, i)
+	}
+	if w.inputs.rule != nil {
+		chunk.Cell(i, &w.cell)
+		rule, err := w.integrationRule(w.cell.Shape)
+		if err != nil {
+			panic(err) // the same rule served the same cell a moment ago
+		}
+		return w.cell.Place(rule, int(w.peakNode[i]))
 	}
 	node := chunk.Nodes[int(chunk.Start[i])+int(w.peakNode[i])]
 	return Vector(chunk.Points[3*node : 3*node+3])

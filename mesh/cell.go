@@ -18,7 +18,7 @@ type Cell struct {
 	// Bézier cells look at it.
 	RationalWeights []float64
 
-	scratch polyhedronFaces
+	faces faceList // working memory
 }
 
 // An Orientation tells what the Jacobian determinants at a cell's corners have in
@@ -50,18 +50,18 @@ func (c *Cell) point(node int) (x, y, z float64) {
 	return p[0], p[1], p[2]
 }
 
+// node returns the coordinates of a node as a vector.
+func (c *Cell) node(node int) [3]float64 {
+	x, y, z := c.point(node)
+	return [3]float64{x, y, z}
+}
+
 // Middle returns the mean of the cell's points.
 func (c *Cell) Middle() (middle [3]float64) {
 	for i := range c.Nodes {
-		x, y, z := c.point(i)
-		middle[0] += x
-		middle[1] += y
-		middle[2] += z
+		add(&middle, 1, c.node(i))
 	}
-	for axis := range middle {
-		middle[axis] /= float64(len(c.Nodes))
-	}
-	return middle
+	return scaled(middle, 1/float64(len(c.Nodes)))
 }
 
 // IsRational reports whether the cell's shape functions carry weights of its own.
@@ -80,10 +80,7 @@ func (c *Cell) Place(t *Tabulation, point int) (place [3]float64) {
 		return c.rationalPlace(values)
 	}
 	for i, value := range values {
-		x, y, z := c.point(i)
-		place[0] += float64(value * x)
-		place[1] += float64(value * y)
-		place[2] += float64(value * z)
+		add(&place, value, c.node(i))
 	}
 	return place
 }
@@ -134,27 +131,18 @@ func (c *Cell) stretch(t *Tabulation, point int) float64 {
 	xr, yr, zr, xs, ys, zs, xt, yt, zt := c.jacobian(t, point)
 	switch c.Shape.Dimension {
 	case 1:
-		return length(xr, yr, zr)
+		return norm([3]float64{xr, yr, zr})
 	case 2:
-		return length(float64(yr*zs)-float64(zr*ys), float64(zr*xs)-float64(xr*zs), float64(xr*ys)-float64(yr*xs))
+		return norm(cross([3]float64{xr, yr, zr}, [3]float64{xs, ys, zs}))
 	}
 	return determinant(xr, yr, zr, xs, ys, zs, xt, yt, zt)
-}
-
-func length(x, y, z float64) float64 {
-	return math.Sqrt(float64(x*x) + float64(y*y) + float64(z*z))
 }
 
 // cornerOrientation judges the Jacobian determinants at the corners. The apex of a
 // pyramid, where it vanishes, is not among them.
 func (c *Cell) cornerOrientation() Orientation {
-	if !c.IsRational() {
-		switch c.Shape.form {
-		case wedgeForm:
-			return c.wedgeOrientation()
-		case pyramidForm:
-			return c.pyramidOrientation()
-		}
+	if c.Shape.form == wedgeForm && !c.IsRational() {
+		return c.wedgeOrientation()
 	}
 	return c.tabulatedOrientation()
 }

@@ -74,7 +74,7 @@ const (
 	loosePoints               // points, without measure
 	chain                     // lines in a row
 	strip                     // triangles in a row
-	fan                       // plane polygon: triangles about its middle
+	fan                       // plane polygon: triangles about a corner
 	prism                     // two polygons joined by quadrilaterals
 	polyhedral                // bounded by polygons that the file lists
 	unsupported               // recognised, but without functions and measure
@@ -89,10 +89,10 @@ type cellTypeRow struct {
 	// middles lists the nodes after the corners, each by the corners in whose middle
 	// it lies. For Lagrange cells it is their one variant that is no lattice.
 	middles string
-	variant int // the number of corners and middles; not written in the table
+	variant int // the node count of that variant; not written in the table
 
 	dimension   int    // that of the unit cell is not written in the table
-	least, most int    // node count; that of corners and middles is not written
+	least, most int    // node counts; that of corners and middles is not written
 	reason      string // why the type is unsupported
 }
 
@@ -200,13 +200,25 @@ var cellTypeRows = func() (rows [256]*cellTypeRow) {
 		for _, dimension := range row.unit.simplices {
 			row.dimension += dimension
 		}
-		row.variant = len(row.unit.corners) + len(strings.Fields(row.middles))
-		if row.family == middles {
-			row.least, row.most = row.variant, row.variant
+		count := len(row.unit.corners) + len(strings.Fields(row.middles))
+		switch {
+		case row.family == middles:
+			row.least, row.most = count, count
+		case row.middles != "":
+			row.variant = count
 		}
 	}
 	return rows
 }()
+
+// Dimension returns the dimension of the cells of the type, -1 for a number that VTK
+// does not assign.
+func (t CellType) Dimension() int {
+	if row := cellTypeRows[t]; row != nil {
+		return row.dimension
+	}
+	return -1
+}
 
 func (t CellType) String() string {
 	if row := cellTypeRows[t]; row != nil {

@@ -54,8 +54,7 @@ func (c *Cell) cornerDeterminant(at, first, second, third int) float64 {
 	return determinant(ax-x, ay-y, az-z, bx-x, by-y, bz-z, cx-x, cy-y, cz-z)
 }
 
-// wedgeOrientation judges the six corners of a linear wedge, and pyramidOrientation the
-// four base corners of a linear pyramid.
+// wedgeOrientation judges the six corners of a linear wedge.
 func (c *Cell) wedgeOrientation() Orientation {
 	least, greatest := math.Inf(1), math.Inf(-1)
 	for i := range 3 {
@@ -67,29 +66,21 @@ func (c *Cell) wedgeOrientation() Orientation {
 	return orientationOf(least, greatest)
 }
 
-func (c *Cell) pyramidOrientation() Orientation {
-	least, greatest := math.Inf(1), math.Inf(-1)
-	for i := range 4 {
-		d := c.cornerDeterminant(i, (i+1)%4, (i+3)%4, 4)
-		least, greatest = min(least, d), max(greatest, d)
-	}
-	return orientationOf(least, greatest)
-}
-
 // tetrahedronVolume returns a sixth of the determinant of three edges.
 func (c *Cell) tetrahedronVolume() float64 {
 	return c.cornerDeterminant(0, 1, 2, 3) / 6
 }
 
-// hexahedronVolume returns the volume of the trilinear map of eight nodes and the least
-// and greatest Jacobian determinant at its corners.
+// hexahedronVolume returns the volume of the trilinear map of eight nodes and the
+// orientation of its corners, where those folded into one count as zero: of a pyramid's
+// the four of the base decide.
 //
 // All in plain variables: written with small functions of vectors it takes twice as long.
 //
 // Source: J. Grandy, Efficient computation of volume of hexahedral cells, Lawrence
 // Livermore National Laboratory UCRL-ID-128886 (1997), equation 17: three determinants
 // of the vectors from two opposite corners.
-func (c *Cell) hexahedronVolume() (volume, least, greatest float64) {
+func (c *Cell) hexahedronVolume() (volume float64, orientation Orientation) {
 	order := &c.Shape.order
 	x0, y0, z0 := c.point(int(order[0]))
 	x1, y1, z1 := c.point(int(order[1]))
@@ -122,8 +113,9 @@ func (c *Cell) hexahedronVolume() (volume, least, greatest float64) {
 	d5 := determinant(r45x, r45y, r45z, s56x, s56y, s56z, t15x, t15y, t15z)
 	d6 := determinant(r76x, r76y, r76z, s56x, s56y, s56z, t26x, t26y, t26z)
 	d7 := determinant(r76x, r76y, r76z, s47x, s47y, s47z, t37x, t37y, t37z)
-	least = min(min(min(d0, d1), min(d2, d3)), min(min(d4, d5), min(d6, d7)))
-	greatest = max(max(max(d0, d1), max(d2, d3)), max(max(d4, d5), max(d6, d7)))
+	if !(d0 > 0 && d1 > 0 && d2 > 0 && d3 > 0 && d4 > 0 && d5 > 0 && d6 > 0 && d7 > 0) {
+		orientation = orientationOf(min(d0, d1, d2, d3, d4, d5, d6, d7), max(d0, d1, d2, d3, d4, d5, d6, d7))
+	}
 
 	// From corner 6 and its three neighbours to the corners opposite them.
 	ax, ay, az := x6-x1, y6-y1, z6-z1
@@ -135,12 +127,12 @@ func (c *Cell) hexahedronVolume() (volume, least, greatest float64) {
 	volume = (determinant(ax+bx, ay+by, az+bz, cx, cy, cz, gx, gy, gz) +
 		determinant(bx, by, bz, cx+ex, cy+ey, cz+ez, fx, fy, fz) +
 		determinant(ax, ay, az, ex, ey, ez, fx+gx, fy+gy, fz+gz)) / 12
-	return volume, least, greatest
+	return volume, orientation
 }
 
-// planeArea returns the signed area of a linear plane cell in x and y and the least and
+// linearPlaneArea returns the signed area of a linear plane cell in x and y and the least and
 // greatest Jacobian determinant at its corners.
-func (c *Cell) planeArea() (area, least, greatest float64) {
+func (c *Cell) linearPlaneArea() (area, least, greatest float64) {
 	order := &c.Shape.order
 	x0, y0, _ := c.point(int(order[0]))
 	x1, y1, _ := c.point(int(order[1]))
@@ -156,4 +148,30 @@ func (c *Cell) planeArea() (area, least, greatest float64) {
 	d3 := float64((x2-x3)*(y3-y0)) - float64((x3-x0)*(y2-y3))
 	area = (float64((x2-x0)*(y3-y1)) - float64((x3-x1)*(y2-y0))) / 2
 	return area, min(min(d0, d1), min(d2, d3)), max(max(d0, d1), max(d2, d3))
+}
+
+// maxFlatWarp is the largest angle between an edge of a quadrilateral and its mean plane
+// at which it counts as flat. The area differs by the square of it.
+const maxFlatWarp = 1e-8
+
+// flatArea returns the area of a convex flat quadrilateral in space, and whether the cell
+// is one.
+func (c *Cell) flatArea() (area float64, isFlat bool) {
+	var p [4][3]float64
+	for i := range p {
+		p[i] = c.node(int(c.Shape.order[i]))
+	}
+	across := cross(minus(p[2], p[0]), minus(p[3], p[1]))
+	size := norm(across)
+	edge := minus(p[1], p[0])
+	if !(size > 0 && math.Abs(dot(edge, across)) <= maxFlatWarp*norm(edge)*size) {
+		return 0, false
+	}
+	for i := range p {
+		next, last := minus(p[(i+1)%4], p[i]), minus(p[(i+3)%4], p[i])
+		if !(dot(cross(next, last), across) >= 0) {
+			return 0, false
+		}
+	}
+	return size / 2, true
 }

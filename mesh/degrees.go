@@ -17,7 +17,7 @@ func (row *cellTypeRow) latticeDegrees(nodeCount int, stated [3]int) (degrees [3
 	} else {
 		degrees, err = row.countedDegrees(nodeCount)
 	}
-	if err != nil && nodeCount == row.variant {
+	if err != nil && row.middles != "" && nodeCount == row.variant {
 		return [3]int{}, false, nil
 	}
 	return degrees, true, err

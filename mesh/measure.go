@@ -12,10 +12,10 @@ func (c *Cell) Volume() (volume float64, orientation Orientation) {
 	case !s.Supported:
 		return math.NaN(), Regular
 	case s.row.family == polyhedral:
-		volume, _ = c.polyhedronMoments()
+		volume, _ = c.faceMoments()
 		return volume, Regular
 	case s.row.family == prism:
-		volume, _ = c.prismMoments()
+		volume, _ = c.faceMoments()
 		return volume, c.prismOrientation()
 	}
 	form := s.form
@@ -26,11 +26,10 @@ func (c *Cell) Volume() (volume float64, orientation Orientation) {
 	case tetrahedronForm:
 		volume = c.tetrahedronVolume()
 		return volume, orientationOf(volume, volume)
-	case hexahedronForm:
-		volume, least, greatest := c.hexahedronVolume()
-		return volume, orientationOf(least, greatest)
-	case wedgeForm, pyramidForm:
-		volume, _, _ = c.hexahedronVolume()
+	case hexahedronForm, pyramidForm:
+		return c.hexahedronVolume()
+	case wedgeForm:
+		volume, _ = c.hexahedronVolume()
 	default:
 		volume = c.integratedDeterminant()
 	}
@@ -69,7 +68,7 @@ func (c *Cell) PlaneArea() (area float64, orientation Orientation) {
 		return c.piecePlaneArea()
 	}
 	if form := c.Shape.form; (form == triangleForm || form == quadForm) && !c.IsRational() {
-		area, least, greatest := c.planeArea()
+		area, least, greatest := c.linearPlaneArea()
 		return area, orientationOf(least, greatest)
 	}
 	return c.integratedDeterminant(), c.cornerOrientation()
@@ -90,7 +89,7 @@ func (c *Cell) RingVolume(axisX bool) (volume, smallestRadius float64, orientati
 		t := c.productRule()
 		volume = 0
 		for i, weight := range t.Weights {
-			element := float64(weight * c.jacobianDeterminant(t, i))
+			element := weight * c.jacobianDeterminant(t, i)
 			volume += float64(element * radius(c.Place(t, i), axisX))
 		}
 	}
@@ -100,8 +99,7 @@ func (c *Cell) RingVolume(axisX bool) (volume, smallestRadius float64, orientati
 func (c *Cell) smallestRadius(axisX bool) float64 {
 	smallest := math.Inf(1)
 	for i := range c.Nodes {
-		x, y, z := c.point(i)
-		smallest = min(smallest, radius([3]float64{x, y, z}, axisX))
+		smallest = min(smallest, radius(c.node(i), axisX))
 	}
 	return smallest
 }
@@ -131,6 +129,10 @@ func (c *Cell) Measure() float64 {
 			return volume
 		}
 		return math.Abs(volume)
+	case c.Shape.form == quadForm && !c.IsRational():
+		if area, isFlat := c.flatArea(); isFlat {
+			return area
+		}
 	}
 	t := c.spaceRule()
 	sum := 0.0
@@ -157,11 +159,8 @@ func (c *Cell) spaceRule() *Tabulation {
 // of a cell without measure, or not Supported, is the mean of its points.
 func (c *Cell) Centroid() [3]float64 {
 	switch family := c.Shape.row.family; {
-	case family == polyhedral:
-		volume, first := c.polyhedronMoments()
-		return c.centroidFromMiddle(first, volume)
-	case family == prism:
-		volume, first := c.prismMoments()
+	case family == polyhedral, family == prism:
+		volume, first := c.faceMoments()
 		return c.centroidFromMiddle(first, volume)
 	case c.pieceCount() > 0:
 		return c.pieceCentroid()
@@ -172,12 +171,9 @@ func (c *Cell) Centroid() [3]float64 {
 	var first [3]float64
 	whole := 0.0
 	for i, weight := range t.Weights {
-		element := float64(weight * c.stretch(t, i))
-		place := c.Place(t, i)
+		element := weight * c.stretch(t, i)
 		whole += element
-		for axis := range first {
-			first[axis] += float64(element * place[axis])
-		}
+		add(&first, element, c.Place(t, i))
 	}
 	return c.centroidOf(first, whole)
 }
@@ -194,11 +190,9 @@ func (c *Cell) RingCentroid(axisX bool) [3]float64 {
 	whole := 0.0
 	for i, weight := range t.Weights {
 		place := c.Place(t, i)
-		element := float64(weight * c.jacobianDeterminant(t, i) * radius(place, axisX))
+		element := weight * c.jacobianDeterminant(t, i) * radius(place, axisX)
 		whole += element
-		for axis := range first {
-			first[axis] += float64(element * place[axis])
-		}
+		add(&first, element, place)
 	}
 	return c.centroidOf(first, whole)
 }
@@ -208,7 +202,7 @@ func (c *Cell) centroidOf(first [3]float64, whole float64) [3]float64 {
 	if whole == 0 || math.IsNaN(whole) {
 		return c.Middle()
 	}
-	return [3]float64{first[0] / whole, first[1] / whole, first[2] / whole}
+	return scaled(first, 1/whole)
 }
 
 // centroidFromMiddle is centroidOf for first moments about the cell's middle.

@@ -4,9 +4,10 @@ import "math"
 
 // Poly-lines, triangle strips and polygons are integrated piece by piece: over the
 // lines of a poly-line, the triangles of a strip, and for a polygon over the triangles
-// between its middle and each edge. Those of a polygon count with the sign that they
-// have against the whole, so that it may be concave; the edges of a quadratic polygon
-// are curved, and the triangles have a node in the middle of each.
+// between its first corner and each edge. Those of a polygon count with the sign that
+// they have against the whole, so that it may be concave. The edges of a quadratic
+// polygon are curved, and the triangles have six nodes; two of them have two corners in
+// one point, and the area between a curved edge and its chord.
 
 // A piece is one of them: its nodes and the rule of its shape.
 type piece struct {
@@ -50,58 +51,15 @@ func (c *Cell) piece(i int, to *piece) {
 	to.count, to.rule = s.piece.NodeCount, s.piece.ProductRule()
 	switch s.row.family {
 	case chain:
-		to.nodes[0], to.nodes[1] = c.place(i), c.place(i+1)
+		to.nodes[0], to.nodes[1] = c.node(i), c.node(i+1)
 	case strip: // every second triangle is turned
-		to.nodes[0], to.nodes[1], to.nodes[2] = c.place(i+i%2), c.place(i+1-i%2), c.place(i+2)
+		to.nodes[0], to.nodes[1], to.nodes[2] = c.node(i+i%2), c.node(i+1-i%2), c.node(i+2)
 	case fan:
-		from, behind := c.place(i), c.place((i+1)%s.CornerCount)
-		to.nodes[0], to.nodes[1], to.nodes[2] = c.cornerMean(), from, behind
+		apex, from, behind := c.node(0), c.node(i), c.node((i+1)%s.CornerCount)
+		to.nodes[0], to.nodes[1], to.nodes[2] = apex, from, behind
 		if to.count == 6 {
-			to.nodes[3] = between(to.nodes[0], from)
-			to.nodes[4] = c.place(s.CornerCount + i)
-			to.nodes[5] = between(behind, to.nodes[0])
+			to.nodes[3], to.nodes[4], to.nodes[5] = between(apex, from), c.node(s.CornerCount+i), between(behind, apex)
 		}
-	}
-}
-
-// place returns the coordinates of a node as a vector.
-func (c *Cell) place(node int) [3]float64 {
-	x, y, z := c.point(node)
-	return [3]float64{x, y, z}
-}
-
-// cornerMean returns the mean of the corners.
-func (c *Cell) cornerMean() (mean [3]float64) {
-	for i := range c.Shape.CornerCount {
-		add(&mean, 1, c.place(i))
-	}
-	return scaled(mean, 1/float64(c.Shape.CornerCount))
-}
-
-func between(a, b [3]float64) [3]float64 {
-	return [3]float64{(a[0] + b[0]) / 2, (a[1] + b[1]) / 2, (a[2] + b[2]) / 2}
-}
-
-func scaled(a [3]float64, by float64) [3]float64 {
-	return [3]float64{a[0] * by, a[1] * by, a[2] * by}
-}
-
-// add adds a multiple of a vector.
-func add(to *[3]float64, factor float64, a [3]float64) {
-	for axis := range to {
-		to[axis] += float64(factor * a[axis])
-	}
-}
-
-func dot(a, b [3]float64) float64 {
-	return float64(a[0]*b[0]) + float64(a[1]*b[1]) + float64(a[2]*b[2])
-}
-
-func cross(a, b [3]float64) [3]float64 {
-	return [3]float64{
-		float64(a[1]*b[2]) - float64(a[2]*b[1]),
-		float64(a[2]*b[0]) - float64(a[0]*b[2]),
-		float64(a[0]*b[1]) - float64(a[1]*b[0]),
 	}
 }
 
@@ -144,15 +102,13 @@ func (c *Cell) pieceVector() (sum [3]float64) {
 // pieceMeasure returns the length or area in space.
 func (c *Cell) pieceMeasure() float64 {
 	if c.Shape.row.family == fan {
-		v := c.pieceVector()
-		return length(v[0], v[1], v[2])
+		return norm(c.pieceVector())
 	}
 	var p piece
 	sum := 0.0
 	for i := range c.pieceCount() {
 		c.piece(i, &p)
-		v := p.vector()
-		sum += length(v[0], v[1], v[2])
+		sum += norm(p.vector())
 	}
 	return sum
 }
@@ -170,7 +126,7 @@ func (c *Cell) pieceCentroid() [3]float64 {
 		c.piece(i, &p)
 		for point := range p.rule.Weights {
 			place, v := p.element(point)
-			element := length(v[0], v[1], v[2])
+			element := norm(v)
 			if c.Shape.row.family == fan {
 				element = dot(v, across)
 			}

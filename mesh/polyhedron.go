@@ -14,7 +14,7 @@ import (
 // A polyhedron's faces may be listed in either direction. They are turned alike where
 // two share an edge, and together so that the volume is positive. Where edges do not
 // pair off (a face may list a node within its neighbour's edge), each face is turned
-// away from the middle instead, and the faces must close: their area vectors add up to
+// away from the middle instead. The faces must close: their area vectors add up to
 // nothing.
 
 // maxGap is the largest sum of the area vectors of a closed polyhedron, in units of the
@@ -26,12 +26,14 @@ const maxGap = 1e-6
 // there other divisions into triangles give the same volume to about that fraction.
 const maxWarp = 1e-4
 
-// polyhedronFaces is the working memory for the faces of one polyhedron.
-type polyhedronFaces struct {
-	start  []int   // position of each face's node count in Cell.Faces
+// faceList is the working memory for the faces of one polyhedron or prism.
+type faceList struct {
+	list   []int32 // as Cell.Faces
+	start  []int   // position of each face's node count in the list
 	parent []int32 // faces that are turned alike make a tree
 	turned []bool  // against the parent
 	edges  []faceEdge
+	prism  []int32 // room for the list of a prism
 }
 
 // A faceEdge is an edge of a face, from its node with the lower number to the higher.
@@ -41,73 +43,86 @@ type faceEdge struct {
 	backward  bool // as the face lists it
 }
 
-// face returns the nodes of face i.
-func (p *polyhedronFaces) face(c *Cell, i int) []int32 {
-	at := p.start[i]
-	return c.Faces[at+1 : at+1+int(c.Faces[at])]
-}
-
-// find sets the starts of the faces. It reports whether the list is complete.
-func (p *polyhedronFaces) find(faces []int32) bool {
-	p.start = p.start[:0]
-	if len(faces) == 0 {
+// findFaces sets the list to the cell's faces. It reports whether the list is complete.
+func (c *Cell) findFaces() bool {
+	f := &c.faces
+	f.list = c.Faces
+	if c.Shape.row.family == prism {
+		faces := c.Shape.faceCorners()
+		f.prism = append(f.prism[:0], int32(len(faces)))
+		for _, corners := range faces {
+			f.prism = append(f.prism, int32(len(corners)))
+			for _, corner := range corners {
+				f.prism = append(f.prism, c.Nodes[corner])
+			}
+		}
+		f.list = f.prism
+	}
+	f.start = f.start[:0]
+	if len(f.list) == 0 {
 		return false
 	}
 	at := 1
-	for range faces[0] {
-		if at >= len(faces) || faces[at] < 3 || int(faces[at]) > len(faces)-at-1 {
+	for range f.list[0] {
+		if at >= len(f.list) || f.list[at] < 3 || int(f.list[at]) > len(f.list)-at-1 {
 			return false
 		}
-		p.start = append(p.start, at)
-		at += 1 + int(faces[at])
+		f.start = append(f.start, at)
+		at += 1 + int(f.list[at])
 	}
-	return len(p.start) >= 4
+	return len(f.start) >= 4
+}
+
+// nodes returns the nodes of face i.
+func (f *faceList) nodes(i int) []int32 {
+	at := f.start[i]
+	return f.list[at+1 : at+1+int(f.list[at])]
 }
 
 // root returns the tree of a face and whether the face is turned against it.
-func (p *polyhedronFaces) root(face int32) (root int32, turned bool) {
-	for p.parent[face] != face {
-		above := p.parent[face]
-		if p.parent[above] != above { // halve the way for the next time
-			p.turned[face] = p.turned[face] != p.turned[above]
-			p.parent[face] = p.parent[above]
+func (f *faceList) root(face int32) (root int32, turned bool) {
+	for f.parent[face] != face {
+		above := f.parent[face]
+		if f.parent[above] != above { // halve the way for the next time
+			f.turned[face] = f.turned[face] != f.turned[above]
+			f.parent[face] = f.parent[above]
 		}
-		turned = turned != p.turned[face]
-		face = p.parent[face]
+		turned = turned != f.turned[face]
+		face = f.parent[face]
 	}
 	return face, turned
 }
 
 // turnAlike makes neighbours list their common edges in opposite directions. It reports
 // whether every edge has two faces, and whether that can be done to all faces at once.
-func (p *polyhedronFaces) turnAlike(c *Cell) (paired, orientable bool) {
-	p.parent, p.turned, p.edges = p.parent[:0], p.turned[:0], p.edges[:0]
-	for i := range p.start {
-		p.parent = append(p.parent, int32(i))
-		p.turned = append(p.turned, false)
-		nodes := p.face(c, i)
+func (f *faceList) turnAlike() (paired, orientable bool) {
+	f.parent, f.turned, f.edges = f.parent[:0], f.turned[:0], f.edges[:0]
+	for i := range f.start {
+		f.parent = append(f.parent, int32(i))
+		f.turned = append(f.turned, false)
+		nodes := f.nodes(i)
 		for k, node := range nodes {
 			next := nodes[(k+1)%len(nodes)]
 			if node != next {
-				p.edges = append(p.edges, faceEdge{min(node, next), max(node, next), int32(i), node > next})
+				f.edges = append(f.edges, faceEdge{min(node, next), max(node, next), int32(i), node > next})
 			}
 		}
 	}
-	slices.SortFunc(p.edges, func(a, b faceEdge) int {
+	slices.SortFunc(f.edges, func(a, b faceEdge) int {
 		return cmp.Or(cmp.Compare(a.low, b.low), cmp.Compare(a.high, b.high), cmp.Compare(a.face, b.face))
 	})
-	if len(p.edges)%2 == 1 {
-		return false, false
+	if len(f.edges)%2 == 1 {
+		return false, true
 	}
-	trees := len(p.start)
-	for i := 0; i < len(p.edges); i += 2 {
-		a, b := p.edges[i], p.edges[i+1]
-		third := i+2 < len(p.edges) && p.edges[i+2].low == a.low && p.edges[i+2].high == a.high
+	trees := len(f.start)
+	for i := 0; i < len(f.edges); i += 2 {
+		a, b := f.edges[i], f.edges[i+1]
+		third := i+2 < len(f.edges) && f.edges[i+2].low == a.low && f.edges[i+2].high == a.high
 		if a.low != b.low || a.high != b.high || third {
-			return false, false
+			return false, true
 		}
-		rootA, turnedA := p.root(a.face)
-		rootB, turnedB := p.root(b.face)
+		rootA, turnedA := f.root(a.face)
+		rootB, turnedB := f.root(b.face)
 		against := (a.backward == b.backward) != (turnedA != turnedB)
 		if rootA == rootB {
 			if against {
@@ -115,58 +130,47 @@ func (p *polyhedronFaces) turnAlike(c *Cell) (paired, orientable bool) {
 			}
 			continue
 		}
-		p.parent[rootB], p.turned[rootB] = rootA, against
+		f.parent[rootB], f.turned[rootB] = rootA, against
 		trees--
 	}
 	return true, trees == 1
 }
 
-// polyhedronMoments returns the volume and its first moments about the cell's middle;
-// NaN where the faces do not close.
-func (c *Cell) polyhedronMoments() (volume float64, first [3]float64) {
-	p := &c.scratch
-	if !p.find(c.Faces) {
+// faceMoments returns the volume of a polyhedron or prism and its first moments about
+// the cell's middle. A prism's volume has the sign of its numbering; a polyhedron's is
+// NaN where its faces do not close.
+func (c *Cell) faceMoments() (volume float64, first [3]float64) {
+	f := &c.faces
+	if !c.findFaces() {
 		return math.NaN(), first
 	}
+	isPrism := c.Shape.row.family == prism
+	paired, orientable := false, true
+	if !isPrism {
+		paired, orientable = f.turnAlike()
+	}
 	middle := c.Middle()
-	paired, orientable := p.turnAlike(c)
 	gap, area := [3]float64{}, 0.0
-	for i := range p.start {
-		part, moments, vector := c.coneMoments(p.face(c, i), middle)
-		sign := 1.0
+	for i := range f.start {
+		part, moments, across := c.coneMoments(f.nodes(i), middle)
+		turned := !isPrism && part < 0
 		if paired {
-			if _, turned := p.root(int32(i)); turned {
-				sign = -1
-			}
-		} else if part < 0 {
+			_, turned = f.root(int32(i))
+		}
+		sign := 1.0
+		if turned {
 			sign = -1
 		}
 		volume += sign * part
 		add(&first, sign, moments)
-		add(&gap, sign, vector)
-		area += length(vector[0], vector[1], vector[2])
+		add(&gap, sign, across)
+		area += norm(across)
 	}
-	if paired && !orientable || length(gap[0], gap[1], gap[2]) > maxGap*area {
+	switch {
+	case !orientable || norm(gap) > maxGap*area:
 		return math.NaN(), first
-	}
-	if volume < 0 {
-		volume, first = -volume, scaled(first, -1)
-	}
-	return volume, first
-}
-
-// prismMoments returns the signed volume of a prism and its first moments about the
-// cell's middle.
-func (c *Cell) prismMoments() (volume float64, first [3]float64) {
-	middle := c.Middle()
-	var nodes [6]int32
-	for _, corners := range c.Shape.faceCorners() {
-		for i, corner := range corners {
-			nodes[i] = c.Nodes[corner]
-		}
-		part, moments, _ := c.coneMoments(nodes[:len(corners)], middle)
-		volume += part
-		add(&first, 1, moments)
+	case volume < 0 && !isPrism:
+		return -volume, scaled(first, -1)
 	}
 	return volume, first
 }
@@ -205,12 +209,6 @@ func (c *Cell) coneMoments(nodes []int32, apex [3]float64) (volume float64, firs
 	return volume, first, vector
 }
 
-// from returns the vector from an origin to a point of the piece.
-func (c *Cell) from(origin [3]float64, point int32) [3]float64 {
-	p := c.Points[3*int(point):][:3]
-	return [3]float64{p[0] - origin[0], p[1] - origin[1], p[2] - origin[2]}
-}
-
 // faceMean returns the mean of the nodes of a face.
 func (c *Cell) faceMean(nodes []int32) (mean [3]float64) {
 	for _, node := range nodes {
@@ -219,28 +217,22 @@ func (c *Cell) faceMean(nodes []int32) (mean [3]float64) {
 	return scaled(mean, 1/float64(len(nodes)))
 }
 
+// from returns the vector from an origin to a point of the piece.
+func (c *Cell) from(origin [3]float64, point int32) [3]float64 {
+	return minus([3]float64(c.Points[3*int(point):][:3]), origin)
+}
+
 // HasWarpedFaces reports whether a face of a polyhedron or a prism does not lie in a
 // plane. The cell's volume then follows from the division into triangles about the mean
 // of the face's nodes. Other cells have maps for their faces, and none is warped.
 func (c *Cell) HasWarpedFaces() bool {
-	switch c.Shape.row.family {
-	case prism:
-		var nodes [6]int32
-		for _, corners := range c.Shape.faceCorners() {
-			for i, corner := range corners {
-				nodes[i] = c.Nodes[corner]
-			}
-			if c.isWarped(nodes[:len(corners)]) {
-				return true
-			}
-		}
-	case polyhedral:
-		p := &c.scratch
-		p.find(c.Faces)
-		for i := range p.start {
-			if c.isWarped(p.face(c, i)) {
-				return true
-			}
+	if family := c.Shape.row.family; family != polyhedral && family != prism {
+		return false
+	}
+	c.findFaces()
+	for i := range c.faces.start {
+		if c.isWarped(c.faces.nodes(i)) {
+			return true
 		}
 	}
 	return false
@@ -250,12 +242,11 @@ func (c *Cell) HasWarpedFaces() bool {
 func (c *Cell) isWarped(nodes []int32) bool {
 	mean := c.faceMean(nodes)
 	_, _, normal := c.coneMoments(nodes, mean)
-	area := length(normal[0], normal[1], normal[2])
 	size, off := 0.0, 0.0
 	for _, node := range nodes {
 		away := c.from(mean, node)
-		size = max(size, length(away[0], away[1], away[2]))
+		size = max(size, norm(away))
 		off = max(off, math.Abs(dot(away, normal)))
 	}
-	return off > maxWarp*size*area
+	return off > maxWarp*size*norm(normal)
 }

@@ -30,14 +30,11 @@ func (c *Cell) rationalPlace(values []float64) [3]float64 {
 	var sum [3]float64
 	whole := 0.0
 	for i, value := range values {
-		x, y, z := c.point(i)
 		value *= c.weight(i)
 		whole += value
-		sum[0] += float64(value * x)
-		sum[1] += float64(value * y)
-		sum[2] += float64(value * z)
+		add(&sum, value, c.node(i))
 	}
-	return [3]float64{sum[0] / whole, sum[1] / whole, sum[2] / whole}
+	return scaled(sum, 1/whole)
 }
 
 // rationalJacobian returns the derivatives of the coordinates by r, s and t.

@@ -206,8 +206,11 @@ func (s *Shape) findFaces() [][]int {
 	var faces [][]int
 	for i, corners := range s.faceCorners() {
 		face := slices.Clone(corners)
-		for node := s.CornerCount; node < s.NodeCount; node++ {
-			if s.basis == nil && node == s.CornerCount+i || s.basis != nil && s.onFace(node, corners) {
+		if s.basis == nil {
+			face = append(face, s.CornerCount+i)
+		}
+		for node := s.CornerCount; s.basis != nil && node < s.NodeCount; node++ {
+			if s.onFace(node, corners) {
 				face = append(face, node)
 			}
 		}

@@ -133,7 +133,7 @@ func (u *unitCell) middle(corners string) ([3]float64, []term) {
 // would be a different one; between nodal values they matter, at the nodes they do not.
 //
 // Source: VTK 9.1's interpolation functions of types 27 and 37, to which the bases made
-// of these functions are equal (TestPyramidsFollowVTK).
+// of these functions are equal (TestShapeFunctionsFollowVTK).
 func foldedMiddle(p power) ([3]float64, []term) {
 	inR, inS, apex := p[0]+p[1] == 2, p[2]+p[3] == 2, p[5] == 1
 	inside := power{1, 1, 1, 1, 1, 1}

@@ -203,6 +203,16 @@ func (w *Walk) Some(ctx context.Context, spans []Span, want *Want, visitor func(
 	return nil
 }
 
+// Spans cuts one piece into spans of a chunk each.
+func (w *Walk) Spans(piece int) []Span {
+	var spans []Span
+	cells := w.model.Pieces[piece].CellCount
+	for low := int64(0); low < cells; low += int64(w.chunkCells) {
+		spans = append(spans, Span{piece, low, min(low+int64(w.chunkCells), cells)})
+	}
+	return spans
+}
+
 // runs cuts the pieces [low, high) into spans of some chunks each.
 func (w *Walk) runs(low, high int) []Span {
 	var runs []Span

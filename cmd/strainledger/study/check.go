@@ -115,7 +115,7 @@ func checkList(list *node, known *key, to *faults) bool {
 		to.add(list.place, "%s is an empty list; write %s", known.path, describeForm(known))
 		return false
 	}
-	each := map[form]form{names: aName, numbers: aNumber, corners: numbers}[known.form]
+	each := map[form]form{names: aName, numbers: aNumber, corners: numbers, matrix: numbers}[known.form]
 	sound := true
 	for _, item := range list.items {
 		one := key{path: known.path, form: each, bound: known.bound}

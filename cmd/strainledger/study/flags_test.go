@@ -28,9 +28,10 @@ func TestFlagsMeanWhatAStudyMeans(t *testing.T) {
 			"[[material]]\nname = \"S355 J2\"\nsource = 'EN 10025-2, \"minimum\"'\n[[material]]\nname = \"355\"\ndensity = 7.85e-6"},
 		"requirement": {Flags{Requirements: []string{"energy of web <= 120"}},
 			"[[require]]\nname = \"energy of web <= 120\"\nquantity = \"energy\"\nregion = \"web\"\nat_most = 120"},
-		"requirements": {Flags{Requirements: []string{"max_utilisation<=1", "volume of a part of <= the web >=-2.5e3"}},
+		"requirements": {Flags{Requirements: []string{"max_utilisation<=1", "volume of a part of <= the web >=-2.5e3", "energy of a <= b<=3"}},
 			"[[require]]\nname = \"max_utilisation <= 1\"\nquantity = \"max_utilisation\"\nat_most = 1\n" +
-				"[[require]]\nname = \"volume of a part of <= the web >= -2500\"\nquantity = \"volume\"\nregion = \"a part of <= the web\"\nat_least = -2500"},
+				"[[require]]\nname = \"volume of a part of <= the web >= -2500\"\nquantity = \"volume\"\nregion = \"a part of <= the web\"\nat_least = -2500\n" +
+				"[[require]]\nname = \"energy of a <= b <= 3\"\nquantity = \"energy\"\nregion = \"a <= b\"\nat_most = 3"},
 	} {
 		t.Run(name, func(t *testing.T) {
 			got, err := Read("", c.flags, nil)
@@ -97,7 +98,7 @@ func TestFlagFaults(t *testing.T) {
 		"number":     {Flags{Materials: []string{"name=S density=heavy"}}, `--material "name=S density=heavy": material.density is the text "heavy"; write a number`},
 		"bound":      {Flags{Materials: []string{"name=S poissons_ratio=0.5"}}, `--material "name=S poissons_ratio=0.5": material.poissons_ratio is 0.5; it must be above -1 and below 0.5`},
 		"not finite": {Flags{Materials: []string{"name=S density=nan"}}, `--material "name=S density=nan": material.density is nan; it must be finite`},
-		"not built":  {Flags{Materials: []string{"name=S curve=c.csv"}}, `--material "name=S curve=c.csv": material.curve is not built yet; remove it`},
+		"not built":  {Flags{Materials: []string{"name=S hardening_isotropic=1"}}, `--material "name=S hardening_isotropic=1": material.hardening_isotropic is not built yet; remove it`},
 		"nameless":   {Flags{Materials: []string{"density=1"}}, `--material "density=1": [[material]] without name; add name = "..."`},
 		"same name":  {Flags{Materials: []string{"name=S", "name=S density=1"}}, `--material "name=S density=1": material.name "S" was given before (--material "name=S"); use another or remove one of the two`},
 		"sign":       {Flags{Requirements: []string{"energy < 3"}}, `--require "energy < 3": no <= or >= in it; write "energy of web <= 120"`},

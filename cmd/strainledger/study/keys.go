@@ -35,6 +35,7 @@ var (
 	positive    = &bound{0, math.Inf(1), true, "must be above 0"}
 	countable   = &bound{1, math.MaxInt32, false, "must be 1 or more"}
 	contraction = &bound{-1, 0.5, true, "must be above -1 and below 0.5"} // positive definite isotropic law
+	aboveOne    = &bound{1, math.Inf(1), true, "must be above 1"}
 	share       = &bound{0, 1, true, "must be above 0 and below 1"}
 )
 
@@ -65,13 +66,12 @@ var (
 	masses        = []string{"kg", "g", "t", "lb"}
 	idealisations = []string{"solid", "plane-stress", "plane-strain", "axisymmetric"}
 	criteria      = []string{"von-mises", "tresca", "max-principal", "distortion-energy", "total-energy"}
-	laterCriteria = criteria[1:]
 	findingCodes  = []string{
 		"not-finite", "all-zero", "tangled-cells", "negative-density", "hooke-mismatch", "total-strain-used", "no-region",
 		"mixed-locations", "study-contradicted",
 		"shear-convention", "component-order", "default-order", "balance-gap", "point-data-across-regions", "large-strain",
 		"units-suspect", "units-not-stated", "regions-overlap", "criterion-unsuited", "parts-not-accounted", "degenerate-cells",
-		"plastic-strain-present", "several-locations", "outside-path", "repeated-piece", "hotspot-pool", "not-mergeable",
+		"plastic-strain-present", "nonlinear-run-advised", "several-locations", "outside-path", "repeated-piece", "hotspot-pool", "not-mergeable",
 		"array-not-everywhere",
 		"ghost-cells", "mirrored-cells", "limit-without-source", "one-value-per-cell",
 	}
@@ -101,7 +101,7 @@ var keys = slices.Concat([]key{
 	{path: "model.repeats", form: aWhole, bound: countable},
 
 	{path: "energy", form: aTable},
-	{path: "energy.from", form: aName, values: []string{"stress-strain", "stress", "strain", "displacement"}, after: []string{"displacement"}},
+	{path: "energy.from", form: aName, values: []string{"stress-strain", "stress", "strain", "displacement"}},
 
 	{path: "fields", form: aTable},
 },
@@ -124,22 +124,22 @@ var keys = slices.Concat([]key{
 		{path: "material.poissons_ratio", form: aNumber, bound: contraction},
 		{path: "material.proportional_limit", form: aNumber, bound: positive},
 		{path: "material.source", form: aName},
-		{path: "material.proportional_limit_compression", form: aNumber, bound: positive, later: true},
+		{path: "material.proportional_limit_compression", form: aNumber, bound: positive},
 		{path: "material.density", form: aNumber, bound: positive},
 		{path: "material.thermal_expansion", form: aNumber, bound: anyNumber},
 		{path: "material.reference_temperature", form: aNumber, bound: anyNumber},
-		{path: "material.youngs_moduli", form: numbers, bound: positive, later: true},
-		{path: "material.shear_moduli", form: numbers, bound: positive, later: true},
-		{path: "material.poissons_ratios", form: numbers, later: true},
-		{path: "material.axes", form: matrix, later: true},
-		{path: "material.stiffness", form: matrix, later: true},
-		{path: "material.stiffness_order", form: aName, later: true},
-		{path: "material.curve", form: aName, later: true},
-		{path: "material.proportional_limit_by", form: aName, later: true},
-		{path: "material.yield_stress", form: aNumber, bound: positive, later: true},
+		{path: "material.youngs_moduli", form: numbers, bound: positive},
+		{path: "material.shear_moduli", form: numbers, bound: positive},
+		{path: "material.poissons_ratios", form: numbers},
+		{path: "material.axes", form: matrix},
+		{path: "material.stiffness", form: matrix},
+		{path: "material.stiffness_order", form: aName},
+		{path: "material.curve", form: aName},
+		{path: "material.proportional_limit_by", form: aName},
+		{path: "material.yield_stress", form: aNumber, bound: positive},
 		{path: "material.hardening_isotropic", form: aNumber, later: true},
 		{path: "material.hardening_kinematic", form: aNumber, later: true},
-		{path: "material.hardening_exponent", form: aNumber, later: true},
+		{path: "material.hardening_exponent", form: aNumber, bound: aboveOne},
 		{path: "material.control_radius", form: aNumber, bound: positive, later: true},
 		{path: "material.critical_density", form: aNumber, bound: positive, later: true},
 		{path: "material.fracture_toughness", form: aNumber, bound: positive, later: true},
@@ -155,11 +155,11 @@ var keys = slices.Concat([]key{
 		{path: "region.select.rest", form: aSwitch},
 		{path: "region.material", form: aName},
 		{path: "region.thickness", form: aNumber, bound: positive},
-		{path: "region.criterion", form: aName, values: criteria, after: laterCriteria},
+		{path: "region.criterion", form: aName, values: criteria},
 		{path: "region.optional", form: aSwitch},
 
 		{path: "limit", form: aTable},
-		{path: "limit.criterion", form: aName, values: criteria, after: laterCriteria},
+		{path: "limit.criterion", form: aName, values: criteria},
 		{path: "limit.list", form: aWhole, bound: countable},
 
 		{path: "hotspots", form: aTable},
@@ -222,8 +222,7 @@ func fieldKeys(field string, locations ...string) []key {
 		{path: path + ".on", form: aName, values: locations},
 	}
 	if slices.Contains(locations, "integration") {
-		rows[2].after = []string{"integration"}
-		rows = append(rows, key{path: path + ".rule", form: aName, later: true})
+		rows = append(rows, key{path: path + ".rule", form: aName})
 	}
 	return rows
 }

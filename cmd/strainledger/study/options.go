@@ -14,19 +14,21 @@ import (
 // checked here: names that have to exist, and keys that go together.
 type reading struct {
 	root   *node
+	folder string // what paths in the study are relative to
 	faults *faults
 	to     energy.Options
 }
 
 // options reads the options from a tree that has been checked.
-func options(root *node, to *faults) energy.Options {
-	r := reading{root: root, faults: to}
+func options(root *node, folder string, to *faults) energy.Options {
+	r := reading{root: root, folder: folder, faults: to}
 	r.units()
 	r.model()
 	r.fields()
 	r.materials()
 	r.regions()
 	r.judgement()
+	r.compressionLimits()
 	return r.to
 }
 
@@ -132,7 +134,10 @@ func (r *reading) field(stated *node) energy.Field {
 		field.On = mesh.OnCell
 	case "point":
 		field.On = mesh.OnPoint
+	case "integration":
+		field.Integration = true
 	}
+	field.Rule = stated.textOf("rule")
 	for _, item := range stated.itemsOf("arrays") {
 		field.Arrays = append(field.Arrays, item.text)
 	}
@@ -162,6 +167,14 @@ func (r *reading) fieldParts(stated *node, field *energy.Field) {
 			r.faults.add(order.place, `%s.order names rr or tt, which belong to an axisymmetric model; write xx yy zz or idealisation = "axisymmetric"`, path)
 		default:
 			field.Order = parsed
+		}
+	}
+	if rule := stated.get("rule"); rule != nil {
+		switch _, err := energy.ParseRule(rule.text); {
+		case !field.Integration:
+			r.faults.add(rule.place, `%s.rule is for values at integration points; add on = "integration" or remove it`, path)
+		case err != nil:
+			r.faults.add(rule.place, "%s.rule: %v", path, err)
 		}
 	}
 	if several == nil {
@@ -199,10 +212,18 @@ func (r *reading) materials() {
 		material.YoungsModulus = stated.numberOf(none, "youngs_modulus")
 		material.PoissonsRatio = stated.numberOf(none, "poissons_ratio")
 		material.ProportionalLimit = stated.numberOf(none, "proportional_limit")
+		material.ProportionalLimitCompression = stated.numberOf(none, "proportional_limit_compression")
+		material.YieldStress = stated.numberOf(none, "yield_stress")
+		material.HardeningExponent = stated.numberOf(none, "hardening_exponent")
+		if exponent := stated.get("hardening_exponent"); exponent != nil && !stated.has("yield_stress") {
+			r.faults.add(exponent.place, "material.hardening_exponent without yield_stress; add yield_stress, the stress at 0.2 %% plastic strain")
+		}
 		material.Source = stated.textOf("source")
 		material.Density = stated.numberOf(none, "density")
 		material.ThermalExpansion = stated.numberOf(none, "thermal_expansion")
 		material.ReferenceTemperature = stated.numberOf(none, "reference_temperature")
+		r.anisotropy(stated, &material)
+		r.curve(stated, &material)
 		r.to.Materials = append(r.to.Materials, material)
 	}
 }
@@ -347,4 +368,37 @@ func (r *reading) judgement() {
 	for _, stated := range r.root.itemsOf("accept") {
 		r.to.Acceptances = append(r.to.Acceptances, energy.Acceptance{Code: stated.textOf("code"), Reason: stated.textOf("reason")})
 	}
+}
+
+// compressionLimits refuses limits in compression that nothing would be held against.
+func (r *reading) compressionLimits() {
+	for _, material := range r.root.itemsOf("material") {
+		stated := material.get("proportional_limit_compression")
+		switch {
+		case stated == nil:
+		case !material.has("proportional_limit"):
+			r.faults.add(stated.place, "material.proportional_limit_compression without proportional_limit; add proportional_limit, the one in tension")
+		case !r.isJudgedByPrincipal(material.textOf("name")):
+			r.faults.add(stated.place, `material.proportional_limit_compression has a meaning by criterion max-principal alone; remove it or write criterion = "max-principal" in [limit] or in a region of the material`)
+		}
+	}
+}
+
+// isJudgedByPrincipal reports whether cells of a material may be judged by their
+// principal stresses. What is stated wrongly may mean anything.
+func (r *reading) isJudgedByPrincipal(material string) bool {
+	principal := func(criterion energy.Criterion, table *node) bool {
+		return criterion == energy.MaxPrincipal || criterion == "" && table.has("criterion")
+	}
+	byStudy := principal(r.to.Limit.Criterion, r.root.child("limit"))
+	regions := r.root.itemsOf("region")
+	for i, stated := range regions {
+		region := &r.to.Regions[i]
+		switch isItsOwn := region.Material == material || region.Material == "" && len(r.to.Materials) == 1; {
+		case !isItsOwn:
+		case principal(region.Criterion, stated), byStudy && !stated.has("criterion"):
+			return true
+		}
+	}
+	return len(regions) == 0 && (byStudy || r.root.has("region"))
 }

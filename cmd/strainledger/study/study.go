@@ -98,7 +98,7 @@ func parseStudy(path string, data []byte, flags Flags, to *faults) (*Study, *nod
 	}
 	flags.add(root, to)
 	check(root, to)
-	study := &Study{Path: path, Options: options(root, to), Time: timeOf(root)}
+	study := &Study{Path: path, Options: options(root, filepath.Dir(path), to), Time: timeOf(root)}
 	if path != "" {
 		sum := sha256.Sum256(data)
 		study.SHA256 = hex.EncodeToString(sum[:])

@@ -45,16 +45,20 @@ youngs_modulus = 210_000
 poissons_ratio = 0.3
 proportional_limit = 330.0
 source = "EN 10025-2, minimum"
+yield_stress = 355
+hardening_exponent = 12.5
 density = 7.85e-6
 thermal_expansion = 1.2e-5
 reference_temperature = -20
 [[material]]
 name = "rubber"
+proportional_limit = 1.5
+proportional_limit_compression = 4
 [[region]]
 name = "web"
 select = { array = "part", values = [1, 2.5, -3] }
 material = "S355"
-criterion = "von-mises"
+criterion = "tresca"
 [[region]]
 name = "Steg, größer"
 select = { block = "hull/*" }
@@ -63,12 +67,13 @@ optional = true
 name = "corner"
 select = { box = [[0, 0, -1.5], [10, 20, 1.5]] }
 material = "rubber"
+criterion = "max-principal"
 [[region]]
 name = "others"
 [region.select]
 rest = true
 [limit]
-criterion = "von-mises"
+criterion = "distortion-energy"
 list = 7
 [hotspots]
 count = 3
@@ -101,6 +106,8 @@ func wholeOptions() energy.Options {
 	steel, rubber := energy.NewMaterial("S355"), energy.NewMaterial("rubber")
 	steel.YoungsModulus, steel.PoissonsRatio, steel.ProportionalLimit = 210000, 0.3, 330
 	steel.Source, steel.Density = "EN 10025-2, minimum", 7.85e-6
+	steel.YieldStress, steel.HardeningExponent = 355, 12.5
+	rubber.ProportionalLimit, rubber.ProportionalLimitCompression = 1.5, 4
 	steel.ThermalExpansion, steel.ReferenceTemperature = 1.2e-5, -20
 	return energy.Options{
 		Title: "Mooring bracket, fillet R5", Length: "mm", Stress: "MPa", Mass: "kg",
@@ -121,12 +128,12 @@ func wholeOptions() energy.Options {
 		},
 		Materials: []energy.Material{steel, rubber},
 		Regions: []energy.Region{
-			{Name: "web", Array: "part", Values: []float64{1, 2.5, -3}, Material: "S355", Criterion: energy.VonMises},
+			{Name: "web", Array: "part", Values: []float64{1, 2.5, -3}, Material: "S355", Criterion: energy.Tresca},
 			{Name: "Steg, größer", Block: "hull/*", Optional: true},
-			{Name: "corner", Box: &energy.Box{Low: energy.Vector{0, 0, -1.5}, High: energy.Vector{10, 20, 1.5}}, Material: "rubber"},
+			{Name: "corner", Box: &energy.Box{Low: energy.Vector{0, 0, -1.5}, High: energy.Vector{10, 20, 1.5}}, Material: "rubber", Criterion: energy.MaxPrincipal},
 			{Name: "others", Rest: true},
 		},
-		Limit:    energy.LimitOptions{Criterion: energy.VonMises, List: 7},
+		Limit:    energy.LimitOptions{Criterion: energy.DistortionEnergy, List: 7},
 		Hotspots: energy.HotspotOptions{Count: 3, By: "energy"},
 		Requirements: []energy.Requirement{
 			{Name: "web stores little", Quantity: "energy", Region: "web", AtMost: 120, AtLeast: energy.None},
@@ -167,7 +174,7 @@ func TestReadWhole(t *testing.T) {
 	want := &Study{
 		Path: path,
 		// sha256sum of the text above
-		SHA256:  "6bc21258ab87c7333a886041f2c1812833b194a8cac576be0458b1fb3acff42e",
+		SHA256:  "79fabb33713fd2289f9e5d9bf539f256418888815512c79ad9a78d163e9e9a4a",
 		Options: wholeOptions(),
 		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
 		Time:    Time{Value: &time},
@@ -218,12 +225,54 @@ func TestMissingNumbersAreNaN(t *testing.T) {
 	material := got.Options.Materials[0]
 	for name, value := range map[string]float64{
 		"youngs_modulus": material.YoungsModulus, "poissons_ratio": material.PoissonsRatio,
-		"proportional_limit": material.ProportionalLimit, "density": material.Density,
+		"proportional_limit": material.ProportionalLimit, "proportional_limit_compression": material.ProportionalLimitCompression,
+		"yield_stress": material.YieldStress, "hardening_exponent": material.HardeningExponent, "density": material.Density,
 		"thermal_expansion": material.ThermalExpansion, "reference_temperature": material.ReferenceTemperature,
 	} {
 		if !math.IsNaN(value) {
 			t.Errorf("%s = %v, want NaN", name, value)
 		}
+	}
+}
+
+// Values at the edge of what may be, and numbers as TOML writes them.
+func TestValuesThatMayJustBe(t *testing.T) {
+	to := &faults{}
+	study, _ := parseStudy("s.toml", []byte(`
+model.repeats = 1
+hotspots.count = 1
+limit.list = 0x01
+[[material]]
+name = "m"
+youngs_modulus = 2_100.5e+0_2
+poissons_ratio = -0.999
+reference_temperature = 0
+[[region]]
+name = "face"
+select = { box = [[0, 0, 5], [1, 1, 5]] }
+[[region]]
+name = "largest exact number"
+select = { array = "a", values = [-9007199254740992] }
+[[require]]
+quantity = "cells"
+at_least = 7
+at_most = 7
+`), Flags{}, to)
+	if err := to.err(); err != nil {
+		t.Fatal(err)
+	}
+	o := study.Options
+	if o.Repeats != 1 || o.Hotspots.Count != 1 || o.Limit.List != 1 {
+		t.Errorf("counts %d, %d, %d", o.Repeats, o.Hotspots.Count, o.Limit.List)
+	}
+	if m := o.Materials[0]; m.YoungsModulus != 210050 || m.PoissonsRatio != -0.999 || m.ReferenceTemperature != 0 {
+		t.Errorf("material %+v", m)
+	}
+	if box := o.Regions[0].Box; box.Low[2] != 5 || box.High[2] != 5 || o.Regions[1].Values[0] != -9007199254740992 {
+		t.Errorf("regions %+v", o.Regions)
+	}
+	if r := o.Requirements[0]; r.AtLeast != 7 || r.AtMost != 7 {
+		t.Errorf("requirement %+v", r)
 	}
 }
 
@@ -260,6 +309,32 @@ func TestReadReportsUnreadableStudies(t *testing.T) {
 		_, err := Read(path, Flags{}, nil)
 		if found := (Faults{}); !errors.As(err, &found) || err.Error() != want {
 			t.Errorf("got %v\nwant %s", err, want)
+		}
+	}
+}
+
+// A limit in compression has a use wherever one region of its material is judged by
+// principal stresses.
+func TestLimitInCompression(t *testing.T) {
+	const rest = "[[region]]\nname = \"a\"\nselect.rest = true\n"
+	for name, text := range map[string]string{
+		"no regions":             "limit.criterion = \"max-principal\"",
+		"by the study":           "limit.criterion = \"max-principal\"\n" + rest,
+		"by the region":          rest + "criterion = \"max-principal\"",
+		"by one region of two":   "[[region]]\nname = \"b\"\nselect.block = \"b\"\ncriterion = \"tresca\"\n" + rest + "criterion = \"max-principal\"\nmaterial = \"S\"",
+		"material by its name":   "limit.criterion = \"max-principal\"\n" + rest + "material = \"S\"",
+		"several materials, one": "limit.criterion = \"max-principal\"\n[[material]]\nname = \"T\"\n" + rest + "material = \"S\"",
+	} {
+		to := &faults{}
+		got, _ := parseStudy("s.toml", []byte(text+"\n[[material]]\nname = \"S\"\nproportional_limit = 1\nproportional_limit_compression = 2"), Flags{}, to)
+		if len(to.found) > 0 {
+			t.Errorf("%s: %v", name, to.found)
+			continue
+		}
+		for _, material := range got.Options.Materials {
+			if material.Name == "S" && material.ProportionalLimitCompression != 2 {
+				t.Errorf("%s: %+v", name, material)
+			}
 		}
 	}
 }

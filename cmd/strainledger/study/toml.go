@@ -259,11 +259,12 @@ func wholeNumber(text string) float64 {
 	return float64(value)
 }
 
-// number reads a floating-point number as TOML writes it.
+// number reads a floating-point number as TOML writes it; NaN also for the signed nan
+// that Go does not read, and for one too large, which the decoder refuses.
 func number(text string) float64 {
-	value, err := strconv.ParseFloat(strings.ReplaceAll(text, "_", ""), 64)
-	if err != nil && math.IsInf(value, 0) {
-		return value // too large: not finite, refused where it is checked
+	value, err := strconv.ParseFloat(text, 64)
+	if err != nil {
+		return math.NaN()
 	}
 	return value
 }
