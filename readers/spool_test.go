@@ -12,6 +12,7 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+	"time"
 
 	"github.com/klauspost/compress/zstd"
 )
@@ -162,6 +163,16 @@ func TestStandardInput(t *testing.T) {
 	}
 	if n := left(t, temporary); n != 0 {
 		t.Errorf("%d temporary files left", n)
+	}
+}
+
+// A call does not wait for input that nobody wants any more.
+func TestStandardInputThatNeverComes(t *testing.T) {
+	ctx, cancel := context.WithCancel(context.Background())
+	never, _ := io.Pipe()
+	time.AfterFunc(10*time.Millisecond, cancel)
+	if err := justError(Open(ctx, []string{"-"}, Options{Stdin: never})); !errors.Is(err, context.Canceled) {
+		t.Errorf("%v", err)
 	}
 }
 
