@@ -90,7 +90,7 @@ func (o *opener) spoolStdin() (*file, error) {
 		_, err := io.Copy(writer, input)
 		writer.CloseWithError(err)
 	}()
-	stop := context.AfterFunc(o.ctx, func() { reader.CloseWithError(o.ctx.Err()) })
+	stop := context.AfterFunc(o.ctx, func() { writer.CloseWithError(o.ctx.Err()) })
 	defer stop()
 	defer reader.Close()
 	return o.spool(reader, "-")
