@@ -27,11 +27,11 @@ func (l *legacyFile) peek() (string, error) {
 		for searched < len(text) && text[searched] > ' ' {
 			searched++
 		}
+		if int64(searched) > l.limits.Text {
+			return "", w.fail(overLimit("found a word of more than %d bytes; need fewer than the limit for texts", l.limits.Text))
+		}
 		if searched < len(text) {
 			return string(text[:searched]), nil
-		}
-		if int64(searched) > l.limits.Text {
-			return "", w.fail(overLimit("found a word of more than %d bytes; need fewer than the limit for texts", searched))
 		}
 		if more, err := w.more(); err != nil || !more {
 			return string(text), err
@@ -78,19 +78,22 @@ func (l *legacyFile) line() (string, error) {
 	}
 	for searched := 0; ; {
 		text := w.buffer[w.at:]
+		length, isEnd := len(text), false
 		if i := bytes.IndexByte(text[searched:], '\n'); i >= 0 {
-			line := string(text[:searched+i])
-			w.at += searched + i + 1
-			return strings.TrimSuffix(line, "\r"), nil
+			length, isEnd = searched+i, true
 		}
-		if int64(len(text)) > l.limits.Text {
-			return "", w.fail(overLimit("found a line of more than %d bytes; need fewer than the limit for texts", len(text)))
+		if int64(length) > l.limits.Text {
+			return "", w.fail(overLimit("found a line of more than %d bytes; need fewer than the limit for texts", l.limits.Text))
 		}
-		searched = len(text)
+		if isEnd {
+			w.at += length + 1
+			return strings.TrimSuffix(string(text[:length]), "\r"), nil
+		}
+		searched = length
 		if more, err := w.more(); err != nil {
 			return "", err
 		} else if !more {
-			w.at += len(text)
+			w.at += length
 			return string(text), nil
 		}
 	}

@@ -107,11 +107,16 @@ func (m *markup) next() (*tag, error) {
 func (m *markup) until(mark string, from int) ([]byte, error) {
 	for {
 		text := m.window.buffer[m.window.at:]
-		if i := bytes.Index(text[min(from, len(text)):], []byte(mark)); i >= 0 {
-			return text[:from+i+len(mark)], nil
+		end := bytes.Index(text[min(from, len(text)):], []byte(mark))
+		length := len(text)
+		if end >= 0 {
+			length = from + end + len(mark)
 		}
-		if int64(len(text)) > m.limits.Text {
-			return nil, m.window.fail(overLimit("found %d bytes without %q; need fewer than the limit for texts", len(text), mark))
+		if int64(length) > m.limits.Text {
+			return nil, m.window.fail(overLimit("found %.20q with more than %d bytes up to %q; need fewer than the limit for texts", text, m.limits.Text, mark))
+		}
+		if end >= 0 {
+			return text[:length], nil
 		}
 		from = max(from, len(text)-len(mark)+1)
 		if more, err := m.window.more(); err != nil {
@@ -175,6 +180,9 @@ func (m *markup) attributes(e *element, text []byte) error {
 			return malformed("element %.40q: found %.40q, need name=\"value\"", e.name, text)
 		}
 		name := string(bytes.TrimSpace(text[:i]))
+		if strings.ContainsAny(name, " \t\r\n\"'") || name == "" {
+			return malformed("element %.40q: found %.40q, need name=\"value\"", e.name, text)
+		}
 		text = bytes.TrimLeft(text[i+1:], " \t\r\n")
 		if len(text) < 2 || text[0] != '"' && text[0] != '\'' {
 			return malformed("element %.40q: attribute %.40q: found no quotes, need name=\"value\"", e.name, name)

@@ -2,6 +2,7 @@ package readers
 
 import (
 	"bytes"
+	"context"
 	"errors"
 	"fmt"
 	"io"
@@ -83,7 +84,16 @@ func (o *opener) spoolStdin() (*file, error) {
 	if o.options.Stdin != nil {
 		input = o.options.Stdin
 	}
-	return o.spool(input, "-")
+	// A read may wait for ever, but nobody waits for it when the call is cancelled.
+	reader, writer := io.Pipe()
+	go func() {
+		_, err := io.Copy(writer, input)
+		writer.CloseWithError(err)
+	}()
+	stop := context.AfterFunc(o.ctx, func() { writer.CloseWithError(o.ctx.Err()) })
+	defer stop()
+	defer reader.Close()
+	return o.spool(reader, "-")
 }
 
 // spool copies a stream to a temporary file.

@@ -61,7 +61,7 @@ func (s *stored) characters(c *cursor, place int64, count int) ([]byte, error) {
 	skip := place - before
 	for offset := s.start + page*pageSize; len(result) < count; offset += pageSize {
 		if offset >= s.wrapped.end {
-			return nil, s.file.fail(offset, truncated("%d base64 characters needed, found %d", count, len(result)))
+			return nil, s.file.fail(s.wrapped.end, truncated("%d base64 characters needed, found %d", count, len(result)))
 		}
 		text := room(&c.page, int(min(pageSize, s.wrapped.end-offset)))
 		if err := c.hand.readAt(s.file, text, offset); err != nil {

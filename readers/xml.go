@@ -257,7 +257,7 @@ func (x *xmlFile) binary(start, stop int64, isBase64 bool, wrapped *index) (*pay
 	if err := run.read(x.cursor, words, 0); err != nil {
 		return nil, 0, err
 	}
-	if first > uint64(available/x.wordSize) {
+	if first > uint64(max(0, available/x.wordSize-3)) {
 		return nil, 0, x.file.fail(start, truncated("%d compressed blocks need a table of as many words, found %d bytes", first, available))
 	}
 	b := &blocks{
