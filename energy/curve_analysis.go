@@ -71,6 +71,7 @@ type CurveModulus struct {
 	ToeStrain     Number     `json:"toe_strain"` // where the line meets zero stress
 	RSquared      Number     `json:"r_squared"`
 	Variation     Number     `json:"coefficient_of_variation"` // V1, in percent; null for two points
+	Scatter       Number     `json:"scatter"`                  // standard deviation of the points from the line, in stress
 	Points        int        `json:"points"`
 	From          CurvePoint `json:"from"` // first and last point of the window
 	To            CurvePoint `json:"to"`
@@ -215,7 +216,7 @@ func (a *CurveAnalysis) setModulus(fit *lineFit, stated float64) {
 	a.line = fit.line(stated)
 	a.Modulus = CurveModulus{
 		YoungsModulus: Number(a.line.modulus), Fitted: Number(fit.slope), Stated: None,
-		Intercept: Number(fit.intercept), ToeStrain: Number(a.line.origin), RSquared: Number(fit.rSquared), Variation: Number(fit.variation),
+		Intercept: Number(fit.intercept), ToeStrain: Number(a.line.origin), RSquared: Number(fit.rSquared), Variation: Number(fit.variation), Scatter: Number(fit.scatter),
 		Points: fit.last - fit.first + 1, From: a.Points[fit.first], To: a.Points[fit.last],
 	}
 	if stated > 0 {

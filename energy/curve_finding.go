@@ -1,6 +1,9 @@
 package energy
 
-import "math"
+import (
+	"math"
+	"strings"
+)
 
 const (
 	// greatestVariation is the coefficient of variation V1, in percent, up to which a fit
@@ -12,6 +15,9 @@ const (
 	// greatestElasticStrain is a strain at the end of elastic behaviour that no metal and
 	// few plastics reach (common practice, no source).
 	greatestElasticStrain = 0.05
+	// noiseBand is the distance from the elastic line, in standard deviations, that some
+	// of ten thousand points of a record reach by noise alone.
+	noiseBand = 4
 )
 
 // find lists what the reader of the numbers has to know.
@@ -41,15 +47,48 @@ func (a *CurveAnalysis) findInLimits(found *findings) {
 	if a.RambergOsgood == nil {
 		found.add("no-ramberg-osgood", 0, "No Ramberg-Osgood law is fitted: between plastic strains of 0.01 %% and 0.2 %% the curve has no point, or its stress does not rise.")
 	}
+	var unresolved, noisy []string
 	for _, limit := range a.ProportionalLimits {
 		definition, err := ParseLimit(limit.By)
-		if err == nil && !limit.Stress.Exists() && (definition.kind == byTangent || definition.kind == byJohnson) {
-			found.add("tangent-unresolved", 0, "No limit by %s: the curve ends before, or neighbouring points scatter as much within the modulus window.", limit.By)
+		if err != nil {
+			continue
 		}
+		if isTangent := definition.kind == byTangent || definition.kind == byJohnson; isTangent && !limit.Stress.Exists() {
+			unresolved = append(unresolved, limit.By)
+		}
+		if !a.isWithinNoise(definition, limit) {
+			continue
+		}
+		if limit == a.ProportionalLimit {
+			found.add("limit-within-noise", 0, "The points scatter by %.3g about the elastic line, so much that noise may decide the limit by %s: choose a larger one.",
+				float64(a.Modulus.Scatter), limit.By)
+			continue
+		}
+		noisy = append(noisy, limit.By)
+	}
+	if len(unresolved) > 0 {
+		found.add("tangent-unresolved", 0, "No limit by %s: the curve ends before, or neighbouring points scatter as much within the modulus window.", strings.Join(unresolved, ", "))
+	}
+	if len(noisy) > 0 {
+		found.add("limits-within-noise", 0, "The points scatter by %.3g about the elastic line, so much that noise may decide the limits by %s.",
+			float64(a.Modulus.Scatter), strings.Join(noisy, ", "))
 	}
 	if math.Abs(float64(a.Modulus.Intercept)) > straightness*a.Modulus.To.Stress {
 		found.add("toe", 0, "The elastic line meets zero stress at a strain of %.6g: offsets and areas count from there.", float64(a.Modulus.ToeStrain))
 	}
+}
+
+// isWithinNoise reports whether the points scatter as far from the elastic line as the
+// line of a definition lies from it at the limit.
+func (a *CurveAnalysis) isWithinNoise(definition LimitDefinition, limit LimitRead) bool {
+	distance := Number(math.Inf(1)) // in stress
+	switch definition.kind {
+	case byOffset:
+		distance = Number(a.line.modulus * definition.share)
+	case byDeviation:
+		distance = limit.Stress * Number(definition.share)
+	}
+	return limit.Stress.Exists() && distance < noiseBand*a.Modulus.Scatter
 }
 
 // findInFit judges the modulus fit.

@@ -58,6 +58,7 @@ type lineFit struct {
 	meanStrain, meanStress, spread float64 // spread = Σ (ε - mean)²
 	rSquared                       float64 // 1 - SSE/SST
 	variation                      float64 // V1 of the slope, in percent; NaN for two points
+	scatter                        float64 // √(SSE/(K - 2)), the points' standard deviation from the line; NaN for two points
 }
 
 // fitLine fits stress on strain, with an intercept. Its quality is
@@ -90,8 +91,9 @@ func fitLine(points []CurvePoint, first, last int) lineFit {
 	}
 	f.rSquared = 1 - residual/total
 	f.variation = 100 * math.Sqrt(residual/((total-residual)*(count-2))) // 1/r² - 1 = SSE/(SST - SSE)
+	f.scatter = math.Sqrt(residual / (count - 2))
 	if last-first < 2 {
-		f.variation = math.NaN()
+		f.variation, f.scatter = math.NaN(), math.NaN()
 	}
 	return f
 }

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"math/rand/v2"
 	"os"
 	"path/filepath"
 	"strings"
@@ -231,6 +232,7 @@ func TestNoisyModulus(t *testing.T) {
 			{"r²", float64(a.Modulus.RSquared), 0.9999675754},
 		})
 		expect(t, 1e-8, []expectation{{"intercept", float64(a.Modulus.Intercept), 0.08}, {"V1", float64(a.Modulus.Variation), 0.28471767}})
+		expect(t, 1e-9, []expectation{{"scatter", float64(a.Modulus.Scatter), math.Sqrt(0.1108571428571429 / 4)}})
 		expect(t, 1e-8, []expectation{{"toe", float64(a.Modulus.ToeStrain), -0.08 / 69885.714285714}})
 		if a.Modulus.Points != 6 {
 			t.Errorf("%d points in the window, want all 6", a.Modulus.Points)
@@ -595,6 +597,8 @@ func TestCurveFindings(t *testing.T) {
 		{"units-not-stated", &CurveRecord{Points: good().Points, Lines: good().Lines}, CurveOptions{}, "unit of stress"},
 		{"units-assumed", func() *CurveRecord { test := good(); test.Stress.DecidedBy = "default"; return test }(), CurveOptions{}, "taken as MPa"},
 		{"tangent-unresolved", recordOf([]CurvePoint{{0, 0}, {.0010, 70}, {.0011, 73}, {.0020, 140}, {.0021, 147}, {.003, 210}, {.01, 240}}), CurveOptions{Window: StressWindow{Low: 0, High: 210}}, "scatter"},
+		{"limit-within-noise", noisy(2.2), CurveOptions{}, "by offset-0.01%: choose a larger one"},
+		{"limits-within-noise", noisy(0.8), CurveOptions{}, "limits by offset-0.002%, deviation-1%."},
 	} {
 		a := analyse(t, c.test, c.options)
 		found := false
@@ -604,6 +608,31 @@ func TestCurveFindings(t *testing.T) {
 		if !found {
 			t.Errorf("%s with %q is not among %+v", c.code, c.message, a.Findings)
 		}
+	}
+}
+
+// noisy returns a record of lawM03 in 2000 readings with noise of a standard deviation.
+func noisy(deviation float64) *CurveRecord {
+	random := rand.New(rand.NewPCG(1, 2))
+	points := sample(lawM03, 420, 2000)
+	for i := range points {
+		points[i].Stress += deviation * random.NormFloat64()
+	}
+	return recordOf(points)
+}
+
+// Noise of a tenth of a percent of the strength leaves the modulus and the larger
+// offsets as they are; what it reaches is said.
+func TestNoisyRecord(t *testing.T) {
+	a := analyse(t, noisy(0.3), CurveOptions{})
+	expect(t, 0.003, []expectation{{"E", float64(a.Modulus.Fitted), 73100}, {"0.2 %", float64(a.OffsetYields[0].Stress), 345}})
+	expect(t, 0.02, []expectation{{"limit", float64(a.ProportionalLimit.Stress), 255.691385}, {"n", a.RambergOsgood.Exponent, 10}})
+	expect(t, 0.1, []expectation{{"scatter", float64(a.Modulus.Scatter), 0.3}})
+	if a.YieldPoint != nil {
+		t.Errorf("noise was taken for a yield point, %+v", a.YieldPoint)
+	}
+	if showsFinding(a, "limit-within-noise") {
+		t.Errorf("findings %+v", a.Findings)
 	}
 }
 

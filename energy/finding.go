@@ -45,11 +45,13 @@ var severities = map[string]string{
 
 	// Of a test curve.
 	"few-points":            Warning,
+	"limit-within-noise":    Warning,
 	"modulus-differs":       Warning,
 	"modulus-scatter":       Warning,
 	"no-proportional-limit": Warning,
 	"strain-unit-suspect":   Warning,
 	"window-past-limit":     Warning,
+	"limits-within-noise":   Note,
 	"no-offset-yield":       Note,
 	"no-ramberg-osgood":     Note,
 	"tangent-unresolved":    Note,

@@ -487,6 +487,11 @@ func TestAxes(t *testing.T) {
 			}
 		}
 	}
+	// So are angles that are right but for the sixth digit: the first row stays.
+	skewed, err := NewAxes([3]Vector{{1, 0, 0}, {5e-7, 1, 0}, {0, 5e-7, 1}})
+	if want := (Axes{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}}); err != nil || skewed != want {
+		t.Errorf("axes %v (%v), want %v", skewed, err, want)
+	}
 	// A left-handed triple gives the same law.
 	right, left := *turned(t, 30), *turned(t, 30)
 	left[2] = Vector{0, 0, -1}
