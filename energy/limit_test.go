@@ -505,3 +505,28 @@ func TestNonlinearRunAdvised(t *testing.T) {
 		t.Errorf("with plastic strain: findings %+v", ledger.Findings)
 	}
 }
+
+// The criteria cost what they compute: von Mises in the tally as much as by itself.
+func BenchmarkEquivalentStress(b *testing.B) {
+	for _, criterion := range criteria {
+		b.Run(string(criterion), func(b *testing.B) {
+			l := limitOf(b, criterion, material250())
+			var total float64
+			for b.Loop() {
+				total += l.utilisation(l.equivalent(&stateT02))
+			}
+			if total == 0 {
+				b.Fatal("the loop computed nothing")
+			}
+		})
+	}
+	b.Run("formula alone", func(b *testing.B) {
+		var total float64
+		for b.Loop() {
+			total += VonMisesStress(&stateT02) / 250
+		}
+		if total == 0 {
+			b.Fatal("the loop computed nothing")
+		}
+	})
+}
