@@ -76,6 +76,11 @@ type part struct {
 	hotspots ranking
 	worst    ranking
 	past     []candidate // every cell past its limit, where asked for
+
+	lower      lowerCells
+	hasThermal bool    // some thermal strain that is not 0 was seen
+	strained   int64   // cells with a principal strain above largeStrain
+	maxStrain  float64 // the largest of them in size; 0: none
 }
 
 // newPart returns a part that has seen no cell.
@@ -113,6 +118,10 @@ func (p *part) join(other *part) {
 	p.hotspots.join(&other.hotspots)
 	p.worst.join(&other.worst)
 	p.past = append(p.past, other.past...)
+	p.lower.join(&other.lower)
+	p.hasThermal = p.hasThermal || other.hasThermal
+	p.strained += other.strained
+	p.maxStrain = max(p.maxStrain, other.maxStrain)
 }
 
 // exclude counts a cell that is left out.

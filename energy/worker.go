@@ -27,6 +27,8 @@ type worker struct {
 	utilisation []float64 // NaN without a limit
 	isYielded   []bool
 
+	strained float64 // largest size of a principal strain of the current cell, where above largeStrain
+
 	// The places of the current cell: its nodes, or one place for cell data.
 	stress, strain []mesh.SymmetricTensor
 	displacement   []Vector
@@ -54,6 +56,9 @@ func (w *worker) visit(chunk *mesh.Chunk) error {
 		}
 		if reason != notExcluded {
 			w.part.exclude(reason, &w.cell)
+			if reason == otherDimension {
+				w.keepLower(chunk, i)
+			}
 			w.region[i] = -1
 		}
 	}
@@ -89,6 +94,7 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 	if err != nil || reason != notExcluded {
 		return reason, err
 	}
+	w.strained = 0
 	switch {
 	case w.from == FromDisplacement:
 		reason = w.evaluateGradients(chunk, i, r, orientation)
@@ -98,6 +104,7 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 		reason = w.evaluateNodes(chunk, i, r, orientation)
 	}
 	if reason == notExcluded {
+		w.countStrained()
 		switch orientation {
 		case mesh.Mirrored:
 			w.part.mirrored++
@@ -287,6 +294,7 @@ func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, 
 	inelastic, isYielded := w.inelasticAt(chunk, cell, node, r)
 	if in.strain.exists() {
 		*strain = in.strain.at(chunk, cell, node)
+		w.noteStrain(strain, &inelastic)
 		switch {
 		case !in.strainIsElastic:
 			for i := range strain {
@@ -300,6 +308,9 @@ func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, 
 		*stress = in.stress.at(chunk, cell, node)
 	}
 	w.complete(r, stress, strain)
+	if !in.strain.exists() {
+		w.noteStrain(strain, nil)
+	}
 	w.noteNonZero(stress, strain)
 	return isYielded
 }
@@ -328,11 +339,13 @@ func (w *worker) inelasticAt(chunk *mesh.Chunk, cell int, node int32, r *region)
 	switch {
 	case in.thermalStrain.exists():
 		thermal := in.thermalStrain.at(chunk, cell, node)
+		w.part.hasThermal = w.part.hasThermal || thermal != mesh.SymmetricTensor{}
 		for i := range thermal {
 			inelastic[i] += thermal[i]
 		}
 	case in.temperature.exists() && r.material != nil && !math.IsNaN(r.material.ThermalExpansion):
 		rise := in.temperature.at(chunk, cell, node) - r.material.ReferenceTemperature
+		w.part.hasThermal = w.part.hasThermal || rise*r.material.ThermalExpansion != 0
 		for i := range 3 {
 			inelastic[i] += float64(r.material.ThermalExpansion * rise)
 		}
