@@ -26,6 +26,7 @@ func options(root *node, to *faults) energy.Options {
 	r.fields()
 	r.materials()
 	r.regions()
+	r.balance()
 	r.judgement()
 	return r.to
 }
@@ -105,6 +106,7 @@ func (r *reading) fields() {
 		{"plastic_strain", &r.to.Fields.PlasticStrain},
 		{"equivalent_plastic_strain", &r.to.Fields.EquivalentPlasticStrain},
 		{"displacement", &r.to.Fields.Displacement},
+		{"nodal_force", &r.to.Fields.NodalForce},
 		{"temperature", &r.to.Fields.Temperature},
 		{"element_id", &r.to.Fields.ElementID},
 	} {
