@@ -5,7 +5,6 @@ import (
 	"context"
 	"fmt"
 	"math"
-	"strings"
 
 	"strainledger/mesh"
 )
@@ -35,27 +34,26 @@ func (p *plan) weigh(ctx context.Context, walk *mesh.Walk) (err error) {
 //
 // Source: Clapeyron's theorem (Lamé 1852, from memory).
 func (p *plan) balance(ledger *Ledger, total *part) *Balance {
+	unequal := p.unequalByNature(total)
 	b := &Balance{
-		ExternalWork: None, Stored: ledger.Total.Energy, Gap: None, Reasons: []string{},
-		Elsewhere: p.elsewhere(), Parts: append([]Elsewhere{}, p.options.Elsewhere...),
+		ExternalWork: None, Stored: ledger.Total.Energy, Elsewhere: p.elsewhere(), Gap: None,
+		Reasons: append([]string{}, unequal...), Parts: append([]Elsewhere{}, p.options.Elsewhere...),
 	}
 	if p.isUnknown {
 		b.Stored = None
 	}
-	unequal := p.unequalByNature(total)
 	if !p.fillExternalWork(b, len(unequal) > 0) {
 		return nil
 	}
-	b.Reasons = append(b.Reasons, unequal...)
 	switch {
 	case !b.Stored.Exists():
 		b.Reasons = append(b.Reasons, "the stored energy cannot be told")
 	case b.ExternalWork == 0:
 		b.Reasons = append(b.Reasons, "the external work is 0")
-	case len(unequal) == 0 && b.ExternalWork.Exists():
+	case len(unequal) == 0:
 		b.Gap = (b.ExternalWork - b.Stored - b.Elsewhere) / b.ExternalWork
 	}
-	b.Reasons = append(b.Reasons, p.notStored(total)...)
+	b.Reasons = append(b.Reasons, p.otherReasons(total)...)
 	p.findGap(b)
 	return b
 }
@@ -70,33 +68,30 @@ func (p *plan) elsewhere() Number {
 }
 
 // fillExternalWork writes the external work and where it comes from, and reports whether
-// anything is known of it. Where the loads have not grown in proportion with the
-// displacement, or part of it is none of theirs, ½ F·u is not their work.
+// anything is known of it. What the study states is taken as it is; ½ F·u is the work of
+// loads that have grown in proportion with the displacement, and of those only.
 func (p *plan) fillExternalWork(b *Balance, isUnequal bool) bool {
 	stated := &p.options.Balance
-	work := None
+	isForce := len(stated.Loads) > 0 || p.hasNodalForces()
 	switch {
 	case stated.ExternalWork != nil:
 		b.Source, b.ExternalWork = "stated by the study", Number(*stated.ExternalWork)
-		return true
+	case isForce && isUnequal:
+		b.Reasons = append(b.Reasons, "½ F·u is then not the external work: state [balance] external_work")
 	case len(stated.Loads) > 0:
-		b.Source, work = "½ F·u of the loads that the study states", workOfLoads(stated.Loads)
+		b.Source, b.ExternalWork = "½ F·u of the loads that the study states", workOfLoads(stated.Loads)
 	case p.hasNodalForces():
-		b.Source = Text("½ Σ F·u of the nodal forces " + p.inputs.nodalForce.names())
-		found := p.workOf(p.forces, float64(b.Stored))
-		work, b.Reasons = Number(found.work), found.reasons
+		work, reasons := p.workOf(p.forces, b.Stored)
+		if b.ExternalWork = work; work.Exists() {
+			b.Source = Text("½ F·u of the nodal forces " + p.inputs.nodalForce.names())
+		}
+		b.Reasons = append(b.Reasons, reasons...)
 	case p.inputs.nodalForce.problem != "":
 		b.Reasons = append(b.Reasons, p.inputs.nodalForce.problem)
-	case len(b.Parts) == 0:
-		return false
-	default:
+	case len(b.Parts) > 0:
 		b.Reasons = append(b.Reasons, "the external work is not known: the file has no nodal forces; state [balance] external_work")
-	}
-	switch {
-	case work.Exists() && isUnequal:
-		b.Reasons = append(b.Reasons, fmt.Sprintf("½ F·u is %.6g, which is not the external work in this case", float64(work)))
-	case work.Exists():
-		b.ExternalWork = work
+	default:
+		return false
 	}
 	return true
 }
@@ -112,38 +107,38 @@ func workOfLoads(loads []Load) Number {
 	return Number(sum.Float64() / 2)
 }
 
+// negligible is the plastic or thermal strain, as a share of the total one, up to which
+// it is rounding: the plastic strain of a solver at first yield, a temperature rise
+// that is none.
+const negligible = 1e-9
+
 // unequalByNature lists what keeps external work and stored energy apart without any
-// mistake, as far as the file shows it.
+// mistake and by an amount that is not known, as far as the file shows it.
 func (p *plan) unequalByNature(total *part) []string {
 	var reasons []string
-	for _, reason := range []struct {
-		applies bool
-		text    string
-	}{
-		{total.hasThermal || p.inputs.otherThermal != "", "thermal strain: what it makes the body store is not the work of loads"},
-		{p.yieldedCells(total) > 0, "plastic strain: part of the work is dissipated, and force and displacement do not grow in proportion"},
-		{p.hasOtherStrain, "the strain carries a part that is not elastic and that no array explains"},
-		{p.findings.has("large-strain"), "large deformation: force and displacement do not grow in proportion, and ½ σ:ε of small strain is not what is stored"},
-		{p.options.Deformed, "the points are in the deformed position: the measure of cells is that under load"},
-	} {
-		if reason.applies {
-			reasons = append(reasons, reason.text)
-		}
+	if p.inputs.otherThermal != "" || total.thermal > negligible*negligible*total.strain {
+		reasons = append(reasons, "thermal strain: what it makes the body store is not the work of loads")
+	}
+	if total.plastic > negligible*negligible*total.strain {
+		reasons = append(reasons, "plastic strain: part of the work is dissipated, and force and displacement do not grow in proportion")
+	}
+	if p.hasOtherStrain {
+		reasons = append(reasons, "the strain carries a part that is not elastic and that no array explains")
 	}
 	return reasons
 }
 
-// yieldedCells counts the cells with plastic strain.
-func (p *plan) yieldedCells(total *part) (cells int64) {
-	for i := range total.accounts {
-		cells += total.accounts[i].yieldedCells
-	}
-	return cells
-}
-
-// notStored lists the cells whose energy is in no account.
-func (p *plan) notStored(total *part) []string {
+// otherReasons lists what else the file shows that may keep the two apart: large
+// deformation, of which the gap itself tells whether the solver has followed it, and
+// cells in no account.
+func (p *plan) otherReasons(total *part) []string {
 	var reasons []string
+	if p.findings.has("large-strain") {
+		reasons = append(reasons, "large deformation: if the solver follows it, force and displacement do not grow in proportion, and ½ σ:ε of small strain is not what is stored")
+	}
+	if p.options.Deformed {
+		reasons = append(reasons, "the points are in the deformed position: the measure of cells is that under load")
+	}
 	if p.lower.count > 0 {
 		reasons = append(reasons, p.lower.words()+": what they hold is in no account")
 	}
@@ -172,7 +167,7 @@ func (p *plan) findGap(b *Balance) {
 		return
 	}
 	found := b.Stored + b.Elsewhere
-	text := fmt.Sprintf("the loads have done the work %.6g and %.6g is found, a gap of %.3g %%", float64(b.ExternalWork), float64(found), 100*float64(b.Gap))
+	text := fmt.Sprintf("the work of the loads is %.6g and the energy found %.6g, a gap of %.3g %%", float64(b.ExternalWork), float64(found), 100*float64(b.Gap))
 	causes := "energy in what has no cells (springs, bolts, contact, rigid links: state it in [[elsewhere]]), loads that did not grow in proportion with the displacement (growing contact, follower forces), motion or damping, hourglass control, or values averaged over too coarse a mesh"
 	if b.Gap < 0 {
 		causes = "a load or a moved support whose work is missing, a wrong thickness or unit, stress and forces of different states, or loads that did not grow in proportion with the displacement"
@@ -180,5 +175,5 @@ func (p *plan) findGap(b *Balance) {
 	if p.options.Idealisation == Axisymmetric && math.Abs(float64(found/b.ExternalWork)/(2*math.Pi)-1) < limit {
 		causes = "forces for one radian, where the accounts are for the whole ring: multiply the external work by 2π"
 	}
-	p.findings.addGraded(size > graveGap, "balance-gap", 0, "%s; look for %s", text, strings.TrimSpace(causes))
+	p.findings.addGraded(size > graveGap, "balance-gap", 0, "%s; look for %s", text, causes)
 }

@@ -35,8 +35,10 @@ func (w *worker) noteStrain(strain, inelastic *mesh.SymmetricTensor) {
 			total[i] += inelastic[i]
 		}
 	}
+	square := mesh.Product(&total, &total)
+	raise(&w.part.strain, square)
 	// No principal value is larger in size than the Frobenius norm.
-	if mesh.Product(&total, &total) > largeStrain*largeStrain {
+	if square > largeStrain*largeStrain {
 		principal := total.PrincipalValues()
 		w.strained = max(w.strained, principal[0], -principal[2])
 	}

@@ -119,9 +119,10 @@ func (f *fieldFinder) searchNodalForce() error {
 			return err
 		}
 	}
-	why := fmt.Sprintf("its name says nodal force and it has %d components", taken[0].Components)
+	says := map[role]string{nodalForceRole: "nodal force", loadRole: "load", reactionRole: "reaction"}[roleOf(taken[0].Name)]
+	why := fmt.Sprintf("its name says %s and it has %d components", says, taken[0].Components)
 	if len(taken) > 1 {
-		why = "loads and reactions by their names; added up"
+		why = "by their names a load and a reaction; added up"
 	}
 	f.recordNodalForce(byDefault, why)
 	return nil
@@ -320,41 +321,33 @@ func (s *forceSums) imbalance(p *plan) float64 {
 	return max(force.length()/size, moment.length()/(size*p.bounds.Diagonal()))
 }
 
-// A forceWork is the work of the nodal forces as far as they tell: NaN where they do not.
-type forceWork struct {
-	work    float64
-	reasons []string
-}
-
 // workOf judges the sums: whether the forces are all that act on the body, and what their
-// work ½ Σ F·u is. A linear body holds what the forces on it have done, which is
-// above 0, so that a negative sum is of forces with the opposite sign.
-func (p *plan) workOf(sums *forceSums, stored float64) (result forceWork) {
+// work ½ Σ F·u is; None and why where they do not tell. A linear body stores what the
+// forces on it have done, which is above 0, so that a negative sum is of forces with the
+// opposite sign.
+func (p *plan) workOf(sums *forceSums, stored Number) (work Number, reasons []string) {
 	forces := &p.inputs.nodalForce
-	say := func(format string, arguments ...any) {
-		result.reasons = append(result.reasons, fmt.Sprintf(format, arguments...))
-	}
-	result.work = math.NaN()
+	say := func(format string, arguments ...any) { reasons = append(reasons, fmt.Sprintf(format, arguments...)) }
 	if sums.lostPoints > 0 {
 		say("%d points have a nodal force or displacement that is not finite and are left out of the external work", sums.lostPoints)
 	}
-	isLoaded := sums.size.Float64() > 0
-	if !isLoaded && stored != 0 {
-		say("every nodal force of %s is 0, although energy is stored: state [balance] external_work", forces.names())
-		return result
+	if sums.size.Float64() == 0 {
+		if stored == 0 {
+			return 0, reasons
+		}
+		say("every nodal force of %s is 0, although energy is stored; state [balance] external_work", forces.names())
+		return None, reasons
 	}
-	if !isLoaded {
-		result.work = 0
-		return result
-	}
-	work, imbalance := sums.work.Float64()/2, sums.imbalance(p)
-	switch isBalanced := imbalance <= outOfBalance; {
+	work = Number(sums.work.Float64() / 2)
+	imbalance := sums.imbalance(p)
+	isBalanced := imbalance <= outOfBalance
+	switch {
 	case !isBalanced && !forces.areOnly:
 		say("the nodal forces of %s are not in equilibrium (their resultant is %.2g of their sizes): loads or reactions are missing, and with them their work; state [balance] external_work", forces.names(), imbalance)
-		return result
-	case math.Abs(2*work) <= idleForces*sums.reach.Float64() && stored != 0:
+		return None, reasons
+	case stored != 0 && math.Abs(2*float64(work)) <= idleForces*sums.reach.Float64():
 		say("the nodal forces of %s do no work, although energy is stored: they are reactions at supports that do not move, and the loads are missing; state [balance] external_work", forces.names())
-		return result
+		return None, reasons
 	case !isBalanced:
 		say("the nodal forces of %s are the loads by their name, without reactions: the external work holds if no support is moved", forces.names())
 	}
@@ -362,6 +355,5 @@ func (p *plan) workOf(sums *forceSums, stored float64) (result forceWork) {
 		p.inputs.used.NodalForce.Why += "; Σ F·u is negative, as it is for the forces of the body on its surroundings: taken with the opposite sign"
 		work = -work
 	}
-	result.work = work
-	return result
+	return work, reasons
 }

@@ -78,9 +78,11 @@ type part struct {
 	past     []candidate // every cell past its limit, where asked for
 
 	lower      lowerCells
-	hasThermal bool    // some thermal strain that is not 0 was seen
-	strained   int64   // cells with a principal strain above largeStrain
-	maxStrain  float64 // the largest of them in size; 0: none
+	strained  int64   // cells with a principal strain above largeStrain
+	maxStrain float64 // the largest of them in size; 0: none
+
+	// The largest ε:ε of the total strain and of its thermal and plastic parts.
+	strain, thermal, plastic float64
 }
 
 // newPart returns a part that has seen no cell.
@@ -119,9 +121,18 @@ func (p *part) join(other *part) {
 	p.worst.join(&other.worst)
 	p.past = append(p.past, other.past...)
 	p.lower.join(&other.lower)
-	p.hasThermal = p.hasThermal || other.hasThermal
+	raise(&p.strain, other.strain)
+	raise(&p.thermal, other.thermal)
+	raise(&p.plastic, other.plastic)
 	p.strained += other.strained
 	p.maxStrain = max(p.maxStrain, other.maxStrain)
+}
+
+// raise sets a largest value to a new one that is larger; NaN is not.
+func raise(largest *float64, value float64) {
+	if value > *largest {
+		*largest = value
+	}
 }
 
 // exclude counts a cell that is left out.

@@ -332,22 +332,26 @@ func (w *worker) inelasticAt(chunk *mesh.Chunk, cell int, node int32, r *region)
 	if in.plasticStrain.exists() {
 		inelastic = in.plasticStrain.at(chunk, cell, node)
 		isYielded = inelastic != mesh.SymmetricTensor{}
+		raise(&w.part.plastic, mesh.Product(&inelastic, &inelastic))
 	}
-	if in.equivalentPlasticStrain.exists() && in.equivalentPlasticStrain.at(chunk, cell, node) != 0 {
-		isYielded = true
+	if in.equivalentPlasticStrain.exists() {
+		equivalent := in.equivalentPlasticStrain.at(chunk, cell, node)
+		isYielded = isYielded || equivalent != 0
+		raise(&w.part.plastic, equivalent*equivalent)
 	}
 	switch {
 	case in.thermalStrain.exists():
 		thermal := in.thermalStrain.at(chunk, cell, node)
-		w.part.hasThermal = w.part.hasThermal || thermal != mesh.SymmetricTensor{}
+		raise(&w.part.thermal, mesh.Product(&thermal, &thermal))
 		for i := range thermal {
 			inelastic[i] += thermal[i]
 		}
 	case in.temperature.exists() && r.material != nil && !math.IsNaN(r.material.ThermalExpansion):
 		rise := in.temperature.at(chunk, cell, node) - r.material.ReferenceTemperature
-		w.part.hasThermal = w.part.hasThermal || rise*r.material.ThermalExpansion != 0
+		expansion := float64(r.material.ThermalExpansion * rise)
+		raise(&w.part.thermal, 3*expansion*expansion)
 		for i := range 3 {
-			inelastic[i] += float64(r.material.ThermalExpansion * rise)
+			inelastic[i] += expansion
 		}
 	}
 	return inelastic, isYielded
