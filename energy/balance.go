@@ -21,9 +21,13 @@ const (
 )
 
 // weigh brings what the file's nodal forces say of the external work.
-func (p *plan) weigh(ctx context.Context, walk *mesh.Walk) (err error) {
-	if p.hasNodalForces() {
-		p.forces, err = p.sumForces(ctx, walk)
+func (p *plan) weigh(ctx context.Context, walk *mesh.Walk) error {
+	if !p.hasNodalForces() {
+		return nil
+	}
+	once, written, err := p.sumForces(ctx, walk)
+	if err == nil {
+		p.forces = p.chooseForces(once, written)
 	}
 	return err
 }

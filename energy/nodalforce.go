@@ -201,12 +201,15 @@ func (n *loadedNode) isFinite() bool {
 // hasNodalForces reports whether the external work comes from forces of the file.
 func (p *plan) hasNodalForces() bool { return len(p.inputs.nodalForce.fields) > 0 }
 
-// sumForces adds up the nodal forces and their work, each physical point once: without
-// points that the file marks as duplicates or hidden, border points of structured pieces
-// in one of them, and once what several pieces hold with the same place, displacement and
-// force to the last bit. Points of one piece count as written, and so do those
-// in one place that differ: parts of a mesh may give shares of one node's force.
-func (p *plan) sumForces(ctx context.Context, walk *mesh.Walk) (*forceSums, error) {
+// sumForces adds up the nodal forces and their work over all points, without those that
+// the file marks as duplicates or hidden, and with border points of structured pieces in
+// one of them.
+//
+// What else stands in several pieces with the same place, displacement and force to the
+// last bit is one node that is written several times, or one whose equal shares are:
+// once counts it once, written as often as it stands there. The forces that are in
+// equilibrium tell which it is. Points of one piece count as written.
+func (p *plan) sumForces(ctx context.Context, walk *mesh.Walk) (once, written *forceSums, err error) {
 	summers := make([]forceSummer, walk.Workers())
 	counted := map[loadedNode]bool{} // of the pieces before
 	for piece := range p.model.Pieces {
@@ -220,7 +223,7 @@ func (p *plan) sumForces(ctx context.Context, walk *mesh.Walk) (*forceSums, erro
 			return s.visit
 		})
 		if err != nil {
-			return nil, err
+			return nil, nil, err
 		}
 		for i := range summers {
 			for _, node := range summers[i].nodes {
@@ -229,11 +232,12 @@ func (p *plan) sumForces(ctx context.Context, walk *mesh.Walk) (*forceSums, erro
 			summers[i].nodes = summers[i].nodes[:0]
 		}
 	}
-	total := &summers[0].sums
+	once, written = &summers[0].once, &summers[0].written
 	for i := range summers[1:] {
-		total.join(&summers[i+1].sums)
+		once.join(&summers[i+1].once)
+		written.join(&summers[i+1].written)
 	}
-	return total, nil
+	return once, written, nil
 }
 
 // A forceReading says where the forces of one piece's points stand in what is read.
@@ -266,7 +270,8 @@ type forceSummer struct {
 	*forceReading
 	counted    map[loadedNode]bool // read only
 	keepsNodes bool
-	sums       forceSums
+	once       forceSums
+	written    forceSums
 	nodes      []loadedNode // of this piece
 }
 
@@ -285,9 +290,13 @@ func (s *forceSummer) visit(span *mesh.PointSpan) error {
 		switch {
 		case node.force == Vector{}:
 		case !node.isFinite():
-			s.sums.lostPoints++
-		case !s.counted[node]:
-			s.sums.add(&node)
+			s.written.lostPoints++
+			s.once.lostPoints++
+		default:
+			s.written.add(&node)
+			if !s.counted[node] {
+				s.once.add(&node)
+			}
 			if s.keepsNodes {
 				s.nodes = append(s.nodes, node)
 			}
@@ -319,6 +328,16 @@ func (s *forceSums) imbalance(p *plan) float64 {
 		moment[i] -= float64(middle[j]*force[k]) - float64(middle[k]*force[j])
 	}
 	return max(force.length()/size, moment.length()/(size*p.bounds.Diagonal()))
+}
+
+// chooseForces takes the sums that are in equilibrium, where points stand in several
+// pieces.
+func (p *plan) chooseForces(once, written *forceSums) *forceSums {
+	if once.imbalance(p) > outOfBalance && written.imbalance(p) <= outOfBalance {
+		p.inputs.used.NodalForce.Why += "; points in several pieces hold shares of their force, which are added up"
+		return written
+	}
+	return once
 }
 
 // workOf judges the sums: whether the forces are all that act on the body, and what their

@@ -77,7 +77,7 @@ type part struct {
 	worst    ranking
 	past     []candidate // every cell past its limit, where asked for
 
-	lower      lowerCells
+	lower     lowerCells
 	strained  int64   // cells with a principal strain above largeStrain
 	maxStrain float64 // the largest of them in size; 0: none
 
