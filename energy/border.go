@@ -14,6 +14,8 @@ func (s pointSet) has(piece int, point int32) bool {
 	return s != nil && s[piece][point>>6]>>(point&63)&1 != 0
 }
 
+func (s pointSet) add(piece int, point int32) { s[piece][point>>6] |= 1 << (point & 63) }
+
 // noRegionYet and severalRegions are states of a point beside the region's number.
 const (
 	noRegionYet    = -1
@@ -61,7 +63,7 @@ func (p *plan) findBorder(ctx context.Context, walk *mesh.Walk) (pointSet, int64
 		set[piece] = make([]uint64, (len(points)+63)/64)
 		for k := range points {
 			if points[k].Load() == severalRegions {
-				set[piece][k>>6] |= 1 << (k & 63)
+				set.add(piece, int32(k))
 				count++
 			}
 		}

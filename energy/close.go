@@ -22,6 +22,7 @@ func (p *plan) close(total *part) (*Ledger, error) {
 	p.fillAccounts(ledger, total)
 	p.fillLists(ledger, total)
 	p.findInResult(ledger, total)
+	ledger.Balance = p.balance(ledger, total)
 	if p.isUnknown {
 		ledger.withoutEnergy()
 	}
@@ -408,6 +409,7 @@ func (p *plan) findInResult(ledger *Ledger, total *part) {
 	p.findNegative(ledger, total)
 	p.findZero(total)
 	p.findPastLimit(ledger)
+	p.findLargeStrain(ledger, total)
 	if n := ledger.Total.CellsYielded; n > 0 {
 		f.add("plastic-strain-present", int64(n), "%d cells have plastic strain: the elastic energy stored is not the work done, and the limit's utilisation does not describe them", int64(n))
 	}

@@ -140,6 +140,7 @@ func (a *audit) isInelastic(chosen *measured) bool {
 // useLaw lets the energy come from stress by the law, because the strain is not the
 // elastic one. What the study states of the energy's source is obeyed.
 func (a *audit) useLaw(chosen *measured) {
+	a.hasOtherStrain = true
 	if a.options.From != "" {
 		a.findings.add("study-contradicted", 0, "the strain carries a part that is not elastic and that no array explains (%.1g of it); the study states [energy] from = %q, so the energy is ½ σ:ε of the whole strain", chosen.byLaw, a.options.From)
 		return
@@ -155,7 +156,7 @@ func (a *audit) checkOffsetWithoutLaw(chosen *measured) {
 	if chosen.byFit <= hookeTolerance || chosen.byFitShape > offsetTolerance*chosen.byFit || a.options.From != "" {
 		return
 	}
-	a.isUnknown = true
+	a.isUnknown, a.hasOtherStrain = true, true
 	a.findings.add("total-strain-used", 0, "the strain carries an offset of its normal terms that is not elastic and that no array explains (%.1g of the strain), and without the material's law the elastic energy cannot be told: give the material, or name the thermal strain in [fields]", chosen.byFit)
 }
 

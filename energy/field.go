@@ -104,10 +104,12 @@ type inputs struct {
 	displacement                                 vectorInput     // read where the energy comes from it
 	elementID                                    int             // column of Chunk.Labels, or -1
 	rule                                         *mesh.GaussRule // of integration points; nil: none
+	nodalForce                                   nodalForces     // read for the balance
 
 	strainIsElastic bool
 	kindBy          decider // byFile: the strain's name tells
 	rolesBy         decider // byDefault: the names do not tell stress from strain
+	otherThermal    string  // an array that tells of thermal strain and is not read; "" none
 	used            FieldsUsed
 	want            mesh.Want
 }
@@ -667,7 +669,11 @@ func (f *fieldFinder) findOthers(source EnergySource, on mesh.Location) error {
 			return err
 		}
 	}
+	f.noteOtherThermal()
 	if err := f.findDisplacement(source); err != nil {
+		return err
+	}
+	if err := f.findNodalForce(); err != nil {
 		return err
 	}
 	if f.options.ThicknessArray != "" {
@@ -681,6 +687,25 @@ func (f *fieldFinder) findOthers(source EnergySource, on mesh.Location) error {
 	return f.findElementID()
 }
 
+// noteOtherThermal looks for thermal strain that the energy does not need, because it
+// comes from stress or from an elastic strain: the balance has to know of it.
+func (f *fieldFinder) noteOtherThermal() {
+	in, fields := f.in, &f.options.Fields
+	if in.thermalStrain.exists() || in.temperature.exists() {
+		return
+	}
+	var list []mesh.Array
+	if !fields.ThermalStrain.Off {
+		list = f.candidates(0, f.isTensor, thermalStrainRole)
+	}
+	if expands := func(m Material) bool { return Number(m.ThermalExpansion).Exists() }; !fields.Temperature.Off && slices.ContainsFunc(f.options.Materials, expands) {
+		list = append(list, f.candidates(0, isScalar, temperatureRole)...)
+	}
+	if len(list) > 0 {
+		in.otherThermal = list[0].Name
+	}
+}
+
 // findDisplacement resolves the displacement: needed where the energy comes from it,
 // else only named.
 func (f *fieldFinder) findDisplacement(source EnergySource) error {
@@ -692,17 +717,36 @@ func (f *fieldFinder) findDisplacement(source EnergySource) error {
 	if err != nil || array == nil {
 		return err
 	}
-	f.in.displacement = vectorInput{name: array.Name, components: array.Components}
-	f.in.used.Displacement = &FieldUsed{Array: array.Name, On: array.On.String(), DecidedBy: decidedBy(field), Why: why}
+	if f.in.displacement, err = f.vector("displacement", field, array); err != nil {
+		return err
+	}
+	f.in.used.Displacement = &FieldUsed{
+		Array: strings.Join(f.in.displacement.names, " "), On: array.On.String(), DecidedBy: decidedBy(field), Why: why,
+	}
 	if source != FromDisplacement {
 		f.in.used.Displacement.Why += "; the energy does not use it"
 		return nil
 	}
-	if array.On != mesh.OnPoint || !isVector(array.Components) {
-		return inputError("[fields] displacement: array %s is no vector on points", describe(*array))
-	}
-	f.in.displacement.column = f.column(mesh.OnPoint, array.Name)
+	f.in.displacement = f.in.displacement.wantIn(&f.in.want.PointValues)
 	return nil
+}
+
+// vector returns the input of a vector field on points, of one array or of several that
+// hold one component each.
+func (f *fieldFinder) vector(key string, field *Field, array *mesh.Array) (vectorInput, error) {
+	in := vectorInput{names: []string{array.Name}, components: array.Components}
+	components := array.Components
+	if len(field.Arrays) > 1 {
+		var err error
+		if components, err = f.componentArrays(key, field, array.On); err != nil {
+			return in, err
+		}
+		in.names = field.Arrays
+	}
+	if array.On != mesh.OnPoint || !isVector(components) {
+		return in, inputError("[fields] %s: array %s is no vector on points", key, describe(*array))
+	}
+	return in, nil
 }
 
 // findTemperature resolves the temperature. One that the study does not name, and that

@@ -18,6 +18,9 @@ const (
 	plasticStrainRole
 	equivalentPlasticStrainRole
 	displacementRole
+	nodalForceRole // loads, reactions or both
+	reactionRole
+	loadRole
 	temperatureRole
 	elementIDRole
 )
@@ -32,6 +35,9 @@ var derivedWords = []string{
 
 // shortDerivedWords would be found inside other words, so they must stand alone.
 var shortDerivedWords = []string{"max", "min", "mean", "von", "eq", "vm", "dev", "i1", "i2", "i3"}
+
+// otherForces are words beside a force of what is none that acts on nodes from outside.
+var otherForces = []string{"moment", "torque", "contact", "friction", "body", "section", "membrane", "shear", "normal", "axial", "damping", "inertia"}
 
 // words splits a name at everything that is no letter or digit, and at the humps of
 // camel case, in lower case.
@@ -74,6 +80,7 @@ func roleOf(name string) role {
 	}
 	isStrain := has("strain", "epsilon") || alone("eps") || joined == "e"
 	isStress := has("stress", "sigma") || alone("sig") || joined == "s"
+	isForce := has("force", "load", "reaction")
 	switch {
 	case isStrain && isStress:
 		return noRole
@@ -93,6 +100,14 @@ func roleOf(name string) role {
 		return stressRole
 	case has("displacement") || alone("disp") || joined == "u":
 		return displacementRole
+	case isForce && has(otherForces...):
+		return noRole
+	case isForce && has("reaction"):
+		return reactionRole
+	case has("externalforce", "appliedforce", "nodalload", "pointload", "appliedload", "externalload"):
+		return loadRole
+	case has("nodalforce", "nodeforce", "internalforce") || joined == "force" || joined == "forces":
+		return nodalForceRole
 	case has("temperature") || joined == "temp":
 		return temperatureRole
 	case has("element", "cell") && (alone("id", "ids", "number", "label") || has("elementid", "cellid")):

@@ -24,6 +24,8 @@ var severities = map[string]string{
 	"units-suspect":      Warning,
 	"asymmetric-tensor":  Warning,
 	"unsupported-cells":  Warning,
+	"balance-gap":        Warning,
+	"large-strain":       Warning,
 
 	"point-data-across-regions": Warning,
 	"regions-overlap":           Warning,
@@ -60,9 +62,12 @@ var severities = map[string]string{
 	"units-assumed":         Note,
 }
 
-// IsErrorFinding reports whether a code is one of a finding of severity error, the
+// graveCodes are those whose findings are errors instead where the case is grave.
+var graveCodes = map[string]bool{"balance-gap": true, "parts-not-accounted": true}
+
+// IsErrorFinding reports whether findings of a code are of severity error, or may be, the
 // only kind that a study can and need accept.
-func IsErrorFinding(code string) bool { return severities[code] == Error }
+func IsErrorFinding(code string) bool { return severities[code] == Error || graveCodes[code] }
 
 // findings gathers what the reader of the numbers has to know.
 type findings struct{ list []Finding }
@@ -74,11 +79,32 @@ func (f *findings) add(code string, cells int64, format string, arguments ...any
 	if !known {
 		panic("finding with the unknown code " + code)
 	}
+	f.append(severity, code, cells, format, arguments...)
+}
+
+// addGraded appends a finding whose severity depends on how grave the case is.
+func (f *findings) addGraded(isGrave bool, code string, cells int64, format string, arguments ...any) {
+	if !graveCodes[code] {
+		panic("finding with the code " + code + ", which has one severity only")
+	}
+	severity := severities[code]
+	if isGrave {
+		severity = Error
+	}
+	f.append(severity, code, cells, format, arguments...)
+}
+
+func (f *findings) append(severity, code string, cells int64, format string, arguments ...any) {
 	finding := Finding{Code: code, Severity: severity, Message: fmt.Sprintf(format, arguments...), Cells: None}
 	if cells > 0 {
 		finding.Cells = Number(cells)
 	}
 	f.list = append(f.list, finding)
+}
+
+// has reports whether there is a finding of that code.
+func (f *findings) has(code string) bool {
+	return slices.ContainsFunc(f.list, func(found Finding) bool { return found.Code == code })
 }
 
 // sorted returns the findings, errors first, in the order of their codes, with the

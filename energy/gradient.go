@@ -6,19 +6,36 @@ import (
 	"strainledger/mesh"
 )
 
-// A vectorInput reads a vector field on points: two or three components.
+// A vectorInput reads a vector field on points: one array of two or three components, or
+// two or three arrays of one.
 type vectorInput struct {
-	name       string // "": the field is not there
-	column     int
-	components int
+	names      []string // none: the field is not there
+	columns    []int    // positions in the point values that are read
+	components int      // of each array
 }
 
-func (in *vectorInput) exists() bool { return in.name != "" }
+func (in *vectorInput) exists() bool { return len(in.names) > 0 }
 
-// at returns the vector of a node; a third component that the file lacks is 0.
-func (in *vectorInput) at(chunk *mesh.Chunk, node int32) (v Vector) {
-	n := in.components
-	copy(v[:], chunk.PointValues[in.column][int(node)*n:int(node)*n+n])
+// wantIn returns the field as it is read with the given list of arrays, to which it adds
+// its own.
+func (in vectorInput) wantIn(list *[]string) vectorInput {
+	in.columns = nil
+	for _, name := range in.names {
+		in.columns = append(in.columns, wantColumn(list, name))
+	}
+	return in
+}
+
+// at returns the vector of a point; a third component that the file lacks is 0.
+func (in *vectorInput) at(values [][]float64, point int) (v Vector) {
+	if len(in.columns) == 1 {
+		n := in.components
+		copy(v[:], values[in.columns[0]][point*n:point*n+n])
+		return v
+	}
+	for i, column := range in.columns {
+		v[i] = values[column][point]
+	}
 	return v
 }
 
@@ -34,7 +51,7 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 	w.growNodes(shape.NodeCount)
 	w.isYielded[i] = false
 	for k, node := range w.cell.Nodes {
-		w.displacement[k] = w.inputs.displacement.at(chunk, node)
+		w.displacement[k] = w.inputs.displacement.at(chunk.PointValues, int(node))
 		inelastic, isYielded := w.inelasticAt(chunk, i, node, r)
 		w.strain[k] = inelastic
 		w.isYielded[i] = w.isYielded[i] || isYielded
@@ -97,6 +114,7 @@ func (w *worker) strainAt(rule *mesh.Tabulation, q int, values []float64) (strai
 		}
 		strain[2] = u / w.cell.Place(rule, q)[radial]
 	}
+	w.noteStrain(&strain, nil)
 	for k, value := range values {
 		for c := range strain {
 			strain[c] -= float64(value * w.strain[k][c])

@@ -415,17 +415,18 @@ func takenFor(array mesh.Array) (field, why Text) {
 	keys := map[role]Text{
 		stressRole: "stress", strainRole: "strain", elasticStrainRole: "strain", thermalStrainRole: "thermal_strain",
 		plasticStrainRole: "plastic_strain", equivalentPlasticStrainRole: "equivalent_plastic_strain",
-		displacementRole: "displacement", temperatureRole: "temperature", elementIDRole: "element_id",
+		displacementRole: "displacement", nodalForceRole: "nodal_force", reactionRole: "nodal_force", loadRole: "nodal_force",
+		temperatureRole: "temperature", elementIDRole: "element_id",
 	}
-	fits := isScalar
+	fits, isMisplaced := isScalar, false
 	found := roleOf(array.Name)
 	switch found {
 	case stressRole, strainRole, elasticStrainRole, thermalStrainRole, plasticStrainRole:
 		fits = func(components int) bool { return mesh.DefaultOrder(components) != nil }
-	case displacementRole:
-		fits = isVector
+	case displacementRole, nodalForceRole, reactionRole, loadRole:
+		fits, isMisplaced = isVector, array.On != mesh.OnPoint
 	}
-	if found == noRole || array.On == mesh.OnField || !fits(array.Components) {
+	if found == noRole || array.On == mesh.OnField || isMisplaced || !fits(array.Components) {
 		return "", ""
 	}
 	return keys[found], Text("by its name and " + strconv.Itoa(array.Components) + " components; the values were not looked at")

@@ -19,7 +19,7 @@ type Ledger struct {
 	PastLimit    PastLimit           `json:"past_limit"`
 	Excluded     []Exclusion         `json:"excluded"`
 	Findings     []Finding           `json:"findings"`
-	Balance      *NotBuilt           `json:"balance"`
+	Balance      *Balance            `json:"balance"`
 	Requirements []RequirementResult `json:"requirements"`
 	Steps        *NotBuilt           `json:"steps"`
 	Cases        *NotBuilt           `json:"cases"`
@@ -199,6 +199,20 @@ type Repeated struct {
 	Volume  Number `json:"volume"`
 	Mass    Number `json:"mass"`
 	Energy  Number `json:"energy"`
+}
+
+// A Balance holds the work of the loads against the energy that is found. Gap is
+// (external work - stored - elsewhere) / external work; it does not exist where the
+// external work is 0 or not known, nor where the two are not equal by nature. Reasons
+// says so, and what else keeps the two apart.
+type Balance struct {
+	ExternalWork Number      `json:"external_work"`
+	Stored       Number      `json:"stored"`    // energy of the total
+	Elsewhere    Number      `json:"elsewhere"` // sum of Parts
+	Gap          Number      `json:"gap"`
+	Reasons      []string    `json:"reasons"`
+	Source       Text        `json:"source"` // where the external work comes from
+	Parts        []Elsewhere `json:"parts"`
 }
 
 // A RankedCell is one cell in a list. Cell counts from 0 in its own source file,

@@ -56,6 +56,8 @@ type Options struct {
 	Regions   []Region
 	Limit     LimitOptions
 	Hotspots  HotspotOptions
+	Balance   BalanceOptions
+	Elsewhere []Elsewhere
 
 	Requirements []Requirement
 	Acceptances  []Acceptance
@@ -125,6 +127,29 @@ type LimitOptions struct {
 type HotspotOptions struct {
 	Count int    // 0: 20
 	By    string // utilisation | density | energy; "": utilisation where every region has a limit, else density
+}
+
+// BalanceOptions says what is known of the work of the loads; at most one of the two is
+// set. Without either it comes from the file's nodal forces.
+type BalanceOptions struct {
+	ExternalWork *float64 // nil: not stated
+	Loads        []Load
+}
+
+// A Load is the resultant of a load that grew in proportion with the displacement of
+// where it acts, along which Displacement is measured: its work is ½ F·u.
+type Load struct {
+	Name         string
+	Force        Vector
+	Displacement Vector
+}
+
+// An Elsewhere is energy held by what the file has no cells for. It enters the balance
+// only.
+type Elsewhere struct {
+	Name   string `json:"name"`
+	Energy Number `json:"energy"`
+	Source Text   `json:"source"` // where the number comes from
 }
 
 // A Requirement is a bound on one number of an account.

@@ -86,6 +86,13 @@ type part struct {
 	hotspots ranking
 	worst    ranking
 	past     []candidate // every cell past its limit, where asked for
+
+	lower     lowerCells
+	strained  int64   // cells with a principal strain above largeStrain
+	maxStrain float64 // the largest of them in size; 0: none
+
+	// The largest ε:ε of the total strain and of its thermal and plastic parts.
+	strain, thermal, plastic float64
 }
 
 // newPart returns a part that has seen no cell.
@@ -123,6 +130,19 @@ func (p *part) join(other *part) {
 	p.hotspots.join(&other.hotspots)
 	p.worst.join(&other.worst)
 	p.past = append(p.past, other.past...)
+	p.lower.join(&other.lower)
+	raise(&p.strain, other.strain)
+	raise(&p.thermal, other.thermal)
+	raise(&p.plastic, other.plastic)
+	p.strained += other.strained
+	p.maxStrain = max(p.maxStrain, other.maxStrain)
+}
+
+// raise sets a largest value to a new one that is larger; NaN is not.
+func raise(largest *float64, value float64) {
+	if value > *largest {
+		*largest = value
+	}
 }
 
 // exclude counts a cell that is left out.

@@ -23,6 +23,11 @@ type plan struct {
 	border       pointSet // points that regions share, where fields are on points
 	isUnknown    bool     // the energy cannot be told: inelastic strain and no law
 	findings     findings
+
+	hasOtherStrain bool        // the strain carries an inelastic part that no array explains
+	motion         motion      // what a look at the displacement has shown
+	lower          unaccounted // lower cells that are no faces or edges
+	forces         *forceSums  // nil: no nodal forces
 }
 
 // A Plan says what a tally would do, for a look before the run.

@@ -55,9 +55,20 @@ func hotspotKey(quantity string) (rank int, key string, err error) {
 	return rank, parts[2], nil
 }
 
+// balanceKey returns the key of a number of the balance: the gap of "balance.gap".
+func balanceKey(quantity string) (key string, isOne bool) {
+	return strings.CutPrefix(quantity, "balance.")
+}
+
 // CheckQuantity returns an error when a requirement's quantity is none that a ledger
-// can have: a number of an account by its key, or hotspot.RANK.KEY.
+// can have: a number of an account by its key, hotspot.RANK.KEY, or balance.KEY.
 func CheckQuantity(quantity string) error {
+	if key, isOne := balanceKey(quantity); isOne {
+		if _, ok := numberByKey(Balance{}, key); !ok {
+			return fmt.Errorf("quantity %q: a balance has no number %q", quantity, key)
+		}
+		return nil
+	}
 	if strings.HasPrefix(quantity, "hotspot.") {
 		_, key, err := hotspotKey(quantity)
 		if err != nil {
@@ -85,6 +96,9 @@ func judge(ledger *Ledger, requirements []Requirement) []RequirementResult {
 		if value.Exists() {
 			result.Met = !(value > r.AtMost) && !(value < r.AtLeast)
 		}
+		if r.Quantity == "balance.gap" && result.Met && -value > r.AtMost {
+			result.Met, result.Why = false, "at_most bounds the size of the gap, which may be of either sign"
+		}
 		if why := hiddenByYielding(ledger, &r); why != "" && result.Met {
 			result.Met, result.Why = false, Text(why)
 		}
@@ -98,6 +112,9 @@ func valueOf(ledger *Ledger, r *Requirement) (Number, string) {
 	var structure any = ledger.Total
 	key := r.Quantity
 	where := "of the whole model"
+	if balanced, isOne := balanceKey(r.Quantity); isOne {
+		return valueOfBalance(ledger.Balance, balanced)
+	}
 	if strings.HasPrefix(r.Quantity, "hotspot.") {
 		rank, rest, err := hotspotKey(r.Quantity)
 		if err != nil {
@@ -121,6 +138,21 @@ func valueOf(ledger *Ledger, r *Requirement) (Number, string) {
 		return None, fmt.Sprintf("%s is no number of an account", r.Quantity)
 	case !value.Exists():
 		return None, fmt.Sprintf("%s %s is not available", key, where)
+	}
+	return value, ""
+}
+
+// valueOfBalance finds a number of the balance, or says why there is none.
+func valueOfBalance(b *Balance, key string) (Number, string) {
+	if b == nil {
+		return None, "nothing is known of the external work: state [balance] external_work"
+	}
+	value, ok := numberByKey(*b, key)
+	switch {
+	case !ok:
+		return None, fmt.Sprintf("%s is no number of a balance", key)
+	case !value.Exists():
+		return None, fmt.Sprintf("%s of the balance is not available: %s", key, strings.Join(b.Reasons, "; "))
 	}
 	return value, ""
 }

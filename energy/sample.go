@@ -98,7 +98,7 @@ func (p *plan) sampleWant(gradients *vectorInput) *mesh.Want {
 	want := p.inputs.want
 	if gradients != nil {
 		want.PointValues = slices.Clone(want.PointValues)
-		gradients.column = wantColumn(&want.PointValues, gradients.name)
+		*gradients = gradients.wantIn(&want.PointValues)
 		return &want
 	}
 	want.NoNodes = p.inputs.isPerCell() && !p.regions.hasBox
@@ -334,7 +334,7 @@ func (s *sampler) meanStrain(chunk *mesh.Chunk) (mean mesh.SymmetricTensor) {
 		s.moves, s.slopes = make([]Vector, shape.NodeCount), make([][3]float64, shape.NodeCount)
 	}
 	for k, node := range s.cell.Nodes {
-		s.moves[k] = s.displacement.at(chunk, node)
+		s.moves[k] = s.displacement.at(chunk.PointValues, int(node))
 	}
 	var whole float64
 	for q, weight := range rule.Weights {

@@ -33,6 +33,9 @@ func Tally(ctx context.Context, model *mesh.Model, options *Options, done *atomi
 	if err := p.checkPlane(); err != nil {
 		return nil, err
 	}
+	if err := p.lookAtMotion(ctx, walk); err != nil {
+		return nil, err
+	}
 	workers := make([]*worker, walk.Workers())
 	err = walk.Each(ctx, &p.inputs.want, done, func(number int) mesh.Visitor {
 		workers[number] = newWorker(p)
@@ -44,6 +47,12 @@ func Tally(ctx context.Context, model *mesh.Model, options *Options, done *atomi
 	total := newPart(p)
 	for _, w := range workers {
 		total.join(w.part)
+	}
+	if err := p.findUnaccounted(ctx, walk, total); err != nil {
+		return nil, err
+	}
+	if err := p.weigh(ctx, walk); err != nil {
+		return nil, err
 	}
 	return p.close(total)
 }

@@ -29,6 +29,8 @@ type worker struct {
 	isYielded   []bool
 	curve       []float64 // energy under the material's curve; NaN beyond its end
 
+	strained float64 // largest size of a principal strain of the current cell, where above largeStrain
+
 	// The places of the current cell: its nodes, or one place for cell data.
 	stress, strain []mesh.SymmetricTensor
 	plastic        []mesh.SymmetricTensor
@@ -60,6 +62,9 @@ func (w *worker) visit(chunk *mesh.Chunk) error {
 		}
 		if reason != notExcluded {
 			w.part.exclude(reason, &w.cell)
+			if reason == otherDimension {
+				w.keepLower(chunk, i)
+			}
 			w.region[i] = -1
 		}
 	}
@@ -100,6 +105,7 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 	if err != nil || reason != notExcluded {
 		return reason, err
 	}
+	w.strained = 0
 	switch {
 	case w.from == FromDisplacement:
 		reason = w.evaluateGradients(chunk, i, r, orientation)
@@ -114,6 +120,7 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 		return 0, err
 	}
 	if reason == notExcluded {
+		w.countStrained()
 		switch orientation {
 		case mesh.Mirrored:
 			w.part.mirrored++
@@ -310,6 +317,7 @@ func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, 
 	inelastic, isYielded := w.inelasticAt(chunk, cell, node, r)
 	if in.strain.exists() {
 		*strain = in.strain.at(chunk, cell, node)
+		w.noteStrain(strain, &inelastic)
 		switch {
 		case !in.strainIsElastic:
 			for i := range strain {
@@ -323,6 +331,9 @@ func (w *worker) at(chunk *mesh.Chunk, cell int, node int32, r *region, stress, 
 		*stress = in.stress.at(chunk, cell, node)
 	}
 	w.complete(stress, strain)
+	if !in.strain.exists() {
+		w.noteStrain(strain, nil)
+	}
 	w.noteNonZero(stress, strain)
 	return isYielded
 }
@@ -374,20 +385,26 @@ func (w *worker) inelasticAt(chunk *mesh.Chunk, cell int, node int32, r *region)
 	if in.plasticStrain.exists() {
 		inelastic = in.plasticStrain.at(chunk, cell, node)
 		isYielded = inelastic != mesh.SymmetricTensor{}
+		raise(&w.part.plastic, mesh.Product(&inelastic, &inelastic))
 	}
-	if in.equivalentPlasticStrain.exists() && in.equivalentPlasticStrain.at(chunk, cell, node) != 0 {
-		isYielded = true
+	if in.equivalentPlasticStrain.exists() {
+		equivalent := in.equivalentPlasticStrain.at(chunk, cell, node)
+		isYielded = isYielded || equivalent != 0
+		raise(&w.part.plastic, equivalent*equivalent)
 	}
 	switch {
 	case in.thermalStrain.exists():
 		thermal := in.thermalStrain.at(chunk, cell, node)
+		raise(&w.part.thermal, mesh.Product(&thermal, &thermal))
 		for i := range thermal {
 			inelastic[i] += thermal[i]
 		}
 	case in.temperature.exists() && r.material != nil && !math.IsNaN(r.material.ThermalExpansion):
 		rise := w.temperatureAt(chunk, cell, node) - r.material.ReferenceTemperature
+		expansion := float64(r.material.ThermalExpansion * rise)
+		raise(&w.part.thermal, 3*expansion*expansion)
 		for i := range 3 {
-			inelastic[i] += float64(r.material.ThermalExpansion * rise)
+			inelastic[i] += expansion
 		}
 	}
 	return inelastic, isYielded

@@ -67,7 +67,7 @@ func TestJSONLayout(t *testing.T) {
 	for _, want := range []string{
 		"{\n  \"schema\": \"strainledger/ledger/v1\",\n  \"title\": \"[\\n        1,\\n        2\\n      ] <b> & \\\\\",\n  \"units\": {\n",
 		"\n    \"max_density_at\": [8.5125, 9.875, 8.4375],\n",
-		"\n  \"balance\": null,\n",
+		"\n  \"steps\": null,\n",
 		"\n    \"cells_yielded\": null,\n",
 	} {
 		if !strings.Contains(text, want) {

@@ -130,6 +130,14 @@ func bracket() *energy.Ledger {
 			{Code: "ghost-cells", Severity: energy.Note, Cells: 8, Message: "Cells marked as duplicates were left out."},
 			{Code: "one-value-per-cell", Severity: energy.Note, Cells: energy.None, Message: "Each cell has one value: its energy is a lower estimate of what the solution held. Refine, or export values at integration points."},
 		},
+		Balance: &energy.Balance{
+			ExternalWork: 225.71172963, Stored: 201.16420518, Elsewhere: 3.05, Gap: 0.095242742,
+			Reasons: []string{"4 surfaces that are no faces of solid cells: what they hold is in no account"},
+			Source:  "½ F·u of the nodal forces \"Reaction\"",
+			Parts: []energy.Elsewhere{
+				{Name: "bolts", Energy: 2.25, Source: "hand calculation 7"}, {Name: "rubber pad", Energy: 0.8},
+			},
+		},
 		Requirements: []energy.RequirementResult{
 			{Name: "corner stores little", Quantity: "energy", Region: "corner", AtMost: 120, AtLeast: energy.None, Value: 102.2267979, Met: true},
 			{Name: "nothing past the limit", Quantity: "cells_past_limit", AtMost: 0, AtLeast: energy.None, Value: 6},
@@ -170,7 +178,7 @@ func unjudged() *energy.Ledger {
 	ledger.Hotspots = ledger.Hotspots[6:]
 	ledger.Hotspots[0].Rank = 1
 	ledger.Materials[0].Source = ""
-	ledger.Repeated, ledger.Excluded, ledger.Findings, ledger.Requirements = nil, nil, nil, nil
+	ledger.Repeated, ledger.Excluded, ledger.Findings, ledger.Requirements, ledger.Balance = nil, nil, nil, nil, nil
 	return ledger
 }
 
@@ -238,7 +246,12 @@ func bare() *energy.Ledger {
 			Region: "all", ElementID: energy.None, Density: energy.None, EquivalentStress: energy.None, Utilisation: energy.None,
 		}, nil)},
 		PastLimit: energy.PastLimit{Criterion: "von-mises", Cells: energy.None, Volume: energy.None, Energy: energy.None, EnergyShare: energy.None},
-		Excluded:  []energy.Exclusion{{Reason: "not-finite", Dimension: 3, Cells: 1, Measure: energy.None}},
+		Balance: &energy.Balance{
+			ExternalWork: energy.None, Stored: energy.None, Gap: energy.None,
+			Reasons: []string{"the external work is not known", "the stored energy cannot be told"},
+			Parts:   []energy.Elsewhere{},
+		},
+		Excluded: []energy.Exclusion{{Reason: "not-finite", Dimension: 3, Cells: 1, Measure: energy.None}},
 		Requirements: []energy.RequirementResult{
 			{Name: "some", Quantity: "balance.gap", AtMost: energy.None, AtLeast: energy.None, Value: energy.None, Why: "no external work is stated"},
 		},
@@ -251,6 +264,7 @@ func bare() *energy.Ledger {
 func zero() *energy.Ledger {
 	ledger := unjudged()
 	ledger.Title = "Mooring bracket, no load"
+	ledger.Balance = &energy.Balance{Gap: energy.None, Reasons: []string{"the external work is 0"}, Source: "stated by the study", Parts: []energy.Elsewhere{}}
 	for _, account := range []*energy.Account{&ledger.Regions[0].Account, &ledger.Regions[1].Account, &ledger.Total} {
 		account.Energy, account.EnergyShare, account.EnergyVolumetric, account.EnergyDistortional = 0, energy.None, 0, 0
 		account.MeanDensity, account.MaxDensity, account.PeakDensity = 0, 0, 0
@@ -286,6 +300,8 @@ func hostile() *energy.Ledger {
 	for i := range ledger.Hotspots {
 		ledger.Hotspots[i].Region = nasty
 	}
+	ledger.Balance.Reasons = append(ledger.Balance.Reasons, nasty)
+	ledger.Balance.Parts[0].Name, ledger.Balance.Parts[0].Source, ledger.Balance.Parts[1].Energy = long, energy.Text(nasty), -1.23456789e-300
 	ledger.Findings[0].Message = nasty + " " + strings.Repeat("z", 130)
 	ledger.Findings[3].Accepted = energy.Text(nasty)
 	ledger.Requirements[0].Name, ledger.Requirements[0].Region = long, energy.Text(nasty)

@@ -101,7 +101,10 @@ var quantities = []quantity{
 	{"poissons_ratio", "Poisson's ratio", inRatios, "Poisson's ratio of the material."},
 	{"proportional_limit", "proportional limit", inStress, "Stress up to which the material is taken to be linear."},
 	{"proportional_limit_compression", "limit in compression", inStress, "Compressive stress up to which the material is taken to be linear."},
-	{"gap", "balance gap", inShares, "Part of the external work that the accounts do not explain."},
+	{"external_work", "external work", inEnergy, "Work that the loads have done from the unloaded state."},
+	{"stored", "stored energy", inEnergy, "Energy of the accounts, as the balance takes it."},
+	{"elsewhere", "energy elsewhere", inEnergy, "Energy that the study states for what the file has no cells for."},
+	{"gap", "balance gap", inShares, "Part of the external work that is found neither in the accounts nor elsewhere; below 0 where more is found."},
 }
 
 // quantityOf returns the quantity of a ledger key, which may stand behind a path, as in

@@ -114,10 +114,10 @@ var keys = slices.Concat([]key{
 	fieldKeys("displacement", "point"),
 	[]key{{path: "fields.displacement.arrays", form: names}},
 	fieldKeys("temperature", "cell", "point", "integration"),
+	fieldKeys("nodal_force", "point"),
+	[]key{{path: "fields.nodal_force.arrays", form: names}},
 	fieldKeys("element_id", "cell"),
 	[]key{
-		{path: "fields.nodal_force", form: anOff | aName | aTable, later: true},
-
 		{path: "material", form: tables},
 		{path: "material.name", form: aName, needed: true},
 		{path: "material.youngs_modulus", form: aNumber, bound: positive},
@@ -174,10 +174,14 @@ var keys = slices.Concat([]key{
 		{path: "error.estimate", form: aSwitch},
 		{path: "error.target", form: aNumber, bound: share},
 
-		{path: "balance", form: aTable, later: true},
+		{path: "balance", form: aTable},
 		{path: "balance.external_work", form: aNumber},
+		{path: "balance.load", form: tables},
+		{path: "balance.load.name", form: aName},
+		{path: "balance.load.force", form: numbers, needed: true},
+		{path: "balance.load.displacement", form: numbers, needed: true},
 
-		{path: "elsewhere", form: tables, later: true},
+		{path: "elsewhere", form: tables},
 		{path: "elsewhere.name", form: aName, needed: true},
 		{path: "elsewhere.energy", form: aNumber, needed: true},
 		{path: "elsewhere.source", form: aName},

@@ -27,6 +27,7 @@ func options(root *node, folder string, to *faults) energy.Options {
 	r.fields()
 	r.materials()
 	r.regions()
+	r.balance()
 	r.judgement()
 	r.compressionLimits()
 	return r.to
@@ -107,6 +108,7 @@ func (r *reading) fields() {
 		{"plastic_strain", &r.to.Fields.PlasticStrain},
 		{"equivalent_plastic_strain", &r.to.Fields.EquivalentPlasticStrain},
 		{"displacement", &r.to.Fields.Displacement},
+		{"nodal_force", &r.to.Fields.NodalForce},
 		{"temperature", &r.to.Fields.Temperature},
 		{"element_id", &r.to.Fields.ElementID},
 	} {

@@ -11,7 +11,7 @@ import (
 )
 
 // laterQuantities are the beginnings of quantities that are not built yet.
-var laterQuantities = []string{"balance.", "change."}
+var laterQuantities = []string{"change."}
 
 // requirement reads one entry of [[require]]. One without a name is called by what
 // it demands.
@@ -30,7 +30,9 @@ func (r *reading) requirement(stated *node) energy.Requirement {
 	if quantity := stated.get("quantity"); quantity != nil {
 		r.refuseQuantity(quantity)
 	}
-	if len(r.root.itemsOf("region")) > 0 {
+	if region := stated.get("region"); region != nil && strings.HasPrefix(requirement.Quantity, "balance.") {
+		r.faults.add(region.place, "require.region is %s, but the balance is that of the whole model; remove region", quote(region.text))
+	} else if len(r.root.itemsOf("region")) > 0 {
 		r.refuseUnknown(stated.get("region"), "require.region", "region")
 	}
 	switch most, least := stated.child("at_most"), stated.child("at_least"); {
@@ -49,6 +51,8 @@ func (r *reading) refuseQuantity(stated *node) {
 	case err == nil:
 	case slices.ContainsFunc(laterQuantities, isLater):
 		r.faults.add(stated.place, "require.quantity %s is not built yet; use a number of an account such as \"energy\"", quote(stated.text))
+	case strings.HasPrefix(stated.text, "balance."):
+		r.faults.add(stated.place, "require.quantity is %s, which is no number of the balance; write balance.gap", quote(stated.text))
 	case strings.HasPrefix(stated.text, "hotspot."):
 		r.faults.add(stated.place, "require.quantity is %s, which is no number of a hotspot; write hotspot.RANK.KEY, such as \"hotspot.1.density\"", quote(stated.text))
 	default:
