@@ -196,7 +196,7 @@ func TestReadWhole(t *testing.T) {
 	want := &Study{
 		Path: path,
 		// sha256sum of the text above
-		SHA256:  "",
+		SHA256:  "3865a963be5b501a9b584375fa7de2bce8543b8fd7e7a16ae5f16941a6c8e117",
 		Options: wholeOptions(),
 		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
 		Time:    Time{Value: &time},
