@@ -337,19 +337,19 @@ func (a *column) near(c *cursor, low, high int64) ([]int64, error) {
 	return s.near[low-s.nearLow : high-s.nearLow], nil
 }
 
-// countTuples sets the number of tuples of an array of which it is not declared.
-func (a *column) countTuples(c *cursor) error {
+// countTuples returns how many tuples an array holds of which it is not declared.
+func (a *column) countTuples(c *cursor) (int64, error) {
 	switch {
 	case a.form == textForm:
 		_, words, _, err := a.text.page(&c.hand, room(&c.page, pageSize+1), math.MaxInt64)
 		if err != nil {
-			return a.fail(err)
+			return 0, a.fail(err)
 		}
-		a.Tuples = words / int64(a.Components)
+		return words / int64(a.Components), nil
 	case a.width() > 0:
-		a.Tuples = a.length / a.width()
+		return a.length / a.width(), nil
 	}
-	return nil
+	return 0, nil
 }
 
 // labels returns the tuples [low, high), of one component, as whole numbers.

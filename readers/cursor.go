@@ -274,7 +274,7 @@ func (c *cursor) findShapes(p *piece, span mesh.Span, degrees []int64) error {
 			}
 			shape, err := mesh.ShapeOf(cellType, int(count), own)
 			if err != nil {
-				return p.cellError(nil, span.Low+int64(i), malformed("%v", err))
+				return p.cellError(p.types(), span.Low+int64(i), malformed("%v", err))
 			}
 			*known = knownShape{shape, count}
 			if hasDegrees {
@@ -286,6 +286,14 @@ func (c *cursor) findShapes(p *piece, span mesh.Span, degrees []int64) error {
 		c.shapes[i] = known.shape
 	}
 	return nil
+}
+
+// types returns the column of cell types, nil where the kind of the data tells them.
+func (p *piece) types() *column {
+	if len(p.sections) == 0 {
+		return nil
+	}
+	return p.sections[0].types
 }
 
 // A knownShape is a shape with the node count for which it was looked up.

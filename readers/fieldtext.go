@@ -33,10 +33,14 @@ func (x *xmlFile) strings(a *column, e *element) []string {
 	}
 	bytes := &column{Array: a.Array, file: a.file, number: int8Number, start: a.start}
 	bytes.Components = 1
-	if x.place(bytes, e) != nil || bytes.countTuples(x.cursor) != nil || bytes.Tuples > x.limits.Text {
+	if x.place(bytes, e) != nil {
 		return nil
 	}
-	data, err := bytes.bytes(x.cursor, 0, bytes.Tuples)
+	length, err := bytes.countTuples(x.cursor)
+	if err != nil || length > x.limits.Text {
+		return nil
+	}
+	data, err := bytes.bytes(x.cursor, 0, length)
 	if err != nil {
 		return nil
 	}

@@ -59,19 +59,20 @@ type opener struct {
 	cursor     *cursor // reads what headers need
 	model      *mesh.Model
 	pieces     []*piece
-	taken      map[string]bool // files that are in the model, by clean path
-	fieldNames map[string]bool // names of field arrays
-	blockNames map[string]bool // names of blocks
-	root       string          // folder of the file that the call names
-	remarks    map[string]bool // that were made
-	spools     []spoolFile     // temporary files
-	decoded    int64           // bytes that compressed content decodes to
+	taken      map[string]bool  // files that are in the model, by clean path
+	fieldNames map[string]int   // places of field arrays in the model
+	perCell    map[string]int64 // tuples of field arrays for each cell
+	blockNames map[string]bool  // names of blocks
+	root       string           // folder of the file that the call names
+	remarks    map[string]bool  // that were made
+	spools     []spoolFile      // temporary files
+	decoded    int64            // bytes that compressed content decodes to
 }
 
 func newOpener(ctx context.Context, options Options) *opener {
 	return &opener{
 		ctx: ctx, options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, 1),
-		model: &mesh.Model{}, taken: map[string]bool{}, fieldNames: map[string]bool{}, blockNames: map[string]bool{}, remarks: map[string]bool{},
+		model: &mesh.Model{}, taken: map[string]bool{}, fieldNames: map[string]int{}, perCell: map[string]int64{}, blockNames: map[string]bool{}, remarks: map[string]bool{},
 	}
 }
 

@@ -104,7 +104,9 @@ func (o *opener) fields(x *xmlFile, source *mesh.Source) ([]*column, error) {
 func (x *xmlFile) countField(a *column, e *element) error {
 	text, ok := e.get("NumberOfTuples")
 	if !ok {
-		return a.countTuples(x.cursor)
+		var err error
+		a.Tuples, err = a.countTuples(x.cursor)
+		return err
 	}
 	tuples, err := strconv.ParseInt(strings.TrimSpace(text), 10, 64)
 	if err != nil || tuples < 0 {
@@ -116,9 +118,9 @@ func (x *xmlFile) countField(a *column, e *element) error {
 // addField takes a field array into the model, of one name the first, and the state's
 // time and texts from it.
 func (o *opener) addField(a *column, source *mesh.Source, strings []string) error {
-	isKnown := o.fieldNames[a.Name]
+	_, isKnown := o.fieldNames[a.Name]
 	if !isKnown {
-		o.fieldNames[a.Name] = true
+		o.fieldNames[a.Name] = len(o.model.Fields)
 		o.model.Fields = append(o.model.Fields, a.Array)
 	}
 	if (a.Name == "TimeValue" || a.Name == "TIME") && a.Components == 1 && a.Tuples >= 1 && a.number.size() > 0 {
@@ -145,7 +147,8 @@ func (o *opener) addField(a *column, source *mesh.Source, strings []string) erro
 }
 
 // shareFields gives the pieces of a file the field arrays that have some tuples for
-// each of its cells: results at integration points.
+// each of its cells: results at integration points. What further files hold of the same
+// array adds to its tuples.
 func (o *opener) shareFields(pieces []*piece, fields []*column, cells int64) {
 	for _, a := range fields {
 		if cells == 0 || a.number.size() == 0 || a.Tuples == 0 || a.Tuples%cells != 0 {
@@ -154,6 +157,12 @@ func (o *opener) shareFields(pieces []*piece, fields []*column, cells int64) {
 		a.perCell = a.Tuples / cells
 		for _, p := range pieces {
 			p.fields = append(p.fields, a)
+		}
+		described := &o.model.Fields[o.fieldNames[a.Name]]
+		if o.perCell[a.Name] == a.perCell && described.Components == a.Components {
+			described.Tuples += a.Tuples
+		} else if o.perCell[a.Name] == 0 {
+			o.perCell[a.Name] = a.perCell
 		}
 	}
 }

@@ -148,25 +148,20 @@ func (x *xmlFile) connect(s *section, cells *element, count int64) error {
 // isLed reports whether offsets tell where cells begin and not where they end: there
 // is one more than cells, the first is 0 and the last is the length of connectivity.
 func (x *xmlFile) isLed(s *section, count int64) (bool, error) {
-	if s.offsets.form != textForm && s.offsets.length/s.offsets.width() != count+1 {
-		return false, nil
+	offsets, err := s.offsets.countTuples(x.cursor)
+	if err != nil || offsets != count+1 {
+		return false, err
 	}
 	first, err := s.offsets.wholes(x.cursor, 0, 1)
 	if err != nil || first[0] != 0 {
 		return false, err
 	}
-	for _, a := range []*column{s.offsets, s.connectivity} {
-		tuples := a.Tuples
-		if err := a.countTuples(x.cursor); err != nil {
-			return false, err
-		}
-		defer func() { a.Tuples = tuples }()
-	}
-	if s.offsets.Tuples != count+1 {
-		return false, nil
-	}
 	last, err := s.offsets.wholes(x.cursor, count, count+1)
-	return err == nil && last[0] == s.connectivity.Tuples, err
+	if err != nil {
+		return false, err
+	}
+	entries, err := s.connectivity.countTuples(x.cursor)
+	return err == nil && last[0] == entries, err
 }
 
 // facesOf finds the faces of polyhedra in either layout.
@@ -189,7 +184,7 @@ func (x *xmlFile) facesOf(p *piece, cells *element) error {
 			return err
 		}
 		if part.tuples == 0 {
-			if err := a.countTuples(x.cursor); err != nil {
+			if a.Tuples, err = a.countTuples(x.cursor); err != nil {
 				return err
 			}
 		} else if a.form == emptyForm { // no polyhedra
