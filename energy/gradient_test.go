@@ -146,3 +146,45 @@ func TestDisplacementThatCannotBeUsed(t *testing.T) {
 		}
 	}
 }
+
+// A displacement that is stored component by component is the same displacement; in a
+// plane two are enough.
+func TestDisplacementByComponents(t *testing.T) {
+	random := rand.New(rand.NewPCG(7, 8))
+	for cellType, options := range map[mesh.CellType]Options{
+		mesh.Hexahedron: {Materials: []Material{steel()}},
+		mesh.Quad:       {Idealisation: PlaneStrain, Materials: []Material{steel()}},
+	} {
+		count := map[mesh.CellType]int{mesh.Hexahedron: 8, mesh.Quad: 4}[cellType]
+		m := distorted(t, cellType, count, random, func(x, y, z float64) Vector {
+			return Vector{1e-3 * (x + 2*y), 1e-3 * (y*x - z), 1e-3 * float64(cellType.Dimension()-2) * (3*z - y)}
+		})
+		want := tally(t, m, options).Total.Energy
+		piece := &m.pieces[0]
+		u := piece.arrays[0].values
+		piece.arrays = nil
+		names := []string{"move x", "move y", "move z"}[:cellType.Dimension()]
+		for axis, name := range names {
+			one := memoryArray{name: name, on: mesh.OnPoint, components: 1}
+			for i := range count {
+				one.values = append(one.values, u[3*i+axis])
+			}
+			piece.arrays = append(piece.arrays, one)
+		}
+		options.Fields.Displacement.Arrays = names
+		ledger := tally(t, m, options)
+		if ledger.Total.Energy != want || want == 0 || ledger.Fields.Displacement.Array != strings.Join(names, " ") {
+			t.Errorf("%v: energy %v by %+v, want %v", cellType, ledger.Total.Energy, ledger.Fields.Displacement, want)
+		}
+	}
+}
+
+// A displacement that the study names has to be one also where the energy does not need
+// it: other things do.
+func TestDisplacementIsChecked(t *testing.T) {
+	options := solidOptions(mesh.OnCell, steel())
+	options.Fields.Displacement.Arrays = []string{"strain"}
+	if err := tallyError(t, pulledBar("f", Vector{}, Vector{}), options); !strings.Contains(err.Error(), `array "strain" (6 on cells) is no vector on points`) {
+		t.Error(err)
+	}
+}
