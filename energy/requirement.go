@@ -78,19 +78,25 @@ func CheckQuantity(quantity string) error {
 // is not met, and says why.
 func judge(ledger *Ledger, requirements []Requirement) []RequirementResult {
 	results := []RequirementResult{}
-	for _, r := range requirements {
-		result := RequirementResult{Name: r.Name, Quantity: r.Quantity, Region: Text(r.Region), AtMost: r.AtMost, AtLeast: r.AtLeast, Value: None}
-		value, why := valueOf(ledger, &r)
-		result.Value, result.Why = value, Text(why)
-		if value.Exists() {
-			result.Met = !(value > r.AtMost) && !(value < r.AtLeast)
-		}
-		if why := hiddenByYielding(ledger, &r); why != "" && result.Met {
-			result.Met, result.Why = false, Text(why)
-		}
-		results = append(results, result)
+	for i := range requirements {
+		r := &requirements[i]
+		value, why := valueOf(ledger, r)
+		results = append(results, outcome(r, value, why, hiddenByYielding(ledger, r)))
 	}
 	return results
+}
+
+// outcome holds a number against a requirement. why says why there is none, hidden why
+// the number does not count though it keeps the bound.
+func outcome(r *Requirement, value Number, why, hidden string) RequirementResult {
+	result := RequirementResult{
+		Name: r.Name, Quantity: r.Quantity, Region: Text(r.Region), AtMost: r.AtMost, AtLeast: r.AtLeast,
+		Value: value, Met: value.Exists() && !(value > r.AtMost) && !(value < r.AtLeast), Why: Text(why),
+	}
+	if result.Met && hidden != "" {
+		result.Met, result.Why = false, Text(hidden)
+	}
+	return result
 }
 
 // valueOf finds a requirement's number, or says why there is none.
