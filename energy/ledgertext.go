@@ -78,7 +78,7 @@ func readLedger(text []byte) (*Ledger, error) {
 	if form.Schema != LedgerSchema {
 		found := "no schema"
 		if form.Schema != nil {
-			found = fmt.Sprintf("the schema %q", form.Schema)
+			found = fmt.Sprintf("the schema %#v", form.Schema)
 		}
 		return nil, inputError("no ledger: it has %s, want %q; give a ledger.json that tally has written", found, LedgerSchema)
 	}
@@ -108,7 +108,7 @@ func unreadable(text []byte, err error) error {
 		return inputError("line %d: not whole JSON: %w", lineOf(text, syntax.Offset), err)
 	}
 	if kind := new(json.UnmarshalTypeError); errors.As(err, &kind) {
-		return inputError("line %d: the key %q is a %s, want a %s", lineOf(text, kind.Offset), kind.Field, kind.Value, kindName(kind.Type))
+		return inputError("the key %q is a %s, want a %s", kind.Field, kind.Value, kindName(kind.Type))
 	}
 	return inputError("not read as a ledger: %w", err)
 }
