@@ -307,10 +307,12 @@ func (c *comparing) findGone(run int) {
 	fresh := c.run(run).Findings
 	for _, finding := range distinct(c.baseline().Findings) {
 		after := findingOf(fresh, finding.Code)
-		if after == nil {
+		switch {
+		case after == nil && finding.Accepted != "":
+			c.findings.add("finding-gone", 0, "run %d does not have %s, which the baseline has and accepts: %s", run, finding.Code, finding.Accepted)
+		case after == nil:
 			c.findings.add("finding-gone", 0, "run %d does not have %s, which the baseline has", run, finding.Code)
-		}
-		if finding.Accepted != "" && (after == nil || after.Accepted == "") {
+		case finding.Accepted != "" && after.Accepted == "":
 			c.findings.add("acceptance-gone", 0, "run %d does not accept %s, the baseline does: %s", run, finding.Code, finding.Accepted)
 		}
 	}
@@ -337,6 +339,10 @@ func findingOf(list []Finding, code string) *Finding {
 	return nil
 }
 
+// sameEnergy is how far apart two energies may lie, as a part of them, and be held for
+// equal: rounding of sums and of scales.
+const sameEnergy = 1e-9
+
 // Stiffness says whether a run is stiffer than the baseline: above 0 stiffer, below 0
 // softer, 0 as stiff, by the energy of the whole model. Under given forces the stiffer
 // structure stores less, under given displacements more (methods, section 17). Where
@@ -355,13 +361,21 @@ func (c *Comparison) Stiffness(run int) (sign int, why string) {
 	case row.Resolved != nil && !*row.Resolved:
 		return 0, "the difference is not resolved: it is smaller than the estimated errors"
 	}
-	switch stores := row.Difference; {
-	case stores == 0:
+	switch {
+	case row.Relative <= sameEnergy && row.Relative >= -sameEnergy:
 		return 0, ""
-	case (stores < 0) == (c.Control == "force"):
+	case c.isStiffer(row.Value, row.Baseline):
 		return 1, ""
 	}
 	return -1, ""
+}
+
+// isStiffer reports whether storing the one energy is stiffer than storing the other.
+func (c *Comparison) isStiffer(one, other Number) bool {
+	if c.Control == "force" {
+		return one < other-Number(sameEnergy*other)
+	}
+	return one > other+Number(sameEnergy*other)
 }
 
 // Ranks returns the place of each run in the order of stiffness, 1 for the stiffest; 0
@@ -380,7 +394,7 @@ func (c *Comparison) Ranks() []int {
 		ranks[i] = 1
 		for j := range ranks {
 			other := c.Row(j+1, "", "energy")
-			if other.Withheld == "" && other.Value != row.Value && (other.Value < row.Value) == (c.Control == "force") {
+			if other.Withheld == "" && c.isStiffer(other.Value, row.Value) {
 				ranks[i]++
 			}
 		}
