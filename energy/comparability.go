@@ -1,7 +1,6 @@
 package energy
 
 import (
-	"encoding/json"
 	"fmt"
 	"math"
 	"reflect"
@@ -211,21 +210,48 @@ func materialDifference(fresh, old *MaterialUsed) string {
 	one, other := reflect.ValueOf(*fresh), reflect.ValueOf(*old)
 	for i := range one.NumField() {
 		key, _, _ := strings.Cut(one.Type().Field(i).Tag.Get("json"), ",")
-		if a, b := one.Field(i).Interface(), other.Field(i).Interface(); key != "source" && !isSameValue(a, b) {
-			parts = append(parts, fmt.Sprintf("%s %v against %v", key, a, b))
+		if key != "source" && !isSame(one.Field(i), other.Field(i)) {
+			parts = append(parts, fmt.Sprintf("%s %s against %s", key, valueText(one.Field(i)), valueText(other.Field(i))))
 		}
 	}
 	return strings.Join(parts, ", ")
 }
 
-// isSameValue reports whether two values of a material are one.
-func isSameValue(a, b any) bool {
-	one, isNumber := a.(Number)
-	other, _ := b.(Number)
-	if isNumber && one.Exists() && other.Exists() {
-		return math.Abs(float64(one-other)) <= sameValue*math.Max(math.Abs(float64(one)), math.Abs(float64(other)))
+// isSame reports whether two values of a material are one.
+func isSame(a, b reflect.Value) bool {
+	switch a.Kind() {
+	case reflect.Float64:
+		one, other := a.Float(), b.Float()
+		if math.IsNaN(one) || math.IsNaN(other) {
+			return math.IsNaN(one) && math.IsNaN(other)
+		}
+		return math.Abs(one-other) <= sameValue*max(math.Abs(one), math.Abs(other))
+	case reflect.Pointer:
+		if a.IsNil() || b.IsNil() {
+			return a.IsNil() && b.IsNil()
+		}
+		return isSame(a.Elem(), b.Elem())
+	case reflect.Array:
+		for i := range a.Len() {
+			if !isSame(a.Index(i), b.Index(i)) {
+				return false
+			}
+		}
+		return true
 	}
-	left, errLeft := json.Marshal(a)
-	right, errRight := json.Marshal(b)
-	return errLeft == nil && errRight == nil && string(left) == string(right)
+	return a.Equal(b)
+}
+
+// valueText returns a value of a material as messages have it.
+func valueText(value reflect.Value) string {
+	if value.Kind() == reflect.Pointer {
+		if value.IsNil() {
+			return "null"
+		}
+		value = value.Elem()
+	}
+	if text, isText := value.Interface().(Text); isText && text == "" {
+		return "null"
+	}
+	return fmt.Sprint(value.Interface())
 }

@@ -57,6 +57,12 @@ func TestObstacles(t *testing.T) {
 			`the materials of region "second" differ: proportional_limit null against 250`, all, "", ""},
 		"density": {func(l *Ledger) { l.Materials[0].Density = 3 }, "materials-differ",
 			`the materials of region "first" differ: density 3 against 2`, "", all, ""},
+		"axes": {func(l *Ledger) { l.Materials[0].Axes = &[3]Vector{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}} }, "materials-differ",
+			`the materials of region "first" differ: axes [[1 0 0] [0 1 0] [0 0 1]] against null`, "", all, ""},
+		"moduli": {func(l *Ledger) { l.Materials[0].YoungsModuli = &[3]float64{1, 2, 3} }, "materials-differ",
+			`the materials of region "first" differ: youngs_moduli [1 2 3] against null`, "", all, ""},
+		"curve": {func(l *Ledger) { l.Materials[0].Curve = "steel.csv" }, "materials-differ",
+			`the materials of region "first" differ: curve steel.csv against null`, "", all, ""},
 		"name and law": {func(l *Ledger) {
 			l.Materials[0].Name, l.Materials[0].Law, l.Regions[0].Material = "wood", "none", "wood"
 		}, "materials-differ",
@@ -192,4 +198,31 @@ func TestUnitsOfRuns(t *testing.T) {
 	bare := springs(t, loaded("force", None), 10, 30, 600)
 	bare.Units = UnitLabels{}
 	checkFindings(t, compared(t, CompareOptions{}, bare, bare), []string{})
+}
+
+func TestMaterialDifference(t *testing.T) {
+	material := func(moduli ...float64) *MaterialUsed {
+		m := &MaterialUsed{Name: "wood", Density: None}
+		if moduli != nil {
+			m.YoungsModuli = (*[3]float64)(moduli)
+		}
+		return m
+	}
+	for _, c := range []struct {
+		fresh, old *MaterialUsed
+		want       string
+	}{
+		{nil, nil, ""},
+		{material(), nil, "wood against none"},
+		{nil, material(), "none against wood"},
+		{material(), material(), ""},
+		{material(1, 2, 3), material(1, 2, 3), ""},
+		{material(1, 2, 3), material(1, 2, 3.000001), ""},
+		{material(1, 2, 3), material(1, 2, 3.1), "youngs_moduli [1 2 3] against [1 2 3.1]"},
+		{material(1, 2, 3), material(), "youngs_moduli [1 2 3] against null"},
+	} {
+		if got := materialDifference(c.fresh, c.old); got != c.want {
+			t.Errorf("got %q, want %q", got, c.want)
+		}
+	}
 }

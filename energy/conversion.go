@@ -79,7 +79,26 @@ func (c *conversion) material(material *MaterialUsed) MaterialUsed {
 	converted.ProportionalLimit *= c.stress
 	converted.ProportionalLimitCompression *= c.stress
 	converted.Density *= c.mass / c.volume()
+	converted.YoungsModuli = c.moduli(material.YoungsModuli)
+	converted.ShearModuli = c.moduli(material.ShearModuli)
+	if material.Stiffness != nil {
+		converted.Stiffness = new([6][6]float64)
+		for i, row := range material.Stiffness {
+			for j, value := range row {
+				converted.Stiffness[i][j] = value * float64(c.stress)
+			}
+		}
+	}
+	converted.YieldStress *= c.stress
 	return converted
+}
+
+func (c *conversion) moduli(moduli *[3]float64) *[3]float64 {
+	if moduli == nil {
+		return nil
+	}
+	factor := float64(c.stress)
+	return &[3]float64{moduli[0] * factor, moduli[1] * factor, moduli[2] * factor}
 }
 
 func (c *conversion) account(account *Account) Account {
@@ -112,6 +131,12 @@ func (c *conversion) hotspot(hotspot *Hotspot) Hotspot {
 	converted.Energy *= c.energy()
 	converted.Volume *= c.volume()
 	converted.EquivalentStress *= c.stress
+	if hotspot.LocalEstimate != nil {
+		estimate := *hotspot.LocalEstimate
+		estimate.Neuber.Stress *= c.stress
+		estimate.EnergyDensity.Stress *= c.stress
+		converted.LocalEstimate = &estimate
+	}
 	return converted
 }
 

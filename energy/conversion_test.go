@@ -20,7 +20,9 @@ var dimensions = map[string][4]float64{
 	"hotspot.energy": {3, 1, 0, -2}, "hotspot.volume": {3, 0, 0, 0}, "hotspot.equivalent_stress": {0, 1, 0, 0},
 
 	"material.youngs_modulus": {0, 1, 0, 0}, "material.proportional_limit": {0, 1, 0, 0},
-	"material.proportional_limit_compression": {0, 1, 0, 0}, "material.density": {-3, 0, 1, 0},
+	"material.proportional_limit_compression": {0, 1, 0, 0}, "material.density": {-3, 0, 1, 0}, "material.yield_stress": {0, 1, 0, 0},
+	"material.youngs_moduli": {0, 1, 0, 0}, "material.shear_moduli": {0, 1, 0, 0}, "material.stiffness": {0, 1, 0, 0},
+	"estimate.stress": {0, 1, 0, 0},
 
 	"model.diagonal": {1, 0, 0, 0}, "model.hotspot_tolerance": {1, 0, 0, 0},
 }
@@ -34,6 +36,14 @@ func fill(structure reflect.Value, next *float64) {
 			field.SetFloat(*next)
 		case *Vector:
 			field.Set(reflect.ValueOf(&Vector{*next, -*next, *next / 2}))
+		case *[3]float64:
+			field.Set(reflect.ValueOf(&[3]float64{*next, 2 * *next, 3 * *next}))
+		case *[6][6]float64:
+			matrix := new([6][6]float64)
+			for j := range 36 {
+				matrix[j/6][j%6] = *next + float64(j)
+			}
+			field.Set(reflect.ValueOf(matrix))
 		}
 	}
 }
@@ -60,6 +70,18 @@ func checkConverted(t *testing.T, prefix string, from, to any, factors [4]float6
 					t.Errorf("%s: %v, want %v times %.17g", key, *got, *value, factor)
 				}
 			}
+		case *[3]float64:
+			for j, got := range after.Field(i).Interface().(*[3]float64) {
+				if !within(got, value[j]*factor, 1e-14) {
+					t.Errorf("%s[%d]: %v, want %v times %.17g", key, j, got, value[j], factor)
+				}
+			}
+		case *[6][6]float64:
+			for j := range 36 {
+				if got := after.Field(i).Interface().(*[6][6]float64)[j/6][j%6]; !within(got, value[j/6][j%6]*factor, 1e-14) {
+					t.Errorf("%s[%d][%d]: %v, want %v times %.17g", key, j/6, j%6, got, value[j/6][j%6], factor)
+				}
+			}
 		}
 	}
 }
@@ -72,6 +94,9 @@ func TestConversionOfEveryNumber(t *testing.T) {
 	fill(reflect.ValueOf(&ledger.Total).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Regions[1].Account).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Hotspots[1]).Elem(), &next)
+	ledger.Hotspots[1].LocalEstimate = &LocalEstimate{Refused: "no"}
+	fill(reflect.ValueOf(&ledger.Hotspots[1].LocalEstimate.Neuber).Elem(), &next)
+	fill(reflect.ValueOf(&ledger.Hotspots[1].LocalEstimate.EnergyDensity).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Materials[1]).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Model).Elem(), &next)
 	units := labels("mm", "MPa", "kg")
@@ -84,6 +109,9 @@ func TestConversionOfEveryNumber(t *testing.T) {
 	checkConverted(t, "", ledger.Total, got.Total, factors)
 	checkConverted(t, "", ledger.Regions[1].Account, got.Regions[1].Account, factors)
 	checkConverted(t, "hotspot.", ledger.Hotspots[1], got.Hotspots[1], factors)
+	before, after := ledger.Hotspots[1].LocalEstimate, got.Hotspots[1].LocalEstimate
+	checkConverted(t, "estimate.", before.Neuber, after.Neuber, factors)
+	checkConverted(t, "estimate.", before.EnergyDensity, after.EnergyDensity, factors)
 	checkConverted(t, "material.", ledger.Materials[1], got.Materials[1], factors)
 	checkConverted(t, "model.", ledger.Model, got.Model, factors)
 	if got.Units != units {
