@@ -343,6 +343,15 @@ func findingOf(list []Finding, code string) *Finding {
 // equal: rounding of sums and of scales.
 const sameEnergy = 1e-9
 
+// Results returns the outcomes of the requirements, those of all runs in one list.
+func (c *Comparison) Results() []RequirementResult {
+	results := make([]RequirementResult, len(c.Requirements))
+	for i := range results {
+		results[i] = c.Requirements[i].RequirementResult
+	}
+	return results
+}
+
 // Stiffness says whether a run is stiffer than the baseline: above 0 stiffer, below 0
 // softer, 0 as stiff, by the energy of the whole model. Under given forces the stiffer
 // structure stores less, under given displacements more (methods, section 17). Where

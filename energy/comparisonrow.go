@@ -2,6 +2,7 @@ package energy
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 )
 
@@ -105,14 +106,18 @@ func (q *comparedQuantity) value(s *scope) Number {
 	return number
 }
 
+// ComparedQuantities returns the keys of what runs are compared by.
+func ComparedQuantities() []string {
+	keys := make([]string, len(comparedQuantities))
+	for i := range keys {
+		keys[i] = comparedQuantities[i].key
+	}
+	return keys
+}
+
 // isCompared reports whether runs are compared by the quantity of a key.
 func isCompared(key string) bool {
-	for i := range comparedQuantities {
-		if comparedQuantities[i].key == key {
-			return true
-		}
-	}
-	return false
+	return slices.Contains(ComparedQuantities(), key)
 }
 
 // cutChange takes change. from the start of a requirement's quantity.

@@ -10,11 +10,11 @@ import (
 
 // verdictWords returns what was judged and what stands against the numbers. It never
 // says that the part is good.
-func verdictWords(ledger *energy.Ledger) string {
+func verdictWords(requirements []energy.RequirementResult, findings []energy.Finding) string {
 	words := "nothing was judged"
-	if count := len(ledger.Requirements); count > 0 {
+	if count := len(requirements); count > 0 {
 		met := 0
-		for _, requirement := range ledger.Requirements {
+		for _, requirement := range requirements {
 			if requirement.Met {
 				met++
 			}
@@ -22,7 +22,7 @@ func verdictWords(ledger *energy.Ledger) string {
 		words = fmt.Sprintf("%d of %d stated requirements met", met, count)
 	}
 	var errors, warnings, accepted energy.Number
-	for _, finding := range ledger.Findings {
+	for _, finding := range findings {
 		switch {
 		case finding.Severity == energy.Note:
 		case finding.Accepted != "":
@@ -53,30 +53,35 @@ func verdictWords(ledger *energy.Ledger) string {
 // limits' sources, and the reasons for what is accepted.
 func verdictSection(ledger *energy.Ledger) section {
 	s := section{heading: "Verdict"}
-	s.say(verdictWords(ledger), verdictTone(ledger))
+	s.say(verdictWords(ledger.Requirements, ledger.Findings), verdictTone(ledger.Requirements, ledger.Findings))
 	t := &table{columns: []column{{kind: word}, {kind: prose}}}
 	t.add("sampled", samplingWords(ledger))
 	t.add("state", timeWords(ledger.Sources))
 	for _, limit := range limitWords(ledger) {
 		t.add("limit", limit)
 	}
-	for _, finding := range ledger.Findings {
-		if finding.Accepted != "" {
-			t.add("accepted", finding.Code+": "+string(finding.Accepted))
-		}
-	}
+	addAccepted(t, ledger.Findings)
 	s.table = t
 	return s
 }
 
-func verdictTone(ledger *energy.Ledger) tone {
+// addAccepted adds the reasons for what is accepted.
+func addAccepted(t *table, findings []energy.Finding) {
+	for _, finding := range findings {
+		if finding.Accepted != "" {
+			t.add("accepted", finding.Code+": "+string(finding.Accepted))
+		}
+	}
+}
+
+func verdictTone(requirements []energy.RequirementResult, findings []energy.Finding) tone {
 	worst := plainTone
-	for _, requirement := range ledger.Requirements {
+	for _, requirement := range requirements {
 		if !requirement.Met {
 			worst = errorTone
 		}
 	}
-	for _, finding := range ledger.Findings {
+	for _, finding := range findings {
 		worst = max(worst, findingTone(&finding))
 	}
 	return worst
@@ -187,14 +192,18 @@ func requirementsSection(ledger *energy.Ledger) section {
 	}}
 	for i := range ledger.Requirements {
 		requirement := &ledger.Requirements[i]
-		outcome, tone := "not met", errorTone
-		if requirement.Met {
-			outcome, tone = "met", plainTone
-		}
+		outcome, tone := outcomeWord(requirement)
 		t.add(outcome, requirement.Name, requirementSubject(requirement), requirementBasis(requirement, &ledger.Units))
 		t.mark(0, tone)
 	}
 	return newSection("Requirements", t)
+}
+
+func outcomeWord(requirement *energy.RequirementResult) (string, tone) {
+	if requirement.Met {
+		return "met", plainTone
+	}
+	return "not met", errorTone
 }
 
 // requirementSubject names what is judged: "energy of web".

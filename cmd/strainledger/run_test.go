@@ -164,7 +164,7 @@ func TestVerdictCode(t *testing.T) {
 		{energy.Ledger{Findings: []energy.Finding{finding(energy.Error, "known")}}, 0},
 		{energy.Ledger{Findings: []energy.Finding{finding(energy.Error, "known"), finding(energy.Error, "")}}, 1},
 	} {
-		if got := verdictCode(&c.ledger); got != c.want {
+		if got := verdictCode(c.ledger.Requirements, c.ledger.Findings); got != c.want {
 			t.Errorf("%+v: %d, want %d", c.ledger, got, c.want)
 		}
 	}
