@@ -53,9 +53,9 @@ func (o *obstacles) of(q *comparedQuantity, region Text) string {
 func (c *comparing) findObstacles(run int) {
 	o := &c.obstacles[run-1]
 	if o.everything != "" {
-		c.findings.add("units-differ", 0, "run %d: %s; its numbers stand as they are, without differences", run, o.everything)
+		c.find("units-differ", run, "%s; its numbers stand as they are, without differences", o.everything)
 	} else if o.masses != "" {
-		c.findings.add("units-differ", 0, "run %d: %s; its masses stand as they are, without differences", run, o.masses)
+		c.find("units-differ", run, "%s; its masses stand as they are, without differences", o.masses)
 	}
 	if run == c.to.Baseline {
 		return
@@ -79,7 +79,7 @@ func (c *comparing) compareModels(run int, o *obstacles) {
 	}
 	if len(parts) > 0 {
 		o.model = "the models were not read alike: " + strings.Join(parts, ", ")
-		c.findings.add("models-differ", 0, "run %d: %s; no percent is given", run, o.model)
+		c.find("models-differ", run, "%s; no percent is given", o.model)
 	}
 }
 
@@ -122,11 +122,11 @@ func (c *comparing) compareLoads(run int, o *obstacles) {
 	fresh, old := c.run(run).Model.Loading, c.baseline().Model.Loading
 	if fresh.Control != old.Control && fresh.Control != "" && old.Control != "" {
 		o.model = fmt.Sprintf("the load is given by %s, in the baseline by %s", fresh.Control, old.Control)
-		c.findings.add("loads-differ", 0, "run %d: %s; no percent is given", run, o.model)
+		c.find("loads-differ", run, "%s; no percent is given", o.model)
 	}
 	if fresh.Scale != old.Scale {
 		o.load = fmt.Sprintf("the load is %v times the reference, in the baseline %v times", fresh.Scale, old.Scale)
-		c.findings.add("loads-differ", 0, "run %d: %s; energies and densities are divided by the square of that, other numbers stand as they are, without percent", run, o.load)
+		c.find("loads-differ", run, "%s; energies and densities are divided by the square of that, other numbers stand as they are, without percent", o.load)
 	}
 }
 
@@ -144,7 +144,7 @@ func (c *comparing) compareRegions(run int, o *obstacles) {
 		case other.Criterion != old.Regions[i].Criterion:
 			reason := fmt.Sprintf("the criterion of region %q is %s, in the baseline %s", name, other.Criterion, old.Regions[i].Criterion)
 			o.criteria[Text(name)], o.criteria[""] = reason, reason
-			c.findings.add("criteria-differ", 0, "run %d: %s; no percent is given of what depends on it", run, reason)
+			c.find("criteria-differ", run, "%s; no percent is given of what depends on it", reason)
 		}
 	}
 	for i := range fresh.Regions {
@@ -155,7 +155,7 @@ func (c *comparing) compareRegions(run int, o *obstacles) {
 	}
 	if len(parts) > 0 {
 		o.whole = "the regions are not the same: " + strings.Join(parts, ", ")
-		c.findings.add("regions-differ", 0, "run %d: %s; no percent is given of them and of the whole model", run, strings.Join(parts, ", "))
+		c.find("regions-differ", run, "%s; no percent is given of them and of the whole model", strings.Join(parts, ", "))
 	}
 }
 
@@ -177,7 +177,7 @@ func (c *comparing) compareMaterials(run int, o *obstacles) {
 		if o.whole == "" {
 			o.whole = reason
 		}
-		c.findings.add("materials-differ", 0, "run %d: %s; no percent is given of it and of the whole model", run, reason)
+		c.find("materials-differ", run, "%s; no percent is given of it and of the whole model", reason)
 	}
 }
 

@@ -153,7 +153,7 @@ func TestUnitsOfRuns(t *testing.T) {
 	}
 	c := compared(t, CompareOptions{}, plain, si)
 	checkFindings(t, c, []string{"units-converted"})
-	if want := "run 2 is in m Pa g; its numbers are converted into mm MPa kg"; c.Findings[0].Message != want || c.Units != labels("mm", "MPa", "kg") {
+	if want := "run 2: the units are m Pa g; the numbers are converted into mm MPa kg"; c.Findings[0].Message != want || c.Units != labels("mm", "MPa", "kg") {
 		t.Errorf("%+v, units %+v", c.Findings[0], c.Units)
 	}
 	// A difference of rounding alone.

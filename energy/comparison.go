@@ -111,7 +111,7 @@ func Compare(runs []ComparedRun, options *CompareOptions) (*Comparison, error) {
 	c.matchHotspots()
 	c.findChanges()
 	c.judge()
-	c.to.Findings = c.findings.sorted(options.Acceptances)
+	c.to.Findings = c.allFindings()
 	return c.to, nil
 }
 
@@ -120,7 +120,8 @@ type comparing struct {
 	options   *CompareOptions
 	to        *Comparison
 	obstacles []obstacles // of each run
-	findings  findings
+	found     []*runFinding
+	findings  findings // of all runs together
 }
 
 // baseline returns the ledger of the baseline.
@@ -176,7 +177,7 @@ func (c *comparing) control(runs []ComparedRun) Text {
 		control := controlOf(runs[i].Ledger)
 		agree = agree && control == first
 		if stated != "" && control != "" && control != stated {
-			c.findings.add("loads-differ", 0, "run %d is loaded by %s, and the comparison states %s: the comparison is obeyed", i+1, control, stated)
+			c.find("loads-differ", i+1, "the load is stated to be by %s, and in the comparison by %s, which is obeyed", control, stated)
 		}
 	}
 	switch {
@@ -208,7 +209,7 @@ func (c *comparing) convert(runs []ComparedRun) {
 		c.obstacles = append(c.obstacles, obstacles{everything: everything, masses: masses})
 		from, to := &ledger.Units, &c.to.Units
 		if everything == "" && (from.Length != to.Length || from.Stress != to.Stress || from.Mass != to.Mass && masses == "") {
-			c.findings.add("units-converted", 0, "run %d is in %s; its numbers are converted into %s", i+1, unitNames(from), unitNames(to))
+			c.find("units-converted", i+1, "the units are %s; the numbers are converted into %s", unitNames(from), unitNames(to))
 		}
 	}
 }
@@ -278,10 +279,10 @@ func (c *comparing) findErrors(run int) {
 		if finding.Severity != Error || finding.Accepted != "" {
 			continue
 		}
-		c.findings.add("error-stands", 0, "run %d: %s: %s", run, finding.Code, finding.Message)
+		found := c.find("error-stands", run, "%s: %s", finding.Code, finding.Message)
 		for _, acceptance := range c.options.Acceptances {
 			if acceptance.Code == finding.Code {
-				c.findings.list[len(c.findings.list)-1].Accepted = Text(acceptance.Reason)
+				found.accepted = Text(acceptance.Reason)
 			}
 		}
 	}
@@ -293,12 +294,12 @@ func (c *comparing) findNew(run int) {
 		before := findingOf(old, finding.Code)
 		switch {
 		case before == nil && finding.Severity == Note:
-			c.findings.add("note-new", 0, "run %d: %s: %s", run, finding.Code, finding.Message)
+			c.find("note-new", run, "%s: %s", finding.Code, finding.Message)
 		case before == nil:
-			c.findings.add("finding-new", 0, "run %d: %s %s: %s", run, finding.Severity, finding.Code, finding.Message)
+			c.find("finding-new", run, "%s %s: %s", finding.Severity, finding.Code, finding.Message)
 		}
 		if finding.Accepted != "" && (before == nil || before.Accepted == "") {
-			c.findings.add("acceptance-new", 0, "run %d accepts %s, the baseline does not: %s", run, finding.Code, finding.Accepted)
+			c.find("acceptance-new", run, "accepts %s, the baseline does not: %s", finding.Code, finding.Accepted)
 		}
 	}
 }
@@ -309,11 +310,11 @@ func (c *comparing) findGone(run int) {
 		after := findingOf(fresh, finding.Code)
 		switch {
 		case after == nil && finding.Accepted != "":
-			c.findings.add("finding-gone", 0, "run %d does not have %s, which the baseline has and accepts: %s", run, finding.Code, finding.Accepted)
+			c.find("finding-gone", run, "does not have %s, which the baseline has and accepts: %s", finding.Code, finding.Accepted)
 		case after == nil:
-			c.findings.add("finding-gone", 0, "run %d does not have %s, which the baseline has", run, finding.Code)
+			c.find("finding-gone", run, "does not have %s, which the baseline has", finding.Code)
 		case finding.Accepted != "" && after.Accepted == "":
-			c.findings.add("acceptance-gone", 0, "run %d does not accept %s, the baseline does: %s", run, finding.Code, finding.Accepted)
+			c.find("acceptance-gone", run, "does not accept %s, the baseline does: %s", finding.Code, finding.Accepted)
 		}
 	}
 }

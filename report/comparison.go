@@ -4,7 +4,6 @@ import (
 	"cmp"
 	"fmt"
 	"io"
-	"path/filepath"
 	"slices"
 	"strconv"
 
@@ -69,7 +68,9 @@ func SummariseComparison(c *energy.Comparison) *Summary {
 		verdict: comparisonVerdictSection(c, results),
 	}
 	for _, s := range []section{
-		runsSection(c), wholeSection(c), stiffnessSection(c), regionChangesSection(c), matchesSection(c),
+		runsSection(c), wholeSection(c, "Stored energy of the whole model", storedColumns), stiffnessSection(c),
+		wholeSection(c, "Peaks and limits of the whole model", peakColumns),
+		storedByRegionSection(c), peaksByRegionSection(c), matchesSection(c),
 		findingsSection(c.Findings, &c.Units), comparisonRequirementsSection(c),
 	} {
 		if s.heading != "" {
@@ -83,13 +84,13 @@ func comparisonTitle(c *energy.Comparison) string {
 	return cmp.Or(c.Title, fmt.Sprintf("Comparison of %d runs", len(c.Runs)))
 }
 
-// runTitle returns the title of a run, else the name of its file.
+// runTitle returns the title of a run, else the path of its file.
 func runTitle(c *energy.Comparison, run int) string {
 	compared := &c.Runs[run-1]
-	return cmp.Or(string(compared.Title), filepath.Base(compared.Path))
+	return cmp.Or(string(compared.Title), compared.Path)
 }
 
-// runsSection lists the runs and what their own ledgers say.
+// runsSection lists the runs, and what their own ledgers say of them.
 func runsSection(c *energy.Comparison) section {
 	t := &table{columns: []column{
 		{kind: number, heading: "run"},
@@ -97,25 +98,33 @@ func runsSection(c *energy.Comparison) section {
 		{kind: name, heading: "ledger or study"},
 		numbers("cells", &c.Units),
 		{kind: number, heading: "load"},
-		{kind: prose, heading: "its own verdict"},
+		{kind: word, heading: "own requirements met"},
+		{kind: number, heading: "errors"},
+		{kind: number, heading: "warnings"},
 	}}
 	hasLoads := false
 	for i := range c.Runs {
 		ledger := c.Runs[i].Ledger
-		hasLoads = hasLoads || ledger.Model.Loading.Scale != 1
+		scale := ledger.Model.Loading.Scale
+		hasLoads = hasLoads || scale != 1
+		met := "none stated"
+		if len(ledger.Requirements) > 0 {
+			met = metWords(ledger.Requirements)
+		}
+		errors, warnings, _ := countFindings(ledger.Findings)
 		t.add(
-			strconv.Itoa(i+1),
-			runTitle(c, i+1),
-			c.Runs[i].Path,
-			inCounts.text(energy.Number(ledger.Total.Cells)),
-			plain(ledger.Model.Loading.Scale),
-			verdictWords(ledger.Requirements, ledger.Findings),
+			strconv.Itoa(i+1), string(c.Runs[i].Title), c.Runs[i].Path, inCounts.text(energy.Number(ledger.Total.Cells)),
+			plain(scale), met, grouped(errors), grouped(warnings),
 		)
+		if errors > 0 {
+			t.mark(6, errorTone)
+		}
 	}
 	if !hasLoads {
 		const loads = 4
 		t.drop(loads)
 	}
+	t.dropIdle()
 	s := newSection("Runs", t)
 	s.note(fmt.Sprintf("Run %d is the baseline. Units: %s.", c.Baseline, unitWords(&c.Units)))
 	if hasLoads {
@@ -194,19 +203,34 @@ func comparedTexts(columns []comparedColumn, c *energy.Comparison, run int, regi
 	return texts
 }
 
-// wholeSection sets the whole models beside each other.
-func wholeSection(c *energy.Comparison) section {
-	columns := []comparedColumn{
-		{"volume", false}, {"energy", false}, {"energy", true}, {"specific_energy", false}, {"max_density", false}, {"max_density", true},
-		{"max_equivalent_stress", false}, {"max_utilisation", false}, {"volume_share_past_limit", false}, {"error_estimate", false},
+// Tables of runs side by side: what they store, and how near they are to their limits.
+var (
+	storedColumns = []comparedColumn{
+		{"volume", false}, {"mass", false}, {"energy", false}, {"energy", true}, {"mean_density", false}, {"specific_energy", false}, {"error_estimate", false},
 	}
+	peakColumns = []comparedColumn{
+		{"max_density", false}, {"max_density", true}, {"peak_density", false}, {"max_equivalent_stress", false},
+		{"max_utilisation", false}, {"max_utilisation", true}, {"volume_share_past_limit", false}, {"energy_share_past_limit", false},
+	}
+)
+
+// wholeSection sets the whole models beside each other.
+func wholeSection(c *energy.Comparison, heading string, columns []comparedColumn) section {
 	t := &table{columns: append([]column{{kind: number, heading: "run"}}, comparedColumns(columns, &c.Units)...)}
 	for i := range c.Runs {
 		t.add(append([]string{strconv.Itoa(i + 1)}, comparedTexts(columns, c, i+1, "")...)...)
-		t.mark(8, utilisationTone(c.Runs[i].Ledger.Total.MaxUtilisation))
+		markUtilisation(t, columns, 1, c.Row(i+1, "", "max_utilisation"))
 	}
 	t.dropIdle()
-	return newSection("Whole model", t)
+	return newSection(heading, t)
+}
+
+// markUtilisation sets the tone of the utilisation in the last row, whose columns of
+// numbers start at the given one.
+func markUtilisation(t *table, columns []comparedColumn, start int, row *energy.ComparisonRow) {
+	if at := slices.Index(columns, comparedColumn{"max_utilisation", false}); at >= 0 {
+		t.mark(start+at, utilisationTone(row.Value))
+	}
 }
 
 // stiffnessSection ranks the runs by what they store, where the control of the load says
@@ -277,36 +301,59 @@ func stiffnessWords(c *energy.Comparison, run int) string {
 // regionRowsShown is the number of rows of regions that a terminal lists.
 const regionRowsShown = 60
 
-// regionChangesSection sets the runs' regions beside each other, region by region.
-func regionChangesSection(c *energy.Comparison) section {
+// storedByRegionSection sets what the runs' regions store beside each other.
+func storedByRegionSection(c *energy.Comparison) section {
 	columns := []comparedColumn{
-		{"energy", false}, {"energy", true}, {"energy_share", false}, {"max_density", false}, {"max_density", true},
-		{"max_utilisation", false}, {"volume_share_past_limit", false}, {"stiffness_sensitivity", false},
+		{"volume", false}, {"energy", false}, {"energy", true}, {"energy_share", false}, {"mean_density", false}, {"error_estimate", false},
+		{"stiffness_sensitivity", false},
 	}
-	const ofWhole = 4
-	head := []column{{kind: name, heading: "region"}, {kind: number, heading: "run"}}
-	t := &table{terminalRows: regionRowsShown, columns: append(head, comparedColumns(columns, &c.Units)...)}
-	t.columns = slices.Insert(t.columns, ofWhole, column{kind: number, heading: "of old total", unit: "%"})
+	t := regionTable(c, columns)
+	const ofTotal = 5
+	t.columns = slices.Insert(t.columns, ofTotal, column{kind: number, heading: "of old total", unit: "%"})
 	t.columns = append(t.columns, column{kind: word, heading: "resolved"})
-	for _, region := range regionsOf(c) {
-		for i := range c.Runs {
-			row := c.Row(i+1, region, "energy")
-			if row == nil {
-				continue
-			}
-			texts := append([]string{string(region), strconv.Itoa(i + 1)}, comparedTexts(columns, c, i+1, region)...)
-			texts = slices.Insert(texts, ofWhole, ofOldTotal(c, row))
-			t.add(append(texts, resolvedWord(row))...)
-			t.mark(8, utilisationTone(c.Row(i+1, region, "max_utilisation").Value))
-		}
-	}
+	i := 0
+	eachRegion(c, func(run int, region energy.Text) {
+		row := c.Row(run, region, "energy")
+		t.rows[i] = slices.Insert(t.rows[i], ofTotal, phrase{text: ofOldTotal(c, row)})
+		t.rows[i] = append(t.rows[i], phrase{text: resolvedWord(row)})
+		i++
+	})
 	t.dropIdle()
-	s := newSection("By region", t)
+	s := newSection("Stored energy by region", t)
 	s.note("The change of a region's energy is given over the region's own in the baseline, and over the baseline's total.")
 	if slices.ContainsFunc(t.columns, func(column column) bool { return column.heading == quantityOf("stiffness_sensitivity").name }) {
 		s.note("Sensitivity: relative change of the total over that of the region's stiffness, to first order.")
 	}
 	return s
+}
+
+// peaksByRegionSection sets the peaks of the runs' regions beside each other.
+func peaksByRegionSection(c *energy.Comparison) section {
+	t := regionTable(c, peakColumns)
+	t.dropIdle()
+	return newSection("Peaks and limits by region", t)
+}
+
+// regionTable returns a table with a row for each region and run.
+func regionTable(c *energy.Comparison, columns []comparedColumn) *table {
+	head := []column{{kind: name, heading: "region"}, {kind: number, heading: "run"}}
+	t := &table{terminalRows: regionRowsShown, columns: append(head, comparedColumns(columns, &c.Units)...)}
+	eachRegion(c, func(run int, region energy.Text) {
+		t.add(append([]string{string(region), strconv.Itoa(run)}, comparedTexts(columns, c, run, region)...)...)
+		markUtilisation(t, columns, len(head), c.Row(run, region, "max_utilisation"))
+	})
+	return t
+}
+
+// eachRegion visits region by region the runs that are compared by it.
+func eachRegion(c *energy.Comparison, visit func(run int, region energy.Text)) {
+	for _, region := range regionsOf(c) {
+		for i := range c.Runs {
+			if c.Row(i+1, region, "energy") != nil {
+				visit(i+1, region)
+			}
+		}
+	}
 }
 
 // regionsOf returns the regions of the comparison in the order of their first rows.

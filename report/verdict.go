@@ -12,27 +12,10 @@ import (
 // says that the part is good.
 func verdictWords(requirements []energy.RequirementResult, findings []energy.Finding) string {
 	words := "nothing was judged"
-	if count := len(requirements); count > 0 {
-		met := 0
-		for _, requirement := range requirements {
-			if requirement.Met {
-				met++
-			}
-		}
-		words = fmt.Sprintf("%d of %d stated requirements met", met, count)
+	if len(requirements) > 0 {
+		words = metWords(requirements) + " stated requirements met"
 	}
-	var errors, warnings, accepted energy.Number
-	for _, finding := range findings {
-		switch {
-		case finding.Severity == energy.Note:
-		case finding.Accepted != "":
-			accepted++
-		case finding.Severity == energy.Error:
-			errors++
-		default:
-			warnings++
-		}
-	}
+	errors, warnings, accepted := countFindings(findings)
 	var counts []string
 	if errors > 0 {
 		counts = append(counts, countOf(errors, "error"))
@@ -47,6 +30,33 @@ func verdictWords(requirements []energy.RequirementResult, findings []energy.Fin
 		return words
 	}
 	return words + "; " + strings.Join(counts, ", ")
+}
+
+// metWords returns how many of the requirements are met: "3 of 3".
+func metWords(requirements []energy.RequirementResult) string {
+	met := 0
+	for _, requirement := range requirements {
+		if requirement.Met {
+			met++
+		}
+	}
+	return fmt.Sprintf("%d of %d", met, len(requirements))
+}
+
+// countFindings counts the errors and warnings that stand, and those that are accepted.
+func countFindings(findings []energy.Finding) (errors, warnings, accepted energy.Number) {
+	for _, finding := range findings {
+		switch {
+		case finding.Severity == energy.Note:
+		case finding.Accepted != "":
+			accepted++
+		case finding.Severity == energy.Error:
+			errors++
+		default:
+			warnings++
+		}
+	}
+	return errors, warnings, accepted
 }
 
 // verdictSection is the verdict with how its numbers were sampled, the state's time, the
@@ -65,11 +75,14 @@ func verdictSection(ledger *energy.Ledger) section {
 	return s
 }
 
-// addAccepted adds the reasons for what is accepted.
+// addAccepted adds the reasons for what is accepted, each once.
 func addAccepted(t *table, findings []energy.Finding) {
+	seen := map[string]bool{}
 	for _, finding := range findings {
-		if finding.Accepted != "" {
-			t.add("accepted", finding.Code+": "+string(finding.Accepted))
+		reason := finding.Code + ": " + string(finding.Accepted)
+		if finding.Accepted != "" && !seen[reason] {
+			seen[reason] = true
+			t.add("accepted", reason)
 		}
 	}
 }

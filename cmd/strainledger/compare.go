@@ -25,7 +25,7 @@ type compareOptions struct {
 
 func (o *compareOptions) declare(flags *pflag.FlagSet) {
 	o.commonOptions.declare(flags)
-	flags.StringVar(&o.study, "study", "", "requirements, tolerance and control of the comparison: `STUDY.toml`")
+	flags.StringVar(&o.study, "study", "", "read requirements, tolerance and control of the comparison from the file `STUDY.toml`")
 	flags.IntVar(&o.baseline, "baseline", 1, "compare with run `N`, counted from 1 in the order given")
 	flags.StringArrayVar(&o.Requirements, "require", nil, "a `BOUND` that has to hold: \"change.energy of web <= 0.05\"; once for each bound")
 	flags.StringVar(&o.out, "out", "", "write comparison.json, .csv and requirements.xml to the folder `DIR` instead of a text to standard output")

@@ -33,12 +33,13 @@ func parseComparison(data []byte, flags Flags, to *faults) *energy.CompareOption
 		return nil
 	}
 	flags.add(root, to)
-	for _, entry := range root.keys {
-		if findKey(entry.name) != nil && !slices.Contains(comparisonTables, entry.name) {
-			entry.faulty = true
+	root.keys = slices.DeleteFunc(root.keys, func(entry *node) bool {
+		isOfRuns := findKey(entry.name) != nil && !slices.Contains(comparisonTables, entry.name)
+		if isOfRuns {
 			to.add(entry.place, "%s has no meaning in the study of a comparison; it belongs into the studies of the runs", quote(entry.name))
 		}
-	}
+		return isOfRuns
+	})
 	check(root, to)
 	r := reading{root: root, faults: to, isComparison: true}
 	r.units()

@@ -78,6 +78,11 @@ list = 7
 [hotspots]
 count = 3
 by = "energy"
+[loading]
+control = "mixed"
+scale = 1.25
+[compare]
+tolerance = 7.5
 [[require]]
 name = "web stores little"
 quantity = "energy"
@@ -142,6 +147,8 @@ func wholeOptions() energy.Options {
 		},
 		Acceptances: []energy.Acceptance{{Code: "large-strain", Reason: "rubber pad, not judged"}},
 		Review:      energy.Review{Document: "MB-7", Revision: "C", PreparedBy: "A. N."},
+
+		Loading: &energy.Loading{Control: "mixed", Scale: 1.25}, HotspotTolerance: 7.5,
 	}
 }
 
@@ -174,7 +181,7 @@ func TestReadWhole(t *testing.T) {
 	want := &Study{
 		Path: path,
 		// sha256sum of the text above
-		SHA256:  "79fabb33713fd2289f9e5d9bf539f256418888815512c79ad9a78d163e9e9a4a",
+		SHA256:  "dffd7837882771570813085f30bcbb61c0ef5167655b986f992e314e7c4650f3",
 		Options: wholeOptions(),
 		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
 		Time:    Time{Value: &time},
