@@ -398,6 +398,7 @@ func matchesSection(c *energy.Comparison) section {
 		{kind: number, heading: "change", unit: "%"},
 		numbers("utilisation", &c.Units),
 	}}
+	distance := coordinates([]*energy.Vector{{float64(c.Tolerance)}}) // rounding of a place is no move
 	for _, match := range c.Hotspots {
 		old, fresh := hotspotOfRank(c.Runs[c.Baseline-1].Ledger, match.BaselineRank), hotspotOfRank(c.Runs[match.Run-1].Ledger, match.Rank)
 		shown, change := fresh, energy.None
@@ -407,9 +408,13 @@ func matchesSection(c *energy.Comparison) section {
 		case old != nil && c.Row(match.Run, energy.Text(fresh.Region), "max_density").Relative.Exists():
 			change = shareOf(fresh.Density-old.Density, old.Density)
 		}
+		apart := missing
+		if match.Distance.Exists() {
+			apart = distance(float64(match.Distance))
+		}
 		t.add(
 			strconv.Itoa(match.Run), shown.Region, inWords.text(match.BaselineRank), inWords.text(match.Rank), match.State,
-			inLength.text(match.Distance), inDensity.text(shown.Density), signedPercent(change), inRatios.text(shown.Utilisation),
+			apart, inDensity.text(shown.Density), signedPercent(change), inRatios.text(shown.Utilisation),
 		)
 	}
 	s := newSection("Hotspots against the baseline", t)
