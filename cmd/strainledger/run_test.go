@@ -378,6 +378,7 @@ func TestOutputThatCannotBeWritten(t *testing.T) {
 	inDemo(t)
 	for _, args := range [][]string{
 		{"tally", "bracket-r2.toml"}, {"tally", "bracket-r2.toml", "--json", "--quiet"}, {"tally", "bracket-r2.toml", "--check"}, {"demo"},
+		{"compare", "bracket-r2.toml", "bracket-r5.toml"}, {"compare", "bracket-r2.toml", "bracket-r5.toml", "--json", "--quiet"},
 		{"inspect", "bracket-r2.vtu"}, {"version"}, {"completion", "bash"}, {"help"}, {"tally", "-h"},
 	} {
 		var messages bytes.Buffer
