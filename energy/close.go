@@ -72,6 +72,13 @@ func (p *plan) summary() ModelSummary {
 	o := p.options
 	summary := ModelSummary{
 		Idealisation: string(o.Idealisation), Points: "reference", EnergyFrom: string(p.from), Criterion: string(p.criterion()),
+		Diagonal: None, Loading: o.Loading, HotspotTolerance: None,
+	}
+	if !p.bounds.IsEmpty() {
+		summary.Diagonal = Number(p.bounds.Diagonal())
+	}
+	if o.HotspotTolerance > 0 {
+		summary.HotspotTolerance = Number(o.HotspotTolerance)
 	}
 	if o.Deformed {
 		summary.Points = "deformed"

@@ -60,6 +60,23 @@ var severities = map[string]string{
 	"toe":                   Note,
 	"true-converted":        Note,
 	"units-assumed":         Note,
+
+	// Of a comparison.
+	"error-stands":         Error,
+	"units-differ":         Warning,
+	"models-differ":        Warning,
+	"loads-differ":         Warning,
+	"criteria-differ":      Warning,
+	"regions-differ":       Warning,
+	"materials-differ":     Warning,
+	"finding-new":          Warning,
+	"acceptance-gone":      Warning,
+	"acceptance-new":       Note,
+	"control-not-stated":   Note,
+	"finding-gone":         Note,
+	"hotspots-not-matched": Note,
+	"note-new":             Note,
+	"units-converted":      Note,
 }
 
 // graveCodes are those whose findings are errors instead where the case is grave.

@@ -60,6 +60,17 @@ type ModelSummary struct {
 	Points       string `json:"points"`
 	EnergyFrom   string `json:"energy_from"`
 	Criterion    string `json:"criterion"`
+
+	// What a comparison with other runs needs.
+	Diagonal         Number   `json:"diagonal"`          // of the box that holds the points
+	Loading          *Loading `json:"loading"`           // nil: nothing is stated
+	HotspotTolerance Number   `json:"hotspot_tolerance"` // within which hotspots of two runs match, where stated
+}
+
+// A Loading says how the structure is loaded, as the study states it.
+type Loading struct {
+	Control Text   `json:"control"` // force | displacement | mixed
+	Scale   Number `json:"scale"`   // the run's load over the load that runs are compared at
 }
 
 // StudyFile identifies the study that the run followed.

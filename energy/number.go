@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/json"
 	"math"
+	"reflect"
 	"strconv"
 )
 
@@ -37,8 +38,26 @@ func (n *Number) UnmarshalJSON(data []byte) error {
 		return nil
 	}
 	value, err := strconv.ParseFloat(string(data), 64)
+	if err != nil {
+		return &json.UnmarshalTypeError{Value: jsonKind(data), Type: reflect.TypeFor[Number]()}
+	}
 	*n = Number(value)
-	return err
+	return nil
+}
+
+// jsonKind returns JSON's word for a value that is no number in range.
+func jsonKind(data []byte) string {
+	switch data[0] {
+	case '"':
+		return "string"
+	case 't', 'f':
+		return "boolean"
+	case '[':
+		return "list"
+	case '{':
+		return "object"
+	}
+	return "number " + string(data)
 }
 
 // A Text is a string that may not exist: empty is written as null.

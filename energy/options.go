@@ -63,6 +63,9 @@ type Options struct {
 	Acceptances  []Acceptance
 	Review       Review
 
+	Loading          *Loading // nil: nothing is stated
+	HotspotTolerance float64  // distance within which hotspots of two runs match; 0: not stated
+
 	Workers          int  // 0: all processors
 	ChunkCells       int  // cells in a chunk; 0: the walk's default
 	ListAllPastLimit bool // keep every cell past its limit for Ledger.AllPastLimit

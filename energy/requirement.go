@@ -1,6 +1,7 @@
 package energy
 
 import (
+	"cmp"
 	"fmt"
 	"reflect"
 	"strconv"
@@ -89,22 +90,35 @@ func CheckQuantity(quantity string) error {
 // is not met, and says why.
 func judge(ledger *Ledger, requirements []Requirement) []RequirementResult {
 	results := []RequirementResult{}
-	for _, r := range requirements {
-		result := RequirementResult{Name: r.Name, Quantity: r.Quantity, Region: Text(r.Region), AtMost: r.AtMost, AtLeast: r.AtLeast, Value: None}
-		value, why := valueOf(ledger, &r)
-		result.Value, result.Why = value, Text(why)
-		if value.Exists() {
-			result.Met = !(value > r.AtMost) && !(value < r.AtLeast)
-		}
-		if r.Quantity == "balance.gap" && result.Met && -value > r.AtMost {
-			result.Met, result.Why = false, "at_most bounds the size of the gap, which may be of either sign"
-		}
-		if why := hiddenByYielding(ledger, &r); why != "" && result.Met {
-			result.Met, result.Why = false, Text(why)
-		}
-		results = append(results, result)
+	for i := range requirements {
+		r := &requirements[i]
+		value, why := valueOf(ledger, r)
+		hidden := cmp.Or(hiddenByYielding(ledger, r), hiddenBySign(r, value))
+		results = append(results, outcome(r, value, why, hidden))
 	}
 	return results
+}
+
+// outcome holds a number against a requirement. why says why there is none, hidden why
+// the number does not count though it keeps the bound.
+func outcome(r *Requirement, value Number, why, hidden string) RequirementResult {
+	result := RequirementResult{
+		Name: r.Name, Quantity: r.Quantity, Region: Text(r.Region), AtMost: r.AtMost, AtLeast: r.AtLeast,
+		Value: value, Met: value.Exists() && !(value > r.AtMost) && !(value < r.AtLeast), Why: Text(why),
+	}
+	if result.Met && hidden != "" {
+		result.Met, result.Why = false, Text(hidden)
+	}
+	return result
+}
+
+// hiddenBySign says why a bound on the balance's gap is not met although its value is
+// below: the gap may be of either sign, and at_most bounds its size.
+func hiddenBySign(r *Requirement, value Number) string {
+	if r.Quantity == "balance.gap" && -value > r.AtMost {
+		return "at_most bounds the size of the gap, which may be of either sign"
+	}
+	return ""
 }
 
 // valueOf finds a requirement's number, or says why there is none.

@@ -2,14 +2,16 @@ package energy
 
 import "math"
 
-// lengthInMetres and stressInPascals are exact by definition (inch 0.0254 m, pound
-// force 4.4482216152605 N); the pound force per square inch is their quotient.
+// lengthInMetres, stressInPascals and massInKilograms are exact by definition (inch
+// 0.0254 m, pound 0.45359237 kg, pound force 4.4482216152605 N); the pound force per
+// square inch is their quotient.
 var (
 	lengthInMetres  = map[string]float64{"mm": 1e-3, "m": 1, "cm": 1e-2, "in": 0.0254, "ft": 0.3048}
 	stressInPascals = map[string]float64{
 		"MPa": 1e6, "Pa": 1, "kPa": 1e3, "GPa": 1e9,
 		"psi": 4.4482216152605 / (0.0254 * 0.0254), "ksi": 4448.2216152605 / (0.0254 * 0.0254),
 	}
+	massInKilograms = map[string]float64{"kg": 1, "g": 1e-3, "t": 1e3, "lb": 0.45359237}
 )
 
 // energyNames are the units of stress × length³ that have a name of their own.
@@ -54,4 +56,18 @@ func EnergyInJoules(length, stress string) float64 {
 		return math.NaN()
 	}
 	return pascals * metres * metres * metres
+}
+
+// factorBetween returns by what a number in one unit is multiplied to be in another; 1
+// where neither is stated, NaN where one alone is, or is not in the table.
+func factorBetween(table map[string]float64, from, to string) float64 {
+	if from == to {
+		return 1
+	}
+	one, hasOne := table[from]
+	other, hasOther := table[to]
+	if !hasOne || !hasOther {
+		return math.NaN()
+	}
+	return one / other
 }

@@ -251,6 +251,9 @@ func (w *worker) growNodes(count int) {
 
 // productRule returns the rule that integrates the product of two interpolated fields.
 func (w *worker) productRule() *mesh.Tabulation {
+	if w.cell.IsRational() { // nothing is polynomial there
+		return w.cell.Shape.FineRule()
+	}
 	if w.options.Idealisation == Axisymmetric {
 		return w.cell.Shape.RingProductRule()
 	}

@@ -43,11 +43,14 @@ func regionRows(ledger *energy.Ledger) []regionRow {
 	return append(rows, regionRow{energy.RegionAccount{Name: totalName, Account: ledger.Total}, "total"})
 }
 
-// write writes the file's rows after a heading, as RFC 4180 has it but with LF line
-// ends: no unit in a name, an empty cell for what does not exist, numbers as in JSON.
-func (f csvFile) write(w io.Writer, ledger *energy.Ledger) error {
+func (f csvFile) write(w io.Writer, ledger *energy.Ledger) error { return writeRows(w, f.rows(ledger)) }
+
+// writeRows writes a slice of structs after a heading, as RFC 4180 has it but with LF
+// line ends: no unit in a name, an empty cell for what does not exist, numbers as in
+// JSON.
+func writeRows(w io.Writer, list any) error {
 	writer := csv.NewWriter(w)
-	rows := reflect.ValueOf(f.rows(ledger))
+	rows := reflect.ValueOf(list)
 	if err := writer.Write(csvHeading(rows.Type().Elem())); err != nil {
 		return err
 	}

@@ -1,10 +1,8 @@
 package report
 
 import (
-	"encoding/csv"
 	"fmt"
 	"io"
-	"reflect"
 	"strings"
 
 	"strainledger/energy"
@@ -17,21 +15,7 @@ func CurveJSON(w io.Writer, analysis *energy.CurveAnalysis) error { return write
 // the ledger's tables: strain as a ratio, stress and energy per volume in the unit of
 // stress.
 func CurveCSV(w io.Writer, analysis *energy.CurveAnalysis) error {
-	writer := csv.NewWriter(w)
-	if err := writer.Write(csvHeading(reflect.TypeFor[energy.CurveRow]())); err != nil {
-		return err
-	}
-	for _, row := range analysis.Rows() {
-		cells, err := csvCells(nil, reflect.ValueOf(row))
-		if err != nil {
-			return err
-		}
-		if err := writer.Write(cells); err != nil {
-			return err
-		}
-	}
-	writer.Flush()
-	return writer.Error()
+	return writeRows(w, analysis.Rows())
 }
 
 // WriteCurveFiles writes the analysis of a test curve to the folder in every form:

@@ -35,32 +35,42 @@ type (
 	}
 )
 
-// writeJUnit writes one suite for the run with one case for each requirement: a failure,
-// with value and bound, where it is not met, an error where its value is not available.
-// Times are 0, so that the same input gives the same bytes.
+// writeJUnit writes one suite for the run with one case for each requirement.
 func writeJUnit(w io.Writer, ledger *energy.Ledger) error {
-	suite := junitSuite{Name: titleOf(ledger), Tests: len(ledger.Requirements)}
+	suite := junitSuite{Name: titleOf(ledger)}
 	for i := range ledger.Requirements {
 		requirement := &ledger.Requirements[i]
-		entry := junitCase{Name: requirement.Name, Class: regionName(requirement.Region)}
-		outcome := &junitOutcome{Message: requirementSubject(requirement) + ": " + requirementBasis(requirement, &ledger.Units), Type: requirement.Quantity}
-		switch {
-		case requirement.Met:
-		case requirement.Value.Exists():
-			entry.Failure = outcome
-			suite.Failures++
-		default:
-			entry.Error = outcome
-			suite.Errors++
-		}
-		suite.Cases = append(suite.Cases, entry)
+		suite.add(requirement, regionName(requirement.Region), &ledger.Units)
 	}
+	return suite.write(w)
+}
+
+// add adds a case for a requirement: a failure, with value and bound, where it is not
+// met, an error where its value is not available. Times are 0, so that the same input
+// gives the same bytes.
+func (s *junitSuite) add(requirement *energy.RequirementResult, class string, units *energy.UnitLabels) {
+	entry := junitCase{Name: requirement.Name, Class: class}
+	outcome := &junitOutcome{Message: requirementSubject(requirement) + ": " + requirementBasis(requirement, units), Type: requirement.Quantity}
+	switch {
+	case requirement.Met:
+	case requirement.Value.Exists():
+		entry.Failure = outcome
+		s.Failures++
+	default:
+		entry.Error = outcome
+		s.Errors++
+	}
+	s.Tests++
+	s.Cases = append(s.Cases, entry)
+}
+
+func (s *junitSuite) write(w io.Writer) error {
 	if _, err := io.WriteString(w, xml.Header); err != nil {
 		return err
 	}
 	encoder := xml.NewEncoder(w)
 	encoder.Indent("", "  ")
-	if err := encoder.Encode(junitSuites{Suite: suite}); err != nil {
+	if err := encoder.Encode(junitSuites{Suite: *s}); err != nil {
 		return err
 	}
 	_, err := io.WriteString(w, "\n")

@@ -92,8 +92,9 @@ func bracket() *energy.Ledger {
 		Schema: energy.LedgerSchema,
 		Title:  "Mooring bracket, fillet R2",
 		Units:  energy.UnitLabels{Length: "mm", Stress: "MPa", Energy: "mJ", EnergyDensity: "mJ/mm^3", Mass: "kg"},
-		Model:  energy.ModelSummary{Idealisation: "solid", Points: "reference", EnergyFrom: "stress-strain", Criterion: "von-mises"},
-		Study:  &energy.StudyFile{Path: "bracket-r2.toml", SHA256: energy.Text(strings.Repeat("0f", 32))},
+		Model: energy.ModelSummary{Idealisation: "solid", Points: "reference", EnergyFrom: "stress-strain", Criterion: "von-mises",
+			Diagonal: 82.5, Loading: &energy.Loading{Control: "force", Scale: 1.5}, HotspotTolerance: 2},
+		Study: &energy.StudyFile{Path: "bracket-r2.toml", SHA256: energy.Text(strings.Repeat("0f", 32))},
 		Sources: []energy.SourceFile{
 			{Path: "bracket-r2.vtu", SHA256: energy.Text(strings.Repeat("a7", 32)), Bytes: 214748, Points: 1034, Cells: 3769, Time: 1},
 		},
@@ -188,7 +189,7 @@ func unlimited() *energy.Ledger {
 	ledger := bracket()
 	ledger.Title, ledger.Study, ledger.Repeated = "", nil, nil
 	ledger.Units = energy.UnitLabels{}
-	ledger.Model = energy.ModelSummary{Idealisation: "plane-strain", Thickness: energy.Number(1), Points: "deformed", EnergyFrom: "stress", Criterion: "tresca"}
+	ledger.Model = energy.ModelSummary{Idealisation: "plane-strain", Thickness: energy.Number(1), Points: "deformed", EnergyFrom: "stress", Criterion: "tresca", Diagonal: 82.5, HotspotTolerance: energy.None}
 	ledger.Fields = energy.FieldsUsed{
 		Stress: &energy.FieldUsed{
 			Array: "sx sy txy", On: "point", Order: "xx yy xy", Sign: "compression", DecidedBy: "default",
@@ -234,7 +235,7 @@ func unlimited() *energy.Ledger {
 func bare() *energy.Ledger {
 	return &energy.Ledger{
 		Schema: energy.LedgerSchema,
-		Model:  energy.ModelSummary{Idealisation: "solid", Points: "reference", EnergyFrom: "stress-strain", Criterion: "von-mises"},
+		Model:  energy.ModelSummary{Idealisation: "solid", Points: "reference", EnergyFrom: "stress-strain", Criterion: "von-mises", Diagonal: energy.None, HotspotTolerance: energy.None},
 		Sources: []energy.SourceFile{
 			{Path: "bracket.vtk", Time: energy.None},
 		},

@@ -54,6 +54,9 @@ func modelSection(ledger *energy.Ledger) section {
 	t.add("energy", energyWords(&ledger.Model))
 	t.add("criterion", inPlainWords(ledger.Model.Criterion))
 	t.add("units", unitWords(&ledger.Units))
+	if words := loadingWords(ledger.Model.Loading); words != "" {
+		t.add("loading", words)
+	}
 	for _, field := range fieldsOf(&ledger.Fields) {
 		if field.used != nil {
 			t.add(field.name, fieldWords(field.used))
@@ -80,6 +83,30 @@ func idealisationWords(model *energy.ModelSummary, units *energy.UnitLabels) str
 		words += "; points in their " + model.Points + " position"
 	}
 	return words
+}
+
+// loadingWords says how the structure is loaded; "" where nothing is stated.
+func loadingWords(loading *energy.Loading) string {
+	var parts []string
+	if loading != nil && loading.Control != "" {
+		parts = append(parts, controlWords(loading.Control))
+	}
+	if loading != nil && loading.Scale.Exists() {
+		parts = append(parts, plain(loading.Scale)+" times the load that runs are compared at")
+	}
+	return strings.Join(parts, ", ")
+}
+
+func controlWords(control energy.Text) string {
+	switch control {
+	case "force":
+		return "by given forces"
+	case "displacement":
+		return "by given displacements"
+	case "mixed":
+		return "by forces and displacements together"
+	}
+	return string(control)
 }
 
 func energyWords(model *energy.ModelSummary) string {

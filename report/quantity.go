@@ -22,6 +22,7 @@ const (
 	inEnergy
 	inDensity // energy per volume
 	inStress
+	inSpecificEnergy // energy per mass
 )
 
 // A quantity is one number or text of the ledger: the key it has there, its name
@@ -69,6 +70,11 @@ var quantities = []quantity{
 	{"error_estimate", "estimated error", inShares, "Estimated error of the mesh in the energy norm, as a part of that norm."},
 	{"energy_error", "estimated error of the energy", inEnergy, "Estimated error of the energy that comes from the mesh."},
 
+	{"specific_energy", "specific energy", inSpecificEnergy, "Energy over mass."},
+	{"volume_share_past_limit", "volume past the limit", inShares, "Volume of the cells whose utilisation is above 1, over the volume."},
+	{"energy_share_past_limit", "energy past the limit", inShares, "Energy of the cells whose utilisation is above 1, over the energy."},
+	{"stiffness_sensitivity", "sensitivity", inRatios, "Relative change of the whole model's energy over that of the region's stiffness, to first order."},
+
 	{"rank", "rank", inWords, "Place in the list of hotspots, from 1."},
 	{"region", "region", inWords, "Name of the region; empty for the whole model."},
 	{"cell", "cell", inWords, "Position of the cell in its own source file, from 0, ghosts counted."},
@@ -108,8 +114,12 @@ var quantities = []quantity{
 }
 
 // quantityOf returns the quantity of a ledger key, which may stand behind a path, as in
-// hotspot.1.density. A key that is not known is a number without a unit.
+// hotspot.1.density. A change of one against a baseline is a share of it. A key that is
+// not known is a number without a unit.
 func quantityOf(key string) quantity {
+	if of, isChange := strings.CutPrefix(key, "change."); isChange {
+		return quantity{key: key, name: "change of " + quantityOf(of).name, kind: inShares}
+	}
 	last := key[strings.LastIndexByte(key, '.')+1:]
 	for i := range quantities {
 		if quantities[i].key == last {
@@ -149,6 +159,8 @@ func (k unitKind) unit(units *energy.UnitLabels) string {
 		return stated(units.EnergyDensity)
 	case inStress:
 		return stated(units.Stress)
+	case inSpecificEnergy:
+		return quotientUnit(units.Energy, units.Mass)
 	}
 	panic("report: no such kind of unit")
 }
@@ -165,6 +177,13 @@ func power(label energy.Text, exponent string) string {
 		return unitNotStated
 	}
 	return string(label) + exponent
+}
+
+func quotientUnit(above, below energy.Text) string {
+	if above == "" || below == "" {
+		return unitNotStated
+	}
+	return string(above + "/" + below)
 }
 
 // measured returns a number with its unit, as it stands in a sentence.

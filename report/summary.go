@@ -66,7 +66,7 @@ func (s *section) note(text string)           { s.notes = append(s.notes, phrase
 func Summarise(ledger *energy.Ledger) *Summary {
 	summary := &Summary{
 		Title:   titleOf(ledger),
-		Verdict: verdictWords(ledger),
+		Verdict: verdictWords(ledger.Requirements, ledger.Findings),
 		Caution: cmp.Or(ledger.Caution, energy.Caution),
 		program: programOf(ledger),
 		verdict: verdictSection(ledger),

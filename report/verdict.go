@@ -10,29 +10,12 @@ import (
 
 // verdictWords returns what was judged and what stands against the numbers. It never
 // says that the part is good.
-func verdictWords(ledger *energy.Ledger) string {
+func verdictWords(requirements []energy.RequirementResult, findings []energy.Finding) string {
 	words := "nothing was judged"
-	if count := len(ledger.Requirements); count > 0 {
-		met := 0
-		for _, requirement := range ledger.Requirements {
-			if requirement.Met {
-				met++
-			}
-		}
-		words = fmt.Sprintf("%d of %d stated requirements met", met, count)
+	if len(requirements) > 0 {
+		words = metWords(requirements) + " stated requirements met"
 	}
-	var errors, warnings, accepted energy.Number
-	for _, finding := range ledger.Findings {
-		switch {
-		case finding.Severity == energy.Note:
-		case finding.Accepted != "":
-			accepted++
-		case finding.Severity == energy.Error:
-			errors++
-		default:
-			warnings++
-		}
-	}
+	errors, warnings, accepted := countFindings(findings)
 	var counts []string
 	if errors > 0 {
 		counts = append(counts, countOf(errors, "error"))
@@ -49,34 +32,69 @@ func verdictWords(ledger *energy.Ledger) string {
 	return words + "; " + strings.Join(counts, ", ")
 }
 
+// metWords returns how many of the requirements are met: "3 of 3".
+func metWords(requirements []energy.RequirementResult) string {
+	met := 0
+	for _, requirement := range requirements {
+		if requirement.Met {
+			met++
+		}
+	}
+	return fmt.Sprintf("%d of %d", met, len(requirements))
+}
+
+// countFindings counts the errors and warnings that stand, and those that are accepted.
+func countFindings(findings []energy.Finding) (errors, warnings, accepted energy.Number) {
+	for _, finding := range findings {
+		switch {
+		case finding.Severity == energy.Note:
+		case finding.Accepted != "":
+			accepted++
+		case finding.Severity == energy.Error:
+			errors++
+		default:
+			warnings++
+		}
+	}
+	return errors, warnings, accepted
+}
+
 // verdictSection is the verdict with how its numbers were sampled, the state's time, the
 // limits' sources, and the reasons for what is accepted.
 func verdictSection(ledger *energy.Ledger) section {
 	s := section{heading: "Verdict"}
-	s.say(verdictWords(ledger), verdictTone(ledger))
+	s.say(verdictWords(ledger.Requirements, ledger.Findings), verdictTone(ledger.Requirements, ledger.Findings))
 	t := &table{columns: []column{{kind: word}, {kind: prose}}}
 	t.add("sampled", samplingWords(ledger))
 	t.add("state", timeWords(ledger.Sources))
 	for _, limit := range limitWords(ledger) {
 		t.add("limit", limit)
 	}
-	for _, finding := range ledger.Findings {
-		if finding.Accepted != "" {
-			t.add("accepted", finding.Code+": "+string(finding.Accepted))
-		}
-	}
+	addAccepted(t, ledger.Findings)
 	s.table = t
 	return s
 }
 
-func verdictTone(ledger *energy.Ledger) tone {
+// addAccepted adds the reasons for what is accepted, each once.
+func addAccepted(t *table, findings []energy.Finding) {
+	seen := map[string]bool{}
+	for _, finding := range findings {
+		reason := finding.Code + ": " + string(finding.Accepted)
+		if finding.Accepted != "" && !seen[reason] {
+			seen[reason] = true
+			t.add("accepted", reason)
+		}
+	}
+}
+
+func verdictTone(requirements []energy.RequirementResult, findings []energy.Finding) tone {
 	worst := plainTone
-	for _, requirement := range ledger.Requirements {
+	for _, requirement := range requirements {
 		if !requirement.Met {
 			worst = errorTone
 		}
 	}
-	for _, finding := range ledger.Findings {
+	for _, finding := range findings {
 		worst = max(worst, findingTone(&finding))
 	}
 	return worst
@@ -187,14 +205,18 @@ func requirementsSection(ledger *energy.Ledger) section {
 	}}
 	for i := range ledger.Requirements {
 		requirement := &ledger.Requirements[i]
-		outcome, tone := "not met", errorTone
-		if requirement.Met {
-			outcome, tone = "met", plainTone
-		}
+		outcome, tone := outcomeWord(requirement)
 		t.add(outcome, requirement.Name, requirementSubject(requirement), requirementBasis(requirement, &ledger.Units))
 		t.mark(0, tone)
 	}
 	return newSection("Requirements", t)
+}
+
+func outcomeWord(requirement *energy.RequirementResult) (string, tone) {
+	if requirement.Met {
+		return "met", plainTone
+	}
+	return "not met", errorTone
 }
 
 // requirementSubject names what is judged: "energy of web".

@@ -34,7 +34,7 @@ func TestVerdictCountsWhatStands(t *testing.T) {
 		if got := Summarise(ledger).Verdict; got != test.want {
 			t.Errorf("the verdict is %q, want %q", got, test.want)
 		}
-		if got := verdictTone(ledger); got != test.tone {
+		if got := verdictTone(ledger.Requirements, ledger.Findings); got != test.tone {
 			t.Errorf("the tone of %q is %d, want %d", test.want, got, test.tone)
 		}
 	}

@@ -47,7 +47,7 @@ func (p *program) tallyAll(ctx context.Context, accounts []*account, options *ta
 			p.fail(err)
 			continue
 		}
-		p.note(verdictCode(ledger))
+		p.note(verdictCode(ledger.Requirements, ledger.Findings))
 		if options.json {
 			ledgers = append(ledgers, ledger)
 		}

@@ -40,7 +40,7 @@ proportional limit of their material, and where energy gathers.`,
 	root.CompletionOptions.DisableDefaultCmd = true
 	root.SetFlagErrorFunc(func(command *cobra.Command, err error) error { return &callError{command.CommandPath(), err} })
 	root.SetHelpCommand(newHelp(p, root))
-	root.AddCommand(newTally(p), newInspect(p), newCurve(p), newDemo(p), newVersion(p), newCompletion(p, root))
+	root.AddCommand(newTally(p), newCompare(p), newInspect(p), newCurve(p), newDemo(p), newVersion(p), newCompletion(p, root))
 	return root
 }
 

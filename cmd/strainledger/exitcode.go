@@ -67,14 +67,14 @@ func exitCode(err error) int {
 	return codeUnusable
 }
 
-// verdictCode returns the code of a run that was done.
-func verdictCode(ledger *energy.Ledger) int {
-	for _, requirement := range ledger.Requirements {
+// verdictCode returns the code of a run or a comparison that was done.
+func verdictCode(requirements []energy.RequirementResult, findings []energy.Finding) int {
+	for _, requirement := range requirements {
 		if !requirement.Met {
 			return codeNotMet
 		}
 	}
-	for _, finding := range ledger.Findings {
+	for _, finding := range findings {
 		if finding.Severity == energy.Error && finding.Accepted == "" {
 			return codeNotMet
 		}

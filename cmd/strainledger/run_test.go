@@ -56,9 +56,9 @@ func TestWrongCalls(t *testing.T) {
 		want string
 	}{
 		{nil, "no command given; see strainledger --help"},
-		{[]string{"compare"}, `no command "compare"; there are completion, curve, demo, inspect, tally, version; see strainledger --help`},
+		{[]string{"merge"}, `no command "merge"; there are compare, completion, curve, demo, inspect, tally, version; see strainledger --help`},
 		{[]string{"--nothing"}, "unknown flag: --nothing; see strainledger --help"},
-		{[]string{"help", "compare"}, `no command "compare"; there are completion, curve, demo, inspect, tally, version; see strainledger --help`},
+		{[]string{"help", "merge"}, `no command "merge"; there are compare, completion, curve, demo, inspect, tally, version; see strainledger --help`},
 		{[]string{"help", "tally", "demo"}, "found 2 arguments, want one command at most; see strainledger help --help"},
 		{[]string{"version", "x"}, `found the argument "x", want none; see strainledger version --help`},
 		{[]string{"completion"}, "want one shell of bash, zsh, fish, powershell; see strainledger completion --help"},
@@ -81,6 +81,17 @@ func TestWrongCalls(t *testing.T) {
 		{[]string{"tally", "*.vtu", "--each", "--together"}, "--together, --steps and --each exclude each other; keep one; see strainledger tally --help"},
 		{[]string{"tally", "bracket-r2.vtu", "sub/bracket-r2.vtk", "--each", "--out", "o"},
 			"the reports of bracket-r2.vtu and sub/bracket-r2.vtk would both go to o/bracket-r2; rename one, or tally them on their own; see strainledger tally --help"},
+		{[]string{"compare"}, "no ledgers and no studies given; see strainledger compare --help"},
+		{[]string{"compare", "a.json", "--baseline", "0"}, "--baseline 0: runs are counted from 1; see strainledger compare --help"},
+		{[]string{"compare", "a.json", "--color", "red"}, "--color red: want always, never or auto; see strainledger compare --help"},
+		{[]string{"compare", ".", "a.json"}, ". is a folder; name the ledger.json in it; see strainledger compare --help"},
+		{[]string{"compare", "no*.json"}, `no file matches "no*.json"; mend the pattern or export the files first`},
+		{[]string{"compare", "a.json", "--study", "no.toml"}, "no.toml: cannot read the study file: no such file or directory; give the path of a file that exists and can be read"},
+		{[]string{"compare", "a.json", "--require", "change.energies <= 0"},
+			`--require "change.energies <= 0": require.quantity is "change.energies", which runs are not compared by; the nearest is "change.energy"`},
+		{[]string{"compare", "bracket-r2.toml"}, "1 run to compare; give two ledgers or studies at least"},
+		{[]string{"compare", "bracket-r2.toml", "bracket-r5.toml", "--baseline", "3"}, "run 3 is to be the baseline, and there are 2 runs"},
+		{[]string{"compare", "bracket-r2.toml", "bracket-r5.toml", "--require", "energy of web <= 1"}, `requirement "energy of web <= 1": no run has a region "web"`},
 		{[]string{"tally", "no.toml"}, "no.toml: cannot read the study file: no such file or directory; give the path of a file that exists and can be read"},
 		{[]string{"tally", "bracket-r2.vtu", "--units", "mm bar"}, `--units "mm bar": "bar" is no unit of length, stress or mass; the nearest is "Pa"`},
 		{[]string{"tally", "bracket-r2.vtu", "bracket-r2.vtu", "--together"}, `the file "bracket-r2.vtu" is named twice; name it once`},
@@ -164,7 +175,7 @@ func TestVerdictCode(t *testing.T) {
 		{energy.Ledger{Findings: []energy.Finding{finding(energy.Error, "known")}}, 0},
 		{energy.Ledger{Findings: []energy.Finding{finding(energy.Error, "known"), finding(energy.Error, "")}}, 1},
 	} {
-		if got := verdictCode(&c.ledger); got != c.want {
+		if got := verdictCode(c.ledger.Requirements, c.ledger.Findings); got != c.want {
 			t.Errorf("%+v: %d, want %d", c.ledger, got, c.want)
 		}
 	}
@@ -367,6 +378,7 @@ func TestOutputThatCannotBeWritten(t *testing.T) {
 	inDemo(t)
 	for _, args := range [][]string{
 		{"tally", "bracket-r2.toml"}, {"tally", "bracket-r2.toml", "--json", "--quiet"}, {"tally", "bracket-r2.toml", "--check"}, {"demo"},
+		{"compare", "bracket-r2.toml", "bracket-r5.toml"}, {"compare", "bracket-r2.toml", "bracket-r5.toml", "--json", "--quiet"},
 		{"inspect", "bracket-r2.vtu"}, {"version"}, {"completion", "bash"}, {"help"}, {"tally", "-h"},
 	} {
 		var messages bytes.Buffer
@@ -381,7 +393,7 @@ func TestOutputThatCannotBeWritten(t *testing.T) {
 
 func TestHelp(t *testing.T) {
 	_, root, _ := call("--help")
-	for _, command := range []string{"", "tally", "inspect", "demo", "version", "completion", "help"} {
+	for _, command := range []string{"", "tally", "compare", "inspect", "demo", "version", "completion", "help"} {
 		code, stdout, stderr := call("help", command)
 		if command == "" {
 			code, stdout, stderr = call("help")

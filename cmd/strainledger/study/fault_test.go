@@ -212,6 +212,11 @@ func TestFaults(t *testing.T) {
 		"four arrays of force": {"fields.nodal_force = { §arrays = [\"a\", \"b\", \"c\", \"d\"] }",
 			[]string{"fields.nodal_force.arrays names 4 arrays; name at most three, for x, y and z"}},
 
+		"quantity of a comparison": {"[[require]]\n§quantity = \"change.energy\"\nat_most = 0",
+			[]string{`require.quantity "change.energy" is a number of a comparison; write it into the study that compare --study names`}},
+		"loading": {"[loading]\n§control = \"forces\"\n§scale = 0\n§factor = 2\n[compare]\n§tolerance = -1", []string{
+			`loading.control is "forces"; write "force", "displacement" or "mixed"`, "loading.scale is 0; it must be above 0",
+			`unknown key "factor" in [loading]; the nearest known key is "case.factor"`, "compare.tolerance is -1; it must be above 0"}},
 		"requirement without a bound": {"[[§require]]\nquantity = \"energy\"", []string{"[[require]] without a bound; add at_most or at_least"}},
 		"requirement that nothing meets": {"[[require]]\nquantity = \"energy\"\nat_most = 1\n§at_least = 2",
 			[]string{"require.at_least is 2 and at_most is 1, which nothing can meet; exchange them"}},
@@ -234,8 +239,7 @@ func TestNotBuiltYet(t *testing.T) {
 	for _, marked := range []string{
 		"input.§steps = [\"a\"]", "input.§start = \"as-given\"", "input.§time = \"all\"",
 		"hotspots.§prominence = 0.2", "hotspots.§radius = 3.0", "hotspots.§centre = [1, 2, 3]", "hotspots.§pool = 16384",
-		"[§error]\nestimate = true", "[§loading]\ncontrol = \"force\"",
-		"[§compare]\ntolerance = 2.0", "[[§case]]\nname = \"pull\"",
+		"[§error]\nestimate = true", "[[§case]]\nname = \"pull\"",
 	} {
 		t.Run(marked, func(t *testing.T) { wantNotBuilt(t, marked) })
 	}
@@ -244,9 +248,6 @@ func TestNotBuiltYet(t *testing.T) {
 		"control_radius = 1", "critical_density = 1", "fracture_toughness = 1", "tensile_strength = 1",
 	} {
 		t.Run(key, func(t *testing.T) { wantNotBuilt(t, "[[material]]\nname = \"m\"\n§"+key) })
-	}
-	for _, quantity := range []string{"change.energy"} {
-		t.Run(quantity, func(t *testing.T) { wantNotBuilt(t, "[[require]]\nat_most = 1\n§quantity = \""+quantity+"\"") })
 	}
 }
 

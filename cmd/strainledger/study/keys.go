@@ -186,11 +186,11 @@ var keys = slices.Concat([]key{
 		{path: "elsewhere.energy", form: aNumber, needed: true},
 		{path: "elsewhere.source", form: aName},
 
-		{path: "loading", form: aTable, later: true},
+		{path: "loading", form: aTable},
 		{path: "loading.control", form: aName, values: []string{"force", "displacement", "mixed"}},
-		{path: "loading.scale", form: aNumber},
+		{path: "loading.scale", form: aNumber, bound: positive},
 
-		{path: "compare", form: aTable, later: true},
+		{path: "compare", form: aTable},
 		{path: "compare.tolerance", form: aNumber, bound: positive},
 
 		{path: "case", form: tables, later: true},

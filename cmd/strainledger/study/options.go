@@ -17,6 +17,8 @@ type reading struct {
 	folder string // what paths in the study are relative to
 	faults *faults
 	to     energy.Options
+
+	isComparison bool // the study is one of a comparison, not of a run
 }
 
 // options reads the options from a tree that has been checked.
@@ -28,6 +30,7 @@ func options(root *node, folder string, to *faults) energy.Options {
 	r.materials()
 	r.regions()
 	r.balance()
+	r.loading()
 	r.judgement()
 	r.compressionLimits()
 	return r.to
@@ -357,12 +360,28 @@ func (r *reading) box(stated *node) *energy.Box {
 	return &box
 }
 
+// loading reads what a comparison needs to know.
+func (r *reading) loading() {
+	if stated := r.root.get("loading"); stated != nil && len(stated.keys) > 0 {
+		r.to.Loading = &energy.Loading{
+			Control: energy.Text(stated.textOf("control")),
+			Scale:   energy.Number(stated.numberOf(float64(energy.None), "scale")),
+		}
+	}
+	r.to.HotspotTolerance = r.root.numberOf(0, "compare", "tolerance")
+}
+
 // judgement reads what is listed, demanded and accepted.
 func (r *reading) judgement() {
 	r.to.Limit.Criterion = energy.Criterion(r.root.textOf("limit", "criterion"))
 	r.to.Limit.List = int(r.root.numberOf(0, "limit", "list"))
 	r.to.Hotspots.Count = int(r.root.numberOf(0, "hotspots", "count"))
 	r.to.Hotspots.By = r.root.textOf("hotspots", "by")
+	r.verdict()
+}
+
+// verdict reads what is demanded and accepted.
+func (r *reading) verdict() {
 	for _, stated := range r.root.itemsOf("require") {
 		r.to.Requirements = append(r.to.Requirements, r.requirement(stated))
 	}

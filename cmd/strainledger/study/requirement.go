@@ -3,15 +3,11 @@ package study
 import (
 	"fmt"
 	"reflect"
-	"slices"
 	"strconv"
 	"strings"
 
 	"strainledger/energy"
 )
-
-// laterQuantities are the beginnings of quantities that are not built yet.
-var laterQuantities = []string{"change."}
 
 // requirement reads one entry of [[require]]. One without a name is called by what
 // it demands.
@@ -44,20 +40,27 @@ func (r *reading) requirement(stated *node) energy.Requirement {
 	return requirement
 }
 
-// refuseQuantity reports a quantity that no ledger has.
+// refuseQuantity reports a quantity that no ledger has, or no comparison.
 func (r *reading) refuseQuantity(stated *node) {
-	isLater := func(start string) bool { return strings.HasPrefix(stated.text, start) }
-	switch err := energy.CheckQuantity(stated.text); {
+	check, known := energy.CheckQuantity, accountNumbers()
+	if r.isComparison {
+		check, known = energy.CheckComparedQuantity, append(known, energy.ComparedQuantities()...)
+	}
+	changed, isChange := strings.CutPrefix(stated.text, "change.")
+	switch err := check(stated.text); {
 	case err == nil:
-	case slices.ContainsFunc(laterQuantities, isLater):
-		r.faults.add(stated.place, "require.quantity %s is not built yet; use a number of an account such as \"energy\"", quote(stated.text))
+	case isChange && !r.isComparison:
+		r.faults.add(stated.place, "require.quantity %s is a number of a comparison; write it into the study that compare --study names", quote(stated.text))
+	case isChange:
+		r.faults.add(stated.place, "require.quantity is %s, which runs are not compared by; the nearest is %q", quote(stated.text),
+			"change."+nearest(changed, energy.ComparedQuantities()))
 	case strings.HasPrefix(stated.text, "balance."):
 		r.faults.add(stated.place, "require.quantity is %s, which is no number of the balance; write balance.gap", quote(stated.text))
 	case strings.HasPrefix(stated.text, "hotspot."):
 		r.faults.add(stated.place, "require.quantity is %s, which is no number of a hotspot; write hotspot.RANK.KEY, such as \"hotspot.1.density\"", quote(stated.text))
 	default:
 		r.faults.add(stated.place, "require.quantity is %s, which is no number of an account; the nearest is %q", quote(stated.text),
-			nearest(stated.text, accountNumbers()))
+			nearest(stated.text, known))
 	}
 }
 

@@ -88,6 +88,11 @@ source = "hand calculation 7"
 [[elsewhere]]
 name = "spring"
 energy = 2
+[loading]
+control = "mixed"
+scale = 1.25
+[compare]
+tolerance = 7.5
 [[require]]
 name = "web stores little"
 quantity = "energy"
@@ -164,6 +169,8 @@ func wholeOptions() energy.Options {
 		},
 		Acceptances: []energy.Acceptance{{Code: "large-strain", Reason: "rubber pad, not judged"}},
 		Review:      energy.Review{Document: "MB-7", Revision: "C", PreparedBy: "A. N."},
+
+		Loading: &energy.Loading{Control: "mixed", Scale: 1.25}, HotspotTolerance: 7.5,
 	}
 }
 
@@ -196,7 +203,7 @@ func TestReadWhole(t *testing.T) {
 	want := &Study{
 		Path: path,
 		// sha256sum of the text above
-		SHA256:  "3865a963be5b501a9b584375fa7de2bce8543b8fd7e7a16ae5f16941a6c8e117",
+		SHA256:  "d7ea77699f775d0c83ea36b63cb3cade7e8064beefee3b49ac92d05037d256a1",
 		Options: wholeOptions(),
 		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
 		Time:    Time{Value: &time},
