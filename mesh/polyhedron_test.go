@@ -171,13 +171,15 @@ func TestPolyhedraThatDoNotClose(t *testing.T) {
 		{"no faces", cube, []int32{}},
 		{"no list", cube, nil},
 		{"fewer faces than said", cube, []int32{6, 4, 0, 4, 7, 3, 3, 1, 2, 6}},
+		{"more faces said than listed", polyhedronOf(points, cubeFaces), append([]int32{7}, cube.Faces[1:]...)},
+		{"a closed body and a face of two nodes", polyhedronOf(points, append([][]int32{{0, 1}}, cubeFaces...)), nil},
 		{"a face of two nodes", cube, []int32{4, 2, 0, 1, 3, 0, 1, 2, 3, 0, 1, 2, 3, 0, 1, 2}},
 		{"a face that ends behind the list", cube, []int32{4, 3, 0, 1, 2, 2000000000, 0, 1, 2}},
 		{"a negative count of faces", cube, []int32{-3, 3, 0, 1, 2}},
 		{"a negative count of nodes", cube, []int32{4, -3, 0, 1, 2}},
 	} {
 		c := *test.cell
-		if test.cell == cube {
+		if test.cell == cube || test.faces != nil {
 			c.Faces = test.faces
 		}
 		volume, orientation := c.Volume()
