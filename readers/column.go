@@ -25,10 +25,11 @@ type column struct {
 	number    number
 	bigEndian bool
 	file      *file
-	start     int64 // where its values begin in the file
-	isLevel   bool  // ghost levels of old files: above 0 means duplicate
-	isColour  bool  // text of 0 to 1 for bytes of 0 to 255
-	perCell   int64 // of a field array: tuples for each cell of the file
+	start     int64  // where its values begin in the file
+	isLevel   bool   // ghost levels of old files: above 0 means duplicate
+	isColour  bool   // text of 0 to 1 for bytes of 0 to 255
+	perCell   int64  // of a field array: tuples for each cell of the file
+	offsets   string // of a field array: the cell array that says where each cell's tuples begin
 	payload
 	slot int // position among the kept buffers of a cursor
 }
