@@ -266,6 +266,26 @@ func TestTimes(t *testing.T) {
 	}
 }
 
+// A block at another time than the one asked for is no part of that state.
+func TestBlocksOfOneTime(t *testing.T) {
+	at := func(time string) string {
+		return tetrahedron(`<FieldData><DataArray type="Float64" Name="TimeValue" NumberOfTuples="1" format="ascii">`+time+`</DataArray></FieldData>`, "")
+	}
+	folder := writeFiles(t, map[string]string{"a.vtu": at("1"), "b.vtu": at("2"), "c.vtu": at("1")})
+	open := func(names ...string) error {
+		for i, name := range names {
+			names[i] = filepath.Join(folder, name)
+		}
+		return justError(Open(context.Background(), names, Options{Time: Time{Choice: AtNumber, Number: 1}}))
+	}
+	if err := open("a.vtu", "c.vtu"); err != nil {
+		t.Error(err)
+	}
+	if err := open("a.vtu", "b.vtu"); !errors.Is(err, ErrTime) || !strings.Contains(err.Error(), "b.vtu: found no state at time 1, need one of 2") {
+		t.Error(err)
+	}
+}
+
 // Results at integration points lie in the field data of each piece's file.
 func TestFieldsOfPieces(t *testing.T) {
 	fields := func(value int) string {
