@@ -41,6 +41,7 @@ type Array struct {
 	Components     int
 	Tuples         int64
 	ComponentNames []string // nil when the file names none
+	Coding         string   // how the file keeps it: ascii, base64, raw, zlib, LZ4 or LZMA; "" unknown
 }
 
 // IsInteger reports whether the array holds whole numbers by its type.

@@ -34,6 +34,21 @@ type column struct {
 	slot int // position among the kept buffers of a cursor
 }
 
+// coding says how the file keeps the array.
+func (a *column) coding() string {
+	switch {
+	case a.form == textForm:
+		return "ascii"
+	case a.form == blockForm:
+		return [...]string{zlibBlocks: "zlib", lz4Blocks: "LZ4", lzmaBlocks: "LZMA"}[a.blocks.compressor]
+	case a.form == plainForm && a.stored.isBase64:
+		return "base64"
+	case a.form == plainForm:
+		return "raw"
+	}
+	return ""
+}
+
 // A payload is where the values of an array are and how they are kept.
 type payload struct {
 	form   form

@@ -251,6 +251,7 @@ func (o *opener) finish() error {
 		slots = max(slots, p.numberSlots())
 		o.model.Pieces[i].RunCells = p.runCells()
 		for _, a := range p.arrays {
+			a.Coding = a.coding()
 			o.model.Pieces[i].Arrays = append(o.model.Pieces[i].Arrays, a.Array)
 		}
 	}
