@@ -41,6 +41,7 @@ type Array struct {
 	Components     int
 	Tuples         int64
 	ComponentNames []string // nil when the file names none
+	Coding         string   // how the file keeps it: ascii, base64, raw, zlib, LZ4 or LZMA; "" unknown
 }
 
 // IsInteger reports whether the array holds whole numbers by its type.
@@ -104,10 +105,20 @@ type Model struct {
 	Pieces  []Piece   // in file order, whatever the container
 	Fields  []Array   // arrays of the data set as a whole, of one name once
 	Texts   []Text    // field arrays that hold text
+	Schemes []Scheme  // of integration points, where the files describe them
 	Times   []float64 // all states that the files hold, rising
 	Remarks []Remark
 	Open    func() Cursor // one for each worker
 	Close   func() error  // lets go of temporary files, after the cursors; nil: there are none
+}
+
+// A Scheme says where the integration points of cells of one type lie, by the values of
+// the cell's shape functions there.
+type Scheme struct {
+	Type    CellType
+	Nodes   int
+	Shapes  []float64 // for each point the value for each node
+	Weights []float64 // of each point; all 0 where the file's writer did not know them
 }
 
 // A Text is the content of a field array that holds text: strings, or small whole

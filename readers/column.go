@@ -25,12 +25,28 @@ type column struct {
 	number    number
 	bigEndian bool
 	file      *file
-	start     int64 // where its values begin in the file
-	isLevel   bool  // ghost levels of old files: above 0 means duplicate
-	isColour  bool  // text of 0 to 1 for bytes of 0 to 255
-	perCell   int64 // of a field array: tuples for each cell of the file
+	start     int64  // where its values begin in the file
+	isLevel   bool   // ghost levels of old files: above 0 means duplicate
+	isColour  bool   // text of 0 to 1 for bytes of 0 to 255
+	perCell   int64  // of a field array: tuples for each cell of the file
+	offsets   string // of a field array: the cell array that says where each cell's tuples begin
 	payload
 	slot int // position among the kept buffers of a cursor
+}
+
+// coding says how the file keeps the array.
+func (a *column) coding() string {
+	switch {
+	case a.form == textForm:
+		return "ascii"
+	case a.form == blockForm:
+		return [...]string{zlibBlocks: "zlib", lz4Blocks: "LZ4", lzmaBlocks: "LZMA"}[a.blocks.compressor]
+	case a.form == plainForm && a.stored.isBase64:
+		return "base64"
+	case a.form == plainForm:
+		return "raw"
+	}
+	return ""
 }
 
 // A payload is where the values of an array are and how they are kept.

@@ -266,6 +266,64 @@ func TestTimes(t *testing.T) {
 	}
 }
 
+// A block at another time than the one asked for is no part of that state.
+func TestBlocksOfOneTime(t *testing.T) {
+	at := func(time string) string {
+		return tetrahedron(`<FieldData><DataArray type="Float64" Name="TimeValue" NumberOfTuples="1" format="ascii">`+time+`</DataArray></FieldData>`, "")
+	}
+	folder := writeFiles(t, map[string]string{"a.vtu": at("1"), "b.vtu": at("2"), "c.vtu": at("1")})
+	open := func(names ...string) error {
+		for i, name := range names {
+			names[i] = filepath.Join(folder, name)
+		}
+		return justError(Open(context.Background(), names, Options{Time: Time{Choice: AtNumber, Number: 1}}))
+	}
+	if err := open("a.vtu", "c.vtu"); err != nil {
+		t.Error(err)
+	}
+	if err := open("a.vtu", "b.vtu"); !errors.Is(err, ErrTime) || !strings.Contains(err.Error(), "b.vtu: found no state at time 1, need one of 2") {
+		t.Error(err)
+	}
+}
+
+// Results at integration points lie in the field data of each piece's file.
+func TestFieldsOfPieces(t *testing.T) {
+	fields := func(value int) string {
+		return fmt.Sprintf(`<FieldData><DataArray type="Float64" Name="TimeValue" NumberOfTuples="1" format="ascii">%d</DataArray>
+<DataArray type="Float64" Name="ip" NumberOfComponents="2" NumberOfTuples="6" format="ascii">%d 1 2 3 4 5 6 7 8 9 10 11</DataArray></FieldData>`, value, value)
+	}
+	two := func(value int) string {
+		grid := tetrahedron(fields(value), "")
+		piece := grid[strings.Index(grid, "<Piece"):strings.Index(grid, "</UnstructuredGrid>")]
+		return strings.Replace(grid, "</UnstructuredGrid>", piece+"</UnstructuredGrid>", 1)
+	}
+	folder := writeFiles(t, map[string]string{"a.vtu": two(7), "b.vtu": two(9), "all.pvtu": parallel("PUnstructuredGrid", "a.vtu", "b.vtu")})
+	model, err := Open(context.Background(), []string{filepath.Join(folder, "all.pvtu")}, Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(model.Fields) != 2 || model.Fields[0].Tuples != 1 || model.Fields[1].Tuples != 12 {
+		t.Errorf("fields %+v", model.Fields)
+	}
+	if !slices.Equal(model.Times, []float64{7, 9}) || model.Sources[1].Time != 7 || model.Sources[2].Time != 9 {
+		t.Errorf("times %v of %+v", model.Times, model.Sources)
+	}
+	cursor := newTestCursor(t, model)
+	for piece, want := range [][]float64{{7, 1, 2, 3, 4, 5}, {6, 7, 8, 9, 10, 11}, {9, 1, 2, 3, 4, 5}, {6, 7, 8, 9, 10, 11}} {
+		var c mesh.Chunk
+		span := mesh.Span{Piece: piece, Low: 0, High: 1}
+		if err := cursor.Cells(context.Background(), span, &mesh.Want{FieldValues: []string{"ip"}}, &c); err != nil {
+			t.Fatal(err)
+		}
+		if !slices.Equal(c.FieldValues[0], want) {
+			t.Errorf("piece %d: %v, want %v", piece, c.FieldValues[0], want)
+		}
+		if model.Pieces[piece].FirstCell != int64(piece%2) {
+			t.Errorf("piece %d begins at cell %d", piece, model.Pieces[piece].FirstCell)
+		}
+	}
+}
+
 // Ghost marks that only some pieces need stay in use where they are.
 func TestGhostsInSomePieces(t *testing.T) {
 	marked := strings.Replace(cellData("s=2", "vtkGhostType=1"), `"Float64" Name="vtkGhostType"`, `"UInt8" Name="vtkGhostType"`, 1)

@@ -241,6 +241,31 @@ func (c *cursor) marks(p *piece, span mesh.Span) ([]uint8, error) {
 	return marks, nil
 }
 
+// checkOffsets compares the places that the file gives for the tuples of each cell with
+// those at which they are taken to be: one cell after the other, as many for each.
+func (c *cursor) checkOffsets(p *piece, span mesh.Span, a *column) error {
+	if a.offsets == "" {
+		return nil
+	}
+	offsets, err := p.find(mesh.OnCell, a.offsets)
+	if err != nil {
+		return err
+	}
+	if offsets.Components != 1 {
+		return offsets.fail(malformed("found %s, need 1", counted(offsets.Components, "component")))
+	}
+	places, err := offsets.labels(c, span.Low, span.High)
+	if err != nil {
+		return err
+	}
+	for i, place := range places {
+		if want := (p.firstCell + span.Low + int64(i)) * a.perCell; place != want {
+			return p.cellError(offsets, span.Low+int64(i), unsupported("found that the values of %q begin at %d, need %d: cell after cell, %d for each", a.Name, place, want, a.perCell))
+		}
+	}
+	return nil
+}
+
 // finishNodes adds the faces of polyhedra, brings nodes into order and finds shapes.
 func (c *cursor) finishNodes(p *piece, span mesh.Span) error {
 	if p.faces != nil || len(c.faceStart) == 0 && slices.Contains(c.types, mesh.Polyhedron) {
@@ -352,6 +377,9 @@ func (c *cursor) fieldValues(p *piece, span mesh.Span, name string) ([]float64, 
 	for _, a := range p.fields {
 		if a.Name == name {
 			tuples := a.perCell
+			if err := c.checkOffsets(p, span, a); err != nil {
+				return nil, err
+			}
 			return a.values(c, (p.firstCell+span.Low)*tuples, (p.firstCell+span.High)*tuples)
 		}
 	}

@@ -47,6 +47,9 @@ func TestWidenAndLabel(t *testing.T) {
 		{float32Number, binary.LittleEndian.AppendUint32(nil, math.Float32bits(-3)), -3, -3},
 		{float64Number, binary.LittleEndian.AppendUint64(nil, math.Float64bits(1e15)), 1e15, 1e15},
 		{float64Number, binary.LittleEndian.AppendUint64(nil, math.Float64bits(0.1)), 0.1, mesh.NoLabel},
+		{float64Number, binary.LittleEndian.AppendUint64(nil, math.Float64bits(1<<63)), 1 << 63, mesh.NoLabel},
+		{float64Number, binary.LittleEndian.AppendUint64(nil, math.Float64bits(1<<62)), 1 << 62, 1 << 62},
+		{float64Number, binary.LittleEndian.AppendUint64(nil, math.Float64bits(-1<<62)), -1 << 62, -1 << 62},
 		{float64Number, binary.LittleEndian.AppendUint64(nil, math.Float64bits(1e19)), 1e19, mesh.NoLabel},
 		{float64Number, binary.LittleEndian.AppendUint64(nil, math.Float64bits(math.Inf(-1))), math.Inf(-1), mesh.NoLabel},
 	} {

@@ -251,6 +251,7 @@ func (o *opener) finish() error {
 		slots = max(slots, p.numberSlots())
 		o.model.Pieces[i].RunCells = p.runCells()
 		for _, a := range p.arrays {
+			a.Coding = a.coding()
 			o.model.Pieces[i].Arrays = append(o.model.Pieces[i].Arrays, a.Array)
 		}
 	}
@@ -261,13 +262,31 @@ func (o *opener) finish() error {
 	}
 	slices.Sort(o.model.Times)
 	o.model.Times = slices.Compact(o.model.Times)
-	if o.options.Time.Choice == AtNumber {
-		if _, err := o.options.Time.pick(o.model.Times); err != nil {
-			return err
-		}
+	if err := o.checkTime(); err != nil {
+		return err
 	}
 	pieces := o.pieces
 	o.model.Open = func() mesh.Cursor { return newCursor(pieces, slots) }
 	o.model.Close = o.close
+	return nil
+}
+
+// checkTime compares the time that was asked for with those of the files: some state
+// must be at it, and no file may hold another alone.
+func (o *opener) checkTime() error {
+	if o.options.Time.Choice != AtNumber {
+		return nil
+	}
+	if _, err := o.options.Time.pick(o.model.Times); err != nil {
+		return err
+	}
+	for _, source := range o.model.Sources {
+		if math.IsNaN(source.Time) {
+			continue
+		}
+		if _, err := o.options.Time.pick([]float64{source.Time}); err != nil {
+			return &Error{Path: source.Path, Err: err}
+		}
+	}
 	return nil
 }

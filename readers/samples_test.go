@@ -12,6 +12,7 @@ import (
 	"runtime"
 	"slices"
 	"strconv"
+	"strings"
 	"testing"
 	"time"
 
@@ -260,6 +261,7 @@ func TestSamples(t *testing.T) {
 					checkSet(t, got, want)
 				}
 				checkFields(t, model, want.FieldArrays)
+				checkCoding(t, model, want.File)
 				checkPartial(t, model, want)
 			}
 		})
@@ -456,6 +458,30 @@ func checkFields(t *testing.T, model *mesh.Model, wants []sampleArray) {
 		}
 		if want.Name == "TimeValue" {
 			checkNumbers(t, "time", model.Times, sampleNumbers(t, want.First))
+		}
+	}
+}
+
+// checkCoding compares the coding with the name of the file: bar-FORM-COMPRESSOR-...
+func checkCoding(t *testing.T, model *mesh.Model, file string) {
+	t.Helper()
+	name, isBar := strings.CutPrefix(file, "vtu-encodings/bar-")
+	if !isBar {
+		return
+	}
+	parts := strings.Split(name, "-")
+	want := map[string]string{"zlib": "zlib", "lz4": "LZ4", "lzma": "LZMA"}[parts[1]]
+	switch {
+	case parts[0] == "ascii":
+		want = "ascii"
+	case want == "" && parts[0] == "raw":
+		want = "raw"
+	case want == "":
+		want = "base64"
+	}
+	for _, a := range model.Pieces[0].Arrays {
+		if a.Coding != want {
+			t.Errorf("array %q is kept as %q, want %q", a.Name, a.Coding, want)
 		}
 	}
 }

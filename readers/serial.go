@@ -54,6 +54,9 @@ func (o *opener) readSerial(x *xmlFile, at branch) error {
 		if err == nil {
 			err = o.addPiece(p, &source, set)
 		}
+		if err == nil {
+			err = o.addSchemes(x, e)
+		}
 		if err != nil {
 			return placedAt(x.file, e, err)
 		}
@@ -91,6 +94,7 @@ func (o *opener) fields(x *xmlFile, source *mesh.Source) ([]*column, error) {
 		if err := x.countField(a, e); err != nil {
 			return nil, err
 		}
+		a.offsets = x.informationText(e, "QUADRATURE_OFFSET_ARRAY_NAME")
 		if err := o.addField(a, source, x.strings(a, e)); err != nil {
 			return nil, err
 		}
