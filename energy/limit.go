@@ -25,7 +25,7 @@ import (
 type limit struct {
 	criterion     Criterion
 	tension       float64 // proportional limit; NaN: none
-	compression   float64 // the same but under max-principal
+	compression   float64 // of negative equivalent stress, which max-principal alone has
 	poissonsRatio float64 // of an isotropic law, for total-energy
 }
 
@@ -44,7 +44,7 @@ func (r *region) setLimit(rule *Region, options *Options) error {
 	}
 	if r.material != nil {
 		r.limit.tension, r.limit.compression = r.material.ProportionalLimit, r.material.ProportionalLimit
-		if stated := r.material.ProportionalLimitCompression; r.limit.criterion == MaxPrincipal && !math.IsNaN(stated) {
+		if stated := r.material.ProportionalLimitCompression; !math.IsNaN(stated) {
 			r.limit.compression = stated
 		}
 	}

@@ -126,7 +126,7 @@ func TestEstimateOnACurve(t *testing.T) {
 			t.Errorf("s_e %g: reached %v, want %v", elastic, isReached, want)
 		}
 	}
-	if _, isReached := curve.path().reach(func(s uniaxialState) float64 { return s.work }, 6.1); !isReached {
+	if _, isReached := curve.path().reach(func(s uniaxialState) float64 { return s.work }, curve.Area(0.021)); !isReached {
 		t.Error("the last point itself is not reached")
 	}
 }
