@@ -39,6 +39,7 @@ var severities = map[string]string{
 	"outside-path":           Warning,
 	"repeated-piece":         Warning,
 	"array-not-everywhere":   Warning,
+	"node-order":             Warning,
 
 	"ghost-cells":          Note,
 	"mirrored-cells":       Note,

@@ -124,6 +124,51 @@ func TestOldOrderOfHexahedra(t *testing.T) {
 	}
 }
 
+// A straight Lagrange hexahedron tells by its nodes in which order they stand. The
+// version is obeyed; where only the other order fits, there is a remark.
+func TestOrderThatFits(t *testing.T) {
+	// lattice places of the nodes in today's order
+	var places [][3]int
+	for _, edge := range []string{
+		"000 200 220 020 002 202 222 022", "100 210 120 010 102 212 122 012", "001 201 221 021",
+		"011 211 101 121 110 112 111",
+	} {
+		for _, word := range strings.Fields(edge) {
+			places = append(places, [3]int{int(word[0] - '0'), int(word[1] - '0'), int(word[2] - '0')})
+		}
+	}
+	for _, test := range []struct {
+		version   string
+		isSwapped bool
+		codes     []string
+		x         float64 // of the node on the third vertical edge, which is at 2 if all fits
+	}{
+		{"1.0", true, nil, 2}, {"2.2", false, nil, 2},
+		{"1.0", false, []string{"node-order"}, 0}, {"2.2", true, []string{"node-order"}, 0},
+	} {
+		w := newTestWriter(testCoding{form: "ascii"}, "UnstructuredGrid", test.version)
+		w.printf("<UnstructuredGrid><Piece NumberOfPoints=\"27\" NumberOfCells=\"1\">\n")
+		points, nodes := testArray{"Points", "Float64", 3, nil}, testArray{"connectivity", "Int32", 1, nil}
+		for i, place := range places {
+			if test.isSwapped && (i == 18 || i == 19) {
+				place = places[37-i]
+			}
+			for axis := range 3 {
+				points.values = append(points.values, float64(place[axis]))
+			}
+			nodes.values = append(nodes.values, float64(i))
+		}
+		w.element("Points", points)
+		w.element("Cells", nodes, testArray{"offsets", "Int32", 1, []float64{27}}, testArray{"types", "UInt8", 1, []float64{72}})
+		w.printf("</Piece></UnstructuredGrid>\n")
+		model, got := read(t, string(w.bytes()))
+		at := got.nodes[0][18]
+		if x := got.points[3*at]; !slices.Equal(codes(model), test.codes) || x != test.x {
+			t.Errorf("version %s, swapped %v: remarks %v, the node on the third vertical edge at x = %v", test.version, test.isSwapped, model.Remarks, x)
+		}
+	}
+}
+
 func TestRationalWeights(t *testing.T) {
 	data := strings.Replace(tetrahedron("", `<PointData RationalWeights="w"><DataArray type="Float64" Name="w" format="ascii">1 2 3 4</DataArray></PointData>`), "", "", 1)
 	model, err := openBytes([]byte(data), Options{})

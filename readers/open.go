@@ -227,6 +227,7 @@ func (o *opener) addPiece(p *piece, source *mesh.Source, set *pieceSet) error {
 		}
 		described.Grid = &p.grid.Grid
 	}
+	o.checkOrder(p)
 	source.Cells += p.cellCount
 	source.Points += p.pointCount - described.Grid.SharedCount()
 	set.pieces = append(set.pieces, len(o.pieces))

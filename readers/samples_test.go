@@ -490,8 +490,13 @@ func checkPartial(t *testing.T, model *mesh.Model, want sampleSet) {
 	t.Helper()
 	codes := 0
 	for _, remark := range model.Remarks {
-		if remark.Code == "array-not-everywhere" {
+		switch {
+		case remark.Code == "array-not-everywhere":
 			codes++
+		case remark.Code == "node-order" && want.File == "cells/lagrange-hex3-oldorder.vtk":
+			// its nodes stand in today's order under an old version
+		default:
+			t.Errorf("remark %+v", remark)
 		}
 	}
 	if codes != len(want.PartialArrays) {
