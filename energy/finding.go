@@ -35,6 +35,7 @@ var severities = map[string]string{
 	"outside-path":           Warning,
 	"repeated-piece":         Warning,
 	"array-not-everywhere":   Warning,
+	"hotspot-pool":           Warning,
 
 	"ghost-cells":          Note,
 	"mirrored-cells":       Note,

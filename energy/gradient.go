@@ -64,6 +64,7 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 	}
 	w.density[i] = w.energy[i] / w.measure[i]
 	w.peak[i] = math.NaN() // the file gives no stress or strain at any place
+	w.tensor[i] = mean
 	w.judge(i, r, &mean)
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
 		return notFinite

@@ -37,20 +37,24 @@ type exclusion struct {
 type account struct {
 	cells, pastCells, yieldedCells int64
 
-	volume, energy, volumetric Sum
-	pastVolume, pastEnergy     Sum
+	bins                               densityBins // volume and energy
+	volumetric, pastVolume, pastEnergy Sum
 
 	maxDensity, peak, maxUtilisation best
 	maxEquivalent                    float64 // -Inf before the first cell
+
+	outside float64 // largest density of a cell that the pool does not keep; -Inf: none
 }
+
+// newAccount returns the account of no cell.
+func newAccount() account { return account{maxEquivalent: math.Inf(-1), outside: math.Inf(-1)} }
 
 // join adds another account of the same region, or of another one for the total.
 func (a *account) join(other *account) {
 	a.cells += other.cells
 	a.pastCells += other.pastCells
 	a.yieldedCells += other.yieldedCells
-	a.volume.Join(&other.volume)
-	a.energy.Join(&other.energy)
+	a.bins.join(&other.bins)
 	a.volumetric.Join(&other.volumetric)
 	a.pastVolume.Join(&other.pastVolume)
 	a.pastEnergy.Join(&other.pastEnergy)
@@ -58,6 +62,7 @@ func (a *account) join(other *account) {
 	a.peak.join(&other.peak)
 	a.maxUtilisation.join(&other.maxUtilisation)
 	a.maxEquivalent = max(a.maxEquivalent, other.maxEquivalent)
+	a.outside = max(a.outside, other.outside)
 }
 
 // A part is the account of some of a model's cells. Parts of one model join to the
@@ -73,23 +78,22 @@ type part struct {
 	negative             [2048]int64
 	hasStress, hasStrain bool // some value that is not 0 was seen
 
-	hotspots ranking
-	worst    ranking
-	past     []candidate // every cell past its limit, where asked for
+	pool  *pool // common to all parts of a run
+	worst ranking
+	past  []candidate // every cell past its limit, where asked for
 }
 
 // newPart returns a part that has seen no cell.
-func newPart(p *plan) *part {
-	result := &part{accounts: make([]account, len(p.regions.regions))}
+func newPart(p *plan, pool *pool) *part {
+	result := &part{pool: pool, accounts: make([]account, len(p.regions.regions))}
 	for i := range result.accounts {
-		result.accounts[i].maxEquivalent = math.Inf(-1)
+		result.accounts[i] = newAccount()
 	}
-	result.hotspots.count = p.hotspotCount
 	result.worst.count = p.listCount
 	return result
 }
 
-// join adds another part of the same model.
+// join adds another part of the same model, but for its pool, which is common to all.
 func (p *part) join(other *part) {
 	for i := range p.accounts {
 		p.accounts[i].join(&other.accounts[i])
@@ -110,7 +114,6 @@ func (p *part) join(other *part) {
 	}
 	p.hasStress = p.hasStress || other.hasStress
 	p.hasStrain = p.hasStrain || other.hasStrain
-	p.hotspots.join(&other.hotspots)
 	p.worst.join(&other.worst)
 	p.past = append(p.past, other.past...)
 }

@@ -93,8 +93,9 @@ var (
 	laterType  = reflect.TypeFor[*energy.NotBuilt]()
 )
 
-// csvHeading returns the columns of a struct: its JSON keys, embedded structs' in their
-// place, a vector's with _x, _y and _z, and none for what is not built yet.
+// csvHeading returns the columns of a struct: its JSON keys, those of structs within it
+// in their place, a vector's with _x, _y and _z, and none for lists and for what is not
+// built yet.
 func csvHeading(row reflect.Type) []string {
 	var names []string
 	for i := range row.NumField() {
@@ -103,16 +104,22 @@ func csvHeading(row reflect.Type) []string {
 		switch {
 		case field.Anonymous:
 			names = append(names, csvHeading(field.Type)...)
-		case field.Type == laterType:
+		case field.Type == laterType, field.Type.Kind() == reflect.Slice:
 		case field.Type == vectorType:
 			for _, axis := range axes {
 				names = append(names, key+axis)
 			}
+		case isStructPointer(field.Type):
+			names = append(names, csvHeading(field.Type.Elem())...)
 		default:
 			names = append(names, key)
 		}
 	}
 	return names
+}
+
+func isStructPointer(t reflect.Type) bool {
+	return t.Kind() == reflect.Pointer && t.Elem().Kind() == reflect.Struct
 }
 
 // csvCells appends the row's cells in the order of csvHeading.
@@ -151,8 +158,16 @@ func csvCells(cells []string, row reflect.Value) ([]string, error) {
 				cells = append(cells, strconv.FormatBool(*value))
 			}
 		default:
+			field := row.Field(i)
+			switch {
+			case field.Kind() == reflect.Slice:
+				continue
+			case isStructPointer(field.Type()) && field.IsNil():
+				cells = append(cells, make([]string, len(csvHeading(field.Type().Elem())))...)
+				continue
+			}
 			var err error
-			if cells, err = csvCells(cells, row.Field(i)); err != nil {
+			if cells, err = csvCells(cells, reflect.Indirect(field)); err != nil {
 				return nil, err
 			}
 		}

@@ -23,6 +23,14 @@ func flatJSON(t *testing.T, row any) (keys, values []string) {
 	}
 	decoder := json.NewDecoder(bytes.NewReader(text))
 	decoder.UseNumber()
+	return flatObject(t, decoder)
+}
+
+// concentrationKeys are the columns of an account's concentration.
+var concentrationKeys = []string{"top_1", "top_5", "top_10", "top_25", "gini", "effective_volume", "bin_width"}
+
+func flatObject(t *testing.T, decoder *json.Decoder) (keys, values []string) {
+	t.Helper()
 	next := func() json.Token {
 		token, err := decoder.Token()
 		if err != nil {
@@ -30,10 +38,34 @@ func flatJSON(t *testing.T, row any) (keys, values []string) {
 		}
 		return token
 	}
-	next() // {
+	if next() != json.Delim('{') {
+		t.Fatal("no object")
+	}
 	for decoder.More() {
 		key := next().(string)
-		isVector := key == "at" || strings.HasSuffix(key, "_at")
+		isVector := key == "at" || strings.HasSuffix(key, "_at") || strings.HasSuffix(key, "_direction")
+		switch {
+		case key == "curve":
+			var curve [][2]float64
+			if err := decoder.Decode(&curve); err != nil {
+				t.Fatal(err)
+			}
+			continue
+		case key == "concentration":
+			var account json.RawMessage
+			if err := decoder.Decode(&account); err != nil {
+				t.Fatal(err)
+			}
+			if string(account) == "null" {
+				keys, values = append(keys, concentrationKeys...), append(values, make([]string, len(concentrationKeys))...)
+				continue
+			}
+			below := json.NewDecoder(bytes.NewReader(account))
+			below.UseNumber()
+			moreKeys, moreValues := flatObject(t, below)
+			keys, values = append(keys, moreKeys...), append(values, moreValues...)
+			continue
+		}
 		switch value := next().(type) {
 		case json.Delim:
 			for _, axis := range []string{"x", "y", "z"} {
@@ -41,10 +73,9 @@ func flatJSON(t *testing.T, row any) (keys, values []string) {
 			}
 			next() // ]
 		case nil:
-			switch {
-			case isVector:
+			if isVector {
 				keys, values = append(keys, key+"_x", key+"_y", key+"_z"), append(values, "", "", "")
-			case key != "concentration":
+			} else {
 				keys, values = append(keys, key), append(values, "")
 			}
 		case bool:
@@ -120,7 +151,9 @@ func TestRegionsEndWithTheTotal(t *testing.T) {
 // Every file has its heading, also without a row.
 func TestCSVHeadingsWithoutRows(t *testing.T) {
 	for _, test := range []struct{ file, want string }{
-		{"hotspots.csv", "rank,region,cell,source,element_id,at_x,at_y,at_z,density,peak_density,energy,energy_share,volume,cells,prominence,equivalent_stress,utilisation,past_limit,singular\n"},
+		{"hotspots.csv", "rank,region,cell,source,element_id,at_x,at_y,at_z,density,peak_density,energy,energy_share,volume,cells,prominence,equivalent_stress,utilisation,past_limit,singular,region_share,mean_density,energy_at_x,energy_at_y,energy_at_z," +
+			"principal_1,principal_1_direction_x,principal_1_direction_y,principal_1_direction_z,principal_2,principal_2_direction_x,principal_2_direction_y,principal_2_direction_z," +
+			"principal_3,principal_3_direction_x,principal_3_direction_y,principal_3_direction_z\n"},
 		{"past-limit.csv", "cell,source,element_id,region,at_x,at_y,at_z,density,equivalent_stress,utilisation\n"},
 		{"requirements.csv", "name,quantity,region,at_most,at_least,value,met,why\n"},
 	} {
