@@ -151,8 +151,12 @@ func TestFirstHotspotsOfTheDemoMatch(t *testing.T) {
 	writeText(t, "brackets.toml", bracketComparison)
 	for baseline := 1; baseline <= 3; baseline++ {
 		_, stdout, _ := call("compare", "r2.toml", "r5.toml", "r9.toml", "--study", "brackets.toml", "--json", "--baseline", fmt.Sprint(baseline))
+		comparison := readComparison(t, stdout)
+		if comparison.Baseline != baseline {
+			t.Errorf("the baseline is run %d, want %d", comparison.Baseline, baseline)
+		}
 		var ofBaseline, ofRun int
-		for _, match := range readComparison(t, stdout).Hotspots {
+		for _, match := range comparison.Hotspots {
 			if match.BaselineRank == 1 && (match.State == energy.Kept || match.State == energy.Moved) {
 				ofBaseline++
 			}
