@@ -545,6 +545,13 @@ func TestComparedRequirements(t *testing.T) {
 			t.Errorf("%s of %q: want -, got +\n%s", c.requirement.Quantity, c.requirement.Region, difference)
 		}
 	}
+	// The balance is each run's own; its gap may be of either sign.
+	old.Balance, fresh.Balance = &Balance{Gap: 0.01}, &Balance{Gap: -0.05}
+	for i, r := range compared(t, CompareOptions{Requirements: []Requirement{bound("balance.gap", "", none, 0.02)}}, old, fresh, other).Requirements {
+		if r.Met != (i == 0) || i == 1 && r.Value != -0.05 || i == 2 && r.Value.Exists() || (r.Why != "") != (i > 0) {
+			t.Errorf("%+v", r)
+		}
+	}
 	// Cells with plastic strain hide what the limit says, here as in a ledger.
 	fresh.Total.CellsYielded = 1
 	c := compared(t, CompareOptions{Requirements: []Requirement{bound("change.max_utilisation", "", none, 0.1), bound("cells_past_limit", "", none, 0)}}, old, fresh)
