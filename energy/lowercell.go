@@ -334,7 +334,7 @@ func (v *faceVisitor) mark(number int, part *lowerPart, faces [][]int32) {
 
 // facesOf appends the points on each face of a solid or edge of a plane cell.
 func facesOf(cell *mesh.Cell, to [][]int32) [][]int32 {
-	if cell.Faces != nil && len(cell.Faces) > 0 {
+	if len(cell.Faces) > 0 {
 		rest := cell.Faces[1:]
 		for len(rest) > 0 {
 			count := rest[0]
