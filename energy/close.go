@@ -8,8 +8,9 @@ import (
 	"strainledger/mesh"
 )
 
-// close lays out the ledger of a part that has seen every cell.
-func (p *plan) close(total *part) (*Ledger, error) {
+// close lays out the ledger of a part that has seen every cell, with the estimate of its
+// error, nil where there is none.
+func (p *plan) close(total *part, estimate *errorEstimate) (*Ledger, error) {
 	if err := p.checkCells(total); err != nil {
 		return nil, err
 	}
@@ -21,6 +22,7 @@ func (p *plan) close(total *part) (*Ledger, error) {
 	}
 	p.fillAccounts(ledger, total)
 	p.fillLists(ledger, total)
+	p.fillErrors(ledger, estimate)
 	p.findInResult(ledger, total)
 	ledger.Balance = p.balance(ledger, total)
 	if p.isUnknown {
@@ -328,7 +330,7 @@ func (p *plan) hotspot(rank int, c *candidate) Hotspot {
 		Rank: rank, Region: p.regions.regions[c.region].name, Cell: c.place.cell, Source: c.place.source, ElementID: elementID(c),
 		At: &at, Density: Number(c.density), PeakDensity: Number(c.peak), Energy: None, EnergyShare: None, Volume: None, Cells: None,
 		Prominence: None, EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
-		StressMargin: factor - 1, LoadFactor: factor,
+		StressMargin: factor - 1, LoadFactor: factor, ErrorToTarget: None,
 	}
 	if !math.IsNaN(c.limitShare) {
 		isPast := c.limitShare > 1

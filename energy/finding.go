@@ -40,6 +40,11 @@ var severities = map[string]string{
 	"repeated-piece":         Warning,
 	"array-not-everywhere":   Warning,
 
+	"error-not-estimated":     Warning,
+	"hotspot-mesh-too-coarse": Warning,
+
+	"error-estimated":      Note,
+	"patches-not-used":     Note,
 	"ghost-cells":          Note,
 	"mirrored-cells":       Note,
 	"limit-without-source": Note,
