@@ -133,7 +133,7 @@ func TestRegionsEndWithTheTotal(t *testing.T) {
 // Every file has its heading, also without a row.
 func TestCSVHeadingsWithoutRows(t *testing.T) {
 	for _, test := range []struct{ file, want string }{
-		{"hotspots.csv", "rank,region,cell,source,element_id,at_x,at_y,at_z,density,peak_density,energy,energy_share,volume,cells,prominence,equivalent_stress,utilisation,past_limit,singular,stress_margin,load_factor,local_estimate_neuber_stress,local_estimate_neuber_strain,local_estimate_energy_density_stress,local_estimate_energy_density_strain,local_estimate_refused\n"},
+		{"hotspots.csv", "rank,region,cell,source,element_id,at_x,at_y,at_z,density,peak_density,energy,energy_share,volume,cells,prominence,equivalent_stress,utilisation,past_limit,singular,stress_margin,load_factor,error_to_target,local_estimate_neuber_stress,local_estimate_neuber_strain,local_estimate_energy_density_stress,local_estimate_energy_density_strain,local_estimate_refused\n"},
 		{"past-limit.csv", "cell,source,element_id,region,at_x,at_y,at_z,density,equivalent_stress,utilisation\n"},
 		{"requirements.csv", "name,quantity,region,at_most,at_least,value,met,why\n"},
 	} {
