@@ -93,6 +93,7 @@ func (p *plan) recover(ctx context.Context, walk *mesh.Walk, total *part, counts
 		by = p.byGradients() // one value is too little where stress is linear or more within a cell
 	}
 	smooth := newRecovery(nodes, total.largestStress)
+	smooth.isPerCell = by.sampling == sampledPerCell
 	var patches *patches
 	if p.options.Error.Recovery == ByPatches {
 		if why := p.whyNoPatches(total); why != "" {
@@ -206,34 +207,62 @@ func (c *comparer) compare(chunk *mesh.Chunk, i int, state accounted) {
 	}
 	r := &c.regions.regions[c.region[i]]
 	c.recall(chunk, i, r)
-	difference, norm, misfit := c.compareCell(chunk, i, r, c.nodal, c.inFile)
-	if !isFinite(difference, norm, misfit) {
+	rule, stress, measures := c.sampleStress(chunk, i, r)
+	misfit := c.takeMean(chunk, i, r, stress, measures)
+	found := c.compareCell(rule, stress, measures, c.nodal)
+	if c.smooth == nil {
+		_, measure := meanOf(stress, measures)
+		misfit = c.complementary(&found.shift) / measure // of the file's own smooth stress
+	}
+	if !isFinite(found.difference, found.norm, misfit) {
 		sums.uncertain++
 		return
 	}
-	sums.error.Add(difference)
-	sums.norm.Add(norm)
+	sums.error.Add(found.difference)
+	sums.norm.Add(found.norm)
 	c.misfit.Add(misfit)
 	at := place{source: chunk.Source, cell: chunk.First + int64(i)}
 	if _, isWanted := c.wanted[at]; isWanted {
-		c.found[at] = difference
+		c.found[at] = found.difference
 	}
 }
 
-// recall fills in the smooth stress at the nodes of the cell, and the file's.
+// recall fills in the smooth stress at the nodes of the cell.
 func (c *comparer) recall(chunk *mesh.Chunk, i int, r *region) {
-	c.nodal, c.inFile = c.nodal[:0], c.inFile[:0]
+	c.nodal = c.nodal[:0]
 	for _, node := range c.cell.Nodes {
-		if c.file != nil {
-			c.inFile = append(c.inFile, c.file.stressAt(chunk, i, node, r))
-		}
-		if c.smooth != nil {
+		if c.smooth == nil {
+			c.nodal = append(c.nodal, c.file.stressAt(chunk, i, node, r))
+		} else {
 			c.nodal = append(c.nodal, c.smooth.at(chunk.Piece, node, c.region[i]))
 		}
 	}
-	if c.smooth == nil {
-		c.nodal = append(c.nodal, c.inFile...)
+}
+
+// takeMean gives the stress of the displacement's gradients the one value that the file has
+// for the cell as its mean, where the smooth stress comes from those: the gradients then
+// tell how it varies within the cell. It returns the norm of what the two differ by, 0 in
+// linear simplices, within which nothing varies: the value is all that counts there.
+func (c *comparer) takeMean(chunk *mesh.Chunk, i int, r *region, stress []mesh.SymmetricTensor, measures []float64) (misfit float64) {
+	if c.file == nil || c.smooth == nil {
+		return 0
 	}
+	value := c.file.stressAt(chunk, i, c.cell.Nodes[0], r)
+	mean, measure := meanOf(stress, measures)
+	for k := range value {
+		value[k] -= mean[k]
+	}
+	if c.smooth.isPerCell {
+		for q := range stress {
+			for k := range value {
+				stress[q][k] += value[k]
+			}
+		}
+	}
+	if shape := c.cell.Shape; shape.NodeCount == shape.Dimension+1 {
+		return 0
+	}
+	return c.complementary(&value) * measure
 }
 
 // fillErrors writes the estimate into the ledger, and what has to be known of it.
@@ -285,7 +314,7 @@ func (p *plan) isForeignDisplacement(estimate *errorEstimate) bool {
 	if misfit <= foreign*whole {
 		return false
 	}
-	p.findings.add("error-not-estimated", 0, "the error of the mesh is not estimated: the displacement %s does not give the stress of the file (by the law its gradients are off by %.2g of it): look at its unit and scale, or state [fields] displacement = false",
+	p.findings.add("error-not-estimated", 0, "the error of the mesh is not estimated: the displacement %s does not give the stress of the file (by the law its gradients are off by %.2g of it): look at its unit and scale and at the material, or state [fields] displacement = false",
 		quoted(p.inputs.displacement.names), math.Sqrt(misfit/whole))
 	return true
 }
@@ -296,7 +325,7 @@ func (p *plan) howEstimated(patches *patchCounts) string {
 	switch {
 	case p.againstGradients:
 	case p.sampling == sampledPerCell:
-		cells = "the one value of each cell (the file has no displacement to tell more, so that the estimate is low)"
+		cells = "the one value of each cell (no displacement tells how stress varies within cells: it is the error of these values, in bilinear cells below and in quadratic ones above that of the solution)"
 	case p.sampling == sampledAtIntegration:
 		cells = "the stress at the integration points"
 	}

@@ -268,16 +268,15 @@ func TestErrorDoesNotDependOnTheSchedule(t *testing.T) {
 	}
 }
 
-// Where stress is linear patches give it exactly at every node that a patch reaches, the
-// mean does not at the ends. The smooth stress is then 1 - x, and ‖e‖² that of the true
-// solution.
-func TestPatchesOfLinearStress(t *testing.T) {
-	const n = 4
+// linearBlock is a cube of n³ bricks whose stress is a linear function of place, given by
+// its value at the middle of each.
+func linearBlock(n int) *memoryMesh {
 	piece := memoryPiece{}
+	h := 1 / float64(n)
 	for k := range n + 1 {
 		for j := range n + 1 {
 			for i := range n + 1 {
-				piece.points = append(piece.points, [3]float64{float64(i) / n, float64(j) / n, float64(k) / n})
+				piece.points = append(piece.points, [3]float64{h * float64(i), h * float64(j), h * float64(k)})
 			}
 		}
 	}
@@ -288,13 +287,21 @@ func TestPatchesOfLinearStress(t *testing.T) {
 			for i := range n {
 				piece.cells = append(piece.cells, memoryCell{mesh.Hexahedron, []int32{
 					at(i, j, k), at(i+1, j, k), at(i+1, j+1, k), at(i, j+1, k), at(i, j, k+1), at(i+1, j, k+1), at(i+1, j+1, k+1), at(i, j+1, k+1)}})
-				x, y, z := (float64(i)+0.5)/n, (float64(j)+0.5)/n, (float64(k)+0.5)/n
+				x, y, z := h*(float64(i)+0.5), h*(float64(j)+0.5), h*(float64(k)+0.5)
 				stress.values = append(stress.values, 1-x, y, 2*z, x+y, 3*z-y, 1)
 			}
 		}
 	}
 	piece.arrays = []memoryArray{stress}
-	m := &memoryMesh{pieces: []memoryPiece{piece}}
+	return &memoryMesh{pieces: []memoryPiece{piece}}
+}
+
+// Where stress is linear patches give it exactly at every node that a patch reaches, the
+// mean does not at the ends. The smooth stress is then 1 - x, and ‖e‖² that of the true
+// solution.
+func TestPatchesOfLinearStress(t *testing.T) {
+	const n = 4
+	m := linearBlock(n)
 	ledger := tally(t, m, Options{From: FromStress, Materials: []Material{springy()}, Error: ErrorOptions{Estimate: true, Recovery: ByPatches}})
 	// ν 0: e:S:e = Σ normal² + 2 Σ shear². A component of slope g along an axis leaves
 	// g² h²/12 in each cell: normals 1 + 1 + 4, shears 2 (1 + 1) + 2 (9 + 1).
@@ -514,5 +521,36 @@ func TestLegendre(t *testing.T) {
 				t.Errorf("P_%d(%g) = %g, want %g", m, x, got, want)
 			}
 		}
+	}
+}
+
+// The time of a tally with the estimate, for a million cells: hexahedra, which have 27
+// points to compare at.
+func BenchmarkErrorEstimate(b *testing.B) {
+	const n = 20
+	m := linearBlock(n)
+	for i := range m.pieces[0].points {
+		p := m.pieces[0].points[i]
+		if i == 0 {
+			m.pieces[0].arrays = append(m.pieces[0].arrays, memoryArray{name: "displacement", on: mesh.OnPoint, components: 3})
+		}
+		u := &m.pieces[0].arrays[1]
+		u.values = append(u.values, 1e-3*p[0]*p[1], 1e-3*p[1], 1e-3*p[2]*p[0])
+	}
+	for name, options := range map[string]Options{
+		"none":         {From: FromStress},
+		"cells":        {From: FromStress, Fields: Fields{Displacement: Field{Off: true}}, Error: ErrorOptions{Estimate: true}},
+		"patches":      {From: FromStress, Fields: Fields{Displacement: Field{Off: true}}, Error: ErrorOptions{Estimate: true, Recovery: ByPatches}},
+		"gradients":    {From: FromStress, Error: ErrorOptions{Estimate: true}},
+		"displacement": {From: FromDisplacement, Error: ErrorOptions{Estimate: true}},
+	} {
+		b.Run(name, func(b *testing.B) {
+			options.Materials, options.Workers = []Material{springy()}, 1
+			var cells int64
+			for b.Loop() {
+				cells += tally(b, m, options).Total.Cells
+			}
+			b.ReportMetric(b.Elapsed().Seconds()/float64(cells)*1e6, "s/Mcell")
+		})
 	}
 }

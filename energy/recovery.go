@@ -33,6 +33,8 @@ type recovery struct {
 	numbers *nodeNumbers
 	unit    float64 // of the sums, a power of two
 
+	isPerCell bool // from one value per cell
+
 	lock   sync.Mutex
 	nodes  []nodeSum
 	others map[nodeRegion]*nodeSum

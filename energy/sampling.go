@@ -259,9 +259,14 @@ func (w *worker) sampleStress(chunk *mesh.Chunk, i int, r *region) (rule *mesh.T
 }
 
 // meanStress returns the stress σ_h of a cell, averaged over its measure.
-func (w *worker) meanStress(chunk *mesh.Chunk, i int, r *region) (mean mesh.SymmetricTensor) {
+func (w *worker) meanStress(chunk *mesh.Chunk, i int, r *region) mesh.SymmetricTensor {
 	_, stress, measures := w.sampleStress(chunk, i, r)
-	var whole float64
+	mean, _ := meanOf(stress, measures)
+	return mean
+}
+
+// meanOf returns the mean of stresses weighted by their measures, and the sum of those.
+func meanOf(stress []mesh.SymmetricTensor, measures []float64) (mean mesh.SymmetricTensor, whole float64) {
 	for q, measure := range measures {
 		whole += measure
 		for c := range mean {
@@ -271,34 +276,28 @@ func (w *worker) meanStress(chunk *mesh.Chunk, i int, r *region) (mean mesh.Symm
 	for c := range mean {
 		mean[c] /= whole
 	}
-	return mean
+	return mean, whole
 }
 
-// compareCell returns ∫ (σ* - σ_h):S:(σ* - σ_h) dV and ∫ σ_h:S:σ_h dV over cell i, σ*
-// being interpolated from the nodes; and where the file's stress at the nodes is given too,
-// the norm of the mean of its difference from σ_h.
-func (w *worker) compareCell(chunk *mesh.Chunk, i int, r *region, nodal, inFile []mesh.SymmetricTensor) (difference, norm, misfit float64) {
-	rule, stress, measures := w.sampleStress(chunk, i, r)
-	var moment mesh.SymmetricTensor // ∫ σ of the file - σ_h
-	var whole float64
+// A comparedCell is what the error estimate finds of one cell.
+type comparedCell struct {
+	difference float64              // ∫ (σ* - σ_h):S:(σ* - σ_h) dV
+	norm       float64              // ∫ σ_h:S:σ_h dV
+	shift      mesh.SymmetricTensor // ∫ (σ* - σ_h) dV
+}
+
+// compareCell holds the stress σ_h of the current cell, at the points of a rule, against
+// σ*, which is interpolated from the nodes.
+func (w *worker) compareCell(rule *mesh.Tabulation, stress []mesh.SymmetricTensor, measures []float64, nodal []mesh.SymmetricTensor) (found comparedCell) {
 	for q, measure := range measures {
-		values := w.cell.Values(rule, q, w.rational)
-		missing := interpolatedLess(values, nodal, &stress[q])
-		norm += float64(w.complementary(&stress[q]) * measure)
-		difference += float64(w.complementary(&missing) * measure)
-		if len(inFile) == 0 {
-			continue
-		}
-		whole += measure
-		missing = interpolatedLess(values, inFile, &stress[q])
-		for c := range moment {
-			moment[c] += float64(missing[c] * measure)
+		missing := interpolatedLess(w.cell.Values(rule, q, w.rational), nodal, &stress[q])
+		found.norm += float64(w.complementary(&stress[q]) * measure)
+		found.difference += float64(w.complementary(&missing) * measure)
+		for c := range missing {
+			found.shift[c] += float64(missing[c] * measure)
 		}
 	}
-	if len(inFile) > 0 {
-		misfit = w.complementary(&moment) / whole
-	}
-	return difference, norm, misfit
+	return found
 }
 
 // interpolatedLess returns the interpolation of nodal stresses, less a stress.
