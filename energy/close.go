@@ -8,8 +8,9 @@ import (
 	"strainledger/mesh"
 )
 
-// close lays out the ledger of a part that has seen every cell.
-func (p *plan) close(total *part) (*Ledger, error) {
+// close lays out the ledger of a part that has seen every cell, with the estimate of its
+// error, nil where there is none.
+func (p *plan) close(total *part, estimate *errorEstimate) (*Ledger, error) {
 	if err := p.checkCells(total); err != nil {
 		return nil, err
 	}
@@ -21,6 +22,7 @@ func (p *plan) close(total *part) (*Ledger, error) {
 	}
 	p.fillAccounts(ledger, total)
 	p.fillLists(ledger, total)
+	p.fillErrors(ledger, estimate)
 	p.findInResult(ledger, total)
 	ledger.Balance = p.balance(ledger, total)
 	if p.isUnknown {

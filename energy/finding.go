@@ -42,6 +42,11 @@ var severities = map[string]string{
 	"node-order":             Warning,
 	"hotspot-pool":           Warning,
 
+	"error-not-estimated":     Warning,
+	"hotspot-mesh-too-coarse": Warning,
+
+	"error-estimated":      Note,
+	"patches-not-used":     Note,
 	"ghost-cells":          Note,
 	"mirrored-cells":       Note,
 	"limit-without-source": Note,

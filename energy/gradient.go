@@ -114,6 +114,9 @@ func (w *worker) strainAt(rule *mesh.Tabulation, q int, values []float64) (strai
 			u += float64(value * w.displacement[k][radial])
 		}
 		strain[2] = u / w.cell.Place(rule, q)[radial]
+		if !isFinite(strain[2]) {
+			strain[2] = strain[radial] // on the axis u_r/r is du_r/dr
+		}
 	}
 	w.noteStrain(&strain, nil)
 	for k, value := range values {

@@ -90,7 +90,7 @@ func (p *plan) hotspot(ledger *Ledger, pool *pool, found *peak, rank int) Hotspo
 		Rank: rank, Region: p.regions.regions[c.region].name, Cell: c.place.cell, Source: c.place.source, ElementID: elementID(&c.record),
 		At: &at, Density: Number(c.density), PeakDensity: Number(c.peak), Energy: None, EnergyShare: None, Volume: None, Cells: None,
 		Prominence: Number(found.prominence), EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
-		RegionShare: None, MeanDensity: None,
+		RegionShare: None, MeanDensity: None, ErrorToTarget: None,
 	}
 	entry.LoadFactor = LoadFactor(p.regions.regions[c.region].limit.criterion, entry.Utilisation)
 	entry.StressMargin = entry.LoadFactor - 1

@@ -268,6 +268,7 @@ type Hotspot struct {
 	Singular         Text    `json:"singular"`
 	StressMargin     Number  `json:"stress_margin"`
 	LoadFactor       Number  `json:"load_factor"`
+	ErrorToTarget    Number  `json:"error_to_target"` // estimated error of the cell over the one that the target leaves it
 
 	RegionShare         Number  `json:"region_share"` // of the region's energy
 	MeanDensity         Number  `json:"mean_density"`

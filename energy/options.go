@@ -56,6 +56,7 @@ type Options struct {
 	Regions   []Region
 	Limit     LimitOptions
 	Hotspots  HotspotOptions
+	Error     ErrorOptions
 	Balance   BalanceOptions
 	Elsewhere []Elsewhere
 
@@ -135,6 +136,22 @@ type HotspotOptions struct {
 	SingleCells bool    // list single cells, not the peaks of density
 	Pool        int     // densest cells among which peaks are looked for; 0: 16,384
 }
+
+// ErrorOptions asks for an estimate of what the mesh leaves out.
+type ErrorOptions struct {
+	Estimate bool
+	Target   float64  // relative error in the energy norm that is aimed at, above 0 and below 1; 0: 0.05
+	Recovery Recovery // "": by averaging
+}
+
+// A Recovery is a way to a smooth stress at the nodes.
+type Recovery string
+
+// The ways to a smooth stress.
+const (
+	ByAveraging Recovery = "averaging"
+	ByPatches   Recovery = "patches"
+)
 
 // BalanceOptions says what is known of the work of the loads; at most one of the two is
 // set. Without either it comes from the file's nodal forces.

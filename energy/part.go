@@ -93,6 +93,9 @@ type part struct {
 	strained  int64   // cells with a principal strain above largeStrain
 	maxStrain float64 // the largest of them in size; 0: none
 
+	hasMiddleNodes bool    // some of these cells have more nodes than corners
+	largestStress  float64 // largest component at a node, of the stress that is to be recovered
+
 	// The largest ε:ε of the total strain and of its thermal and plastic parts.
 	strain, thermal, plastic float64
 }
@@ -131,6 +134,8 @@ func (p *part) join(other *part) {
 	p.worst.join(&other.worst)
 	p.past = append(p.past, other.past...)
 	p.lower.join(&other.lower)
+	p.hasMiddleNodes = p.hasMiddleNodes || other.hasMiddleNodes
+	raise(&p.largestStress, other.largestStress)
 	raise(&p.strain, other.strain)
 	raise(&p.thermal, other.thermal)
 	raise(&p.plastic, other.plastic)

@@ -28,6 +28,9 @@ type plan struct {
 	motion         motion      // what a look at the displacement has shown
 	lower          unaccounted // lower cells that are no faces or edges
 	forces         *forceSums  // nil: no nodal forces
+	sampling       sampling    // of the smooth stress of the error estimate
+
+	againstGradients bool // it is held against the stress of the displacement, which the energy does not use
 }
 
 // A Plan says what a tally would do, for a look before the run.
@@ -99,6 +102,7 @@ func newPlan(ctx context.Context, walk *mesh.Walk, model *mesh.Model, options *O
 		return nil, err
 	}
 	p.chooseLists()
+	p.chooseSampling()
 	p.noteSettings()
 	return p, nil
 }

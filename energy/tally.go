@@ -54,7 +54,11 @@ func Tally(ctx context.Context, model *mesh.Model, options *Options, done *atomi
 	if err := p.weigh(ctx, walk); err != nil {
 		return nil, err
 	}
-	return p.close(total)
+	estimate, err := p.estimateErrors(ctx, walk, total)
+	if err != nil {
+		return nil, err
+	}
+	return p.close(total, estimate)
 }
 
 // checkPlane refuses a plane or axisymmetric mesh that does not lie in x-y.

@@ -17,6 +17,11 @@ type worker struct {
 	isPerCell bool    // everything that the density needs is cell data
 	smallest  float64 // measure up to which a cell is degenerate
 
+	orientation mesh.Orientation // of the current cell
+	nodeTables  map[*mesh.Shape]*nodeTable
+	nodeStress  []mesh.SymmetricTensor // stress of the current cell at its nodes, and
+	pointStress []mesh.SymmetricTensor // at the points that it is integrated by, for the error estimate
+
 	region      []int32 // -1: in no account
 	measure     []float64
 	energy      []float64
@@ -71,7 +76,9 @@ func (w *worker) visit(chunk *mesh.Chunk) error {
 				w.keepLower(chunk, i)
 			}
 			w.region[i] = -1
+			continue
 		}
+		w.noteStress(chunk, i)
 	}
 	w.gather(chunk)
 	w.fillPool(chunk)
@@ -112,6 +119,7 @@ func (w *worker) evaluate(chunk *mesh.Chunk, i int) (exclusionReason, error) {
 	}
 	r := &w.regions.regions[w.region[i]]
 	orientation, reason, err := w.measureCell(chunk, i, r)
+	w.orientation = orientation
 	if reason == notExcluded && err == nil {
 		if w.law, err = r.lawAt(chunk, i); err != nil {
 			err = inputError("%s: %w", w.model.Sources[chunk.Source].Path, err)

@@ -126,6 +126,15 @@ func newShape(row *cellTypeRow, key shapeKey, isLattice bool) *Shape {
 // its nodes. Polygons, polyhedra, strips, prisms and loose points have none.
 func (s *Shape) Interpolates() bool { return s.basis != nil }
 
+// Degree returns the largest degree of the shape functions along a line, surface or solid
+// simplex of the unit cell; 0 where the shape does not interpolate.
+func (s *Shape) Degree() int {
+	if s.basis == nil {
+		return 0
+	}
+	return max(s.basis.degrees[0], s.basis.degrees[1], s.basis.degrees[2])
+}
+
 // Values writes the value of each node's shape function at a place in parametric
 // coordinates. For a Bézier cell these are the Bernstein polynomials of its control
 // points, without rational weights.

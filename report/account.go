@@ -3,6 +3,7 @@ package report
 import (
 	"cmp"
 	"fmt"
+	"slices"
 	"strings"
 
 	"strainledger/energy"
@@ -21,6 +22,7 @@ func regionsSection(ledger *energy.Ledger) section {
 		numbers("max_density", units),
 		numbers("max_equivalent_stress", units),
 		numbers("max_utilisation", units),
+		numbers("error_estimate", units),
 	}}
 	for i := range ledger.Regions {
 		region := &ledger.Regions[i]
@@ -34,9 +36,12 @@ func regionsSection(ledger *energy.Ledger) section {
 			"",
 			inVolume.text(whole.Volume),
 			inEnergy.text(whole.Energy),
-			"", "", "", "",
+			"", "", "", "", "",
 		)
 		t.totals++
+	}
+	if !wantsErrorEstimate(ledger.Findings) {
+		t.drop(len(t.columns) - 1)
 	}
 	if !materialsDiffer(ledger.Regions) {
 		t.drop(1)
@@ -58,6 +63,14 @@ func materialsDiffer(regions []energy.RegionAccount) bool {
 	return false
 }
 
+// wantsErrorEstimate reports whether the study asks for the estimate: a finding then says
+// how it was made, or why there is none.
+func wantsErrorEstimate(findings []energy.Finding) bool {
+	return slices.ContainsFunc(findings, func(found energy.Finding) bool {
+		return found.Code == "error-estimated" || found.Code == "error-not-estimated"
+	})
+}
+
 func addAccount(t *table, name, material string, account *energy.Account) {
 	t.add(
 		name,
@@ -69,6 +82,7 @@ func addAccount(t *table, name, material string, account *energy.Account) {
 		inDensity.text(account.MaxDensity),
 		inStress.text(account.MaxEquivalentStress),
 		inRatios.text(account.MaxUtilisation),
+		inShares.text(account.ErrorEstimate),
 	)
 	t.mark(8, utilisationTone(account.MaxUtilisation))
 }
@@ -97,6 +111,12 @@ func totalSentences(ledger *energy.Ledger) []string {
 	}
 	if total.Mass.Exists() {
 		sentences = append(sentences, "Mass "+measured("mass", total.Mass, units)+".")
+	}
+	if total.ErrorEstimate.Exists() {
+		sentences = append(sentences, fmt.Sprintf("What the mesh leaves out is estimated at %s %% in the energy norm, an energy of %s.",
+			measured("error_estimate", total.ErrorEstimate, units), measured("energy_error", total.EnergyError, units)))
+	} else if wantsErrorEstimate(ledger.Findings) {
+		sentences = append(sentences, "The error of the mesh is not available.")
 	}
 	return sentences
 }

@@ -166,7 +166,7 @@ func hotspot(rank int, cell energy.RankedCell, isPast *bool) energy.Hotspot {
 		Rank: rank, Region: cell.Region, Cell: cell.Cell, Source: cell.Source, ElementID: cell.ElementID, At: cell.At,
 		Density: cell.Density, PeakDensity: cell.Density, Energy: none, EnergyShare: none, Volume: none, Cells: none,
 		Prominence: none, EquivalentStress: cell.EquivalentStress, Utilisation: cell.Utilisation, PastLimit: isPast,
-		StressMargin: factor - 1, LoadFactor: factor,
+		StressMargin: factor - 1, LoadFactor: factor, ErrorToTarget: none,
 		RegionShare: none, MeanDensity: none, Principal1: none, Principal2: none, Principal3: none,
 	}
 }
@@ -230,6 +230,10 @@ func unlimited() *energy.Ledger {
 	total.CellsPastLimit, total.VolumePastLimit, total.EnergyPastLimit, total.VolumeWithoutLimit = energy.None, energy.None, energy.None, pad.Volume
 	total.PeakDensity, total.PeakDensityAt = 0.2123456, at(8.5, 9.9, 0)
 	total.Mass, total.EnergyVolumetric, total.EnergyDistortional = energy.None, energy.None, energy.None
+	// η² (2U + ‖e‖²) = ‖e‖², with energy_error ‖e‖²/2.
+	pad.ErrorEstimate, ledger.Regions[1].ErrorEstimate, total.ErrorEstimate = 0.04, 0.12, 0.09044126
+	pad.EnergyError, ledger.Regions[1].EnergyError, total.EnergyError = 0.15855322, 1.49357593, 1.65897
+	ledger.Hotspots[0].ErrorToTarget, ledger.Hotspots[1].ErrorToTarget = 3.456789, 0.5
 	ledger.PastLimit.Cells, ledger.PastLimit.Volume, ledger.PastLimit.Energy, ledger.PastLimit.EnergyShare = energy.None, energy.None, energy.None, energy.None
 	for i := range ledger.Hotspots {
 		ledger.Hotspots[i].ElementID, ledger.Hotspots[i].Source = energy.Number(40000+i), i
@@ -244,7 +248,9 @@ func unlimited() *energy.Ledger {
 	for i := range ledger.PastLimit.Worst {
 		ledger.PastLimit.Worst[i].ElementID, ledger.PastLimit.Worst[i].Source = energy.Number(40000+i), i
 	}
-	ledger.Findings = []energy.Finding{{Code: "units-not-stated", Severity: energy.Warning, Cells: energy.None, Message: "The units of the files are not stated: state length and stress."}}
+	ledger.Findings = []energy.Finding{
+		{Code: "units-not-stated", Severity: energy.Warning, Cells: energy.None, Message: "The units of the files are not stated: state length and stress."},
+		{Code: "error-estimated", Severity: energy.Note, Cells: energy.None, Message: "The stress of the displacement's gradients against a smooth stress."}}
 	ledger.Requirements = nil
 	return ledger
 }

@@ -67,8 +67,8 @@ var quantities = []quantity{
 	{"volume_without_limit", "volume without a limit", inVolume, "Volume of the cells whose material has no proportional limit."},
 	{"cells_yielded", "cells with plastic strain", inCounts, "Cells whose plastic strain in the file is not zero; empty where the file has none."},
 	{"curve_energy", "energy by the curve", inEnergy, "Energy by the material's stress-strain curve at the strain reached, an estimate for monotonic loading."},
-	{"error_estimate", "estimated error", inShares, "Estimated error of the mesh in the energy norm, as a part of that norm."},
-	{"energy_error", "estimated error of the energy", inEnergy, "Estimated error of the energy that comes from the mesh."},
+	{"error_estimate", "estimated error", inShares, "Estimated error of the mesh in the energy norm, as a part of that norm; empty where it was not asked for or is not available."},
+	{"energy_error", "estimated error of the energy", inEnergy, "Energy of the estimated error of the stress: by as much the exact solution's energy is estimated to lie from that of the mesh."},
 
 	{"specific_energy", "specific energy", inSpecificEnergy, "Energy over mass."},
 	{"volume_share_past_limit", "volume past the limit", inShares, "Volume of the cells whose utilisation is above 1, over the volume."},
@@ -95,6 +95,7 @@ var quantities = []quantity{
 	{"past_limit", "limit", inWords, "Whether the utilisation is above 1; empty where the region has no limit."},
 	{"stress_margin", "stress margin", inRatios, "Limit over equivalent stress, less 1: the load factor less 1."},
 	{"load_factor", "load factor", inRatios, "Factor by which the load of a linear run may be multiplied until the cell is at its limit."},
+	{"error_to_target", "error over target", inRatios, "Estimated error of the cell over what the study's target leaves to each cell; above 1 the mesh is too coarse there; empty without an estimate."},
 	{"local_estimate_neuber_stress", "local stress by Neuber", inStress, "Estimated stress by Neuber's rule and the material's curve; empty where there is no estimate."},
 	{"local_estimate_neuber_strain", "local strain by Neuber", inRatios, "Estimated strain by Neuber's rule, which tends to overstate it."},
 	{"local_estimate_energy_density_stress", "local stress by energy density", inStress, "Estimated stress by the equivalent strain energy density and the material's curve; empty where there is no estimate."},

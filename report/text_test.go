@@ -262,3 +262,31 @@ func TestOnlyWhatIsPastTheLimitIsMarked(t *testing.T) {
 		}
 	}
 }
+
+// An estimate that was asked for is shown or said to be missing; else nothing is said.
+func TestErrorEstimateInText(t *testing.T) {
+	for name, c := range map[string]struct {
+		change func(*energy.Ledger)
+		want   string
+	}{
+		"estimated": {func(l *energy.Ledger) {
+			l.Total.ErrorEstimate, l.Total.EnergyError = 0.125, 3.5
+			l.Findings = append(l.Findings, energy.Finding{Code: "error-estimated", Severity: energy.Note, Cells: energy.None})
+		}, "What the mesh leaves out is estimated at 12.50 % in the energy norm, an energy of 3.5000 mJ."},
+		"not available": {func(l *energy.Ledger) {
+			l.Findings = append(l.Findings, energy.Finding{Code: "error-not-estimated", Severity: energy.Warning, Cells: energy.None})
+		}, "The error of the mesh is not available."},
+		"not asked for": {func(*energy.Ledger) {}, ""},
+	} {
+		ledger := unjudged()
+		c.change(ledger)
+		section := regionsSection(ledger)
+		text := strings.Join(totalSentences(ledger), " ")
+		if hasColumn := section.table.columns[len(section.table.columns)-1].heading == "estimated error"; hasColumn != (c.want != "") {
+			t.Errorf("%s: column %v", name, hasColumn)
+		}
+		if !strings.Contains(text, c.want) || c.want == "" && strings.Contains(text, "mesh") {
+			t.Errorf("%s: %q, want %q", name, text, c.want)
+		}
+	}
+}

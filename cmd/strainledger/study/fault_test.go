@@ -204,8 +204,13 @@ func TestFaults(t *testing.T) {
 			[]string{"balance.load.force must have two or three numbers; write [x, y, z], in a plane model [x, y]",
 				"balance.load.displacement must have two or three numbers; write [x, y, z], in a plane model [x, y]"}},
 		"load without displacement": {"[[balance.§load]]\nforce = [1, 0]", []string{"[[balance.load]] without displacement; add displacement"}},
-		"load of texts":             {"[[balance.load]]\nforce = [§\"1\", 0]\ndisplacement = [1, 0]", []string{`balance.load.force is the text "1"; write a number`}},
-		"elsewhere without energy":  {"[[§elsewhere]]\nname = \"bolts\"", []string{"[[elsewhere]] without energy; add energy"}},
+		"target without estimate": {"[error]\n§target = 0.1\n§recovery = \"averaging\"", []string{
+			"error.target without error.estimate, which asks for the estimate; add estimate = true",
+			"error.recovery without error.estimate, which asks for the estimate; add estimate = true"}},
+		"target of everything": {"[error]\nestimate = true\n§target = 1\n§recovery = \"patch\"", []string{
+			"error.target is 1; it must be above 0 and below 1", `error.recovery is "patch"; write "averaging" or "patches"`}},
+		"load of texts":            {"[[balance.load]]\nforce = [§\"1\", 0]\ndisplacement = [1, 0]", []string{`balance.load.force is the text "1"; write a number`}},
+		"elsewhere without energy": {"[[§elsewhere]]\nname = \"bolts\"", []string{"[[elsewhere]] without energy; add energy"}},
 		"elsewhere twice": {"[[elsewhere]]\nname = \"bolts\"\nenergy = 1\n[[elsewhere]]\n§name = \"bolts\"\nenergy = 2",
 			[]string{`elsewhere.name "bolts" was given before (line 2); use another or remove one of the two`}},
 		"force on cells": {"fields.nodal_force = { array = \"f\", §on = \"cell\" }", []string{`fields.nodal_force.on is "cell"; write "point"`}},
@@ -221,12 +226,12 @@ func TestFaults(t *testing.T) {
 		"requirement that nothing meets": {"[[require]]\nquantity = \"energy\"\nat_most = 1\n§at_least = 2",
 			[]string{"require.at_least is 2 and at_most is 1, which nothing can meet; exchange them"}},
 
-		"all at once, in the order of lines": {"§title = 1\n[units]\n§mas = \"kg\"\n[[region]]\nname = \"a\"\nselect.rest = true\n§material = \"x\"\n[§error]\nwhatever = 1\n[limit]\n§list = 0",
+		"all at once, in the order of lines": {"§title = 1\n[units]\n§mas = \"kg\"\n[[region]]\nname = \"a\"\nselect.rest = true\n§material = \"x\"\n[[§case]]\nwhatever = 1\n[limit]\n§list = 0",
 			[]string{
 				"title is the number 1; write a text in quotes",
 				`unknown key "mas" in [units]; the nearest known key is "mass"`,
 				`region.material is "x", but the study has no material; add [[material]]`,
-				"error is not built yet; remove it",
+				"case is not built yet; remove it",
 				"limit.list is 0; it must be 1 or more",
 			}},
 	} {
@@ -239,7 +244,7 @@ func TestNotBuiltYet(t *testing.T) {
 	for _, marked := range []string{
 		"input.§steps = [\"a\"]", "input.§start = \"as-given\"", "input.§time = \"all\"",
 		"hotspots.§prominence = 0.2", "hotspots.§radius = 3.0", "hotspots.§centre = [1, 2, 3]", "hotspots.§pool = 16384",
-		"[§error]\nestimate = true", "[[§case]]\nname = \"pull\"",
+		"[[§case]]\nname = \"pull\"",
 	} {
 		t.Run(marked, func(t *testing.T) { wantNotBuilt(t, marked) })
 	}

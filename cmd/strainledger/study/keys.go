@@ -72,8 +72,8 @@ var (
 		"shear-convention", "component-order", "default-order", "balance-gap", "point-data-across-regions", "large-strain",
 		"units-suspect", "units-not-stated", "regions-overlap", "criterion-unsuited", "parts-not-accounted", "degenerate-cells",
 		"plastic-strain-present", "nonlinear-run-advised", "several-locations", "outside-path", "repeated-piece", "hotspot-pool", "not-mergeable",
-		"array-not-everywhere",
-		"ghost-cells", "mirrored-cells", "limit-without-source", "one-value-per-cell",
+		"array-not-everywhere", "error-not-estimated", "hotspot-mesh-too-coarse",
+		"error-estimated", "patches-not-used", "ghost-cells", "mirrored-cells", "limit-without-source", "one-value-per-cell",
 	}
 )
 
@@ -170,9 +170,10 @@ var keys = slices.Concat([]key{
 		{path: "hotspots.centre", form: numbers, later: true},
 		{path: "hotspots.pool", form: aWhole, bound: countable, later: true},
 
-		{path: "error", form: aTable, later: true},
+		{path: "error", form: aTable},
 		{path: "error.estimate", form: aSwitch},
 		{path: "error.target", form: aNumber, bound: share},
+		{path: "error.recovery", form: aName, values: []string{"averaging", "patches"}},
 
 		{path: "balance", form: aTable},
 		{path: "balance.external_work", form: aNumber},

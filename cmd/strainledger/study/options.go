@@ -377,7 +377,23 @@ func (r *reading) judgement() {
 	r.to.Limit.List = int(r.root.numberOf(0, "limit", "list"))
 	r.to.Hotspots.Count = int(r.root.numberOf(0, "hotspots", "count"))
 	r.to.Hotspots.By = r.root.textOf("hotspots", "by")
+	r.estimate()
 	r.verdict()
+}
+
+// estimate reads how the error of the mesh is estimated.
+func (r *reading) estimate() {
+	asked := r.root.get("error", "estimate")
+	for _, name := range []string{"target", "recovery"} {
+		if stated := r.root.get("error", name); stated != nil && asked == nil {
+			r.faults.add(stated.place, "error.%s without error.estimate, which asks for the estimate; add estimate = true", name)
+		}
+	}
+	r.to.Error = energy.ErrorOptions{
+		Estimate: asked != nil && asked.truth,
+		Target:   r.root.numberOf(0, "error", "target"),
+		Recovery: energy.Recovery(r.root.textOf("error", "recovery")),
+	}
 }
 
 // verdict reads what is demanded and accepted.

@@ -79,6 +79,10 @@ list = 7
 [hotspots]
 count = 3
 by = "energy"
+[error]
+estimate = true
+target = 0.1
+recovery = "patches"
 [balance]
 external_work = 12.5
 [[elsewhere]]
@@ -156,6 +160,7 @@ func wholeOptions() energy.Options {
 		},
 		Limit:    energy.LimitOptions{Criterion: energy.DistortionEnergy, List: 7},
 		Hotspots: energy.HotspotOptions{Count: 3, By: "energy"},
+		Error:    energy.ErrorOptions{Estimate: true, Target: 0.1, Recovery: energy.ByPatches},
 		Balance:  energy.BalanceOptions{ExternalWork: &work},
 		Elsewhere: []energy.Elsewhere{
 			{Name: "bolts", Energy: 0.8, Source: "hand calculation 7"},
@@ -203,7 +208,7 @@ func TestReadWhole(t *testing.T) {
 	want := &Study{
 		Path: path,
 		// sha256sum of the text above
-		SHA256:  "d7ea77699f775d0c83ea36b63cb3cade7e8064beefee3b49ac92d05037d256a1",
+		SHA256:  "c6d5100cd07a5645d7f4620a7fafcc48dde5d20b51f6626649a75f8e1ceaed72",
 		Options: wholeOptions(),
 		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
 		Time:    Time{Value: &time},
