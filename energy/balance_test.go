@@ -476,6 +476,27 @@ func TestBalanceGap(t *testing.T) {
 	}
 }
 
+// Results at integration points follow the solution as a displacement does.
+func TestSampledClosely(t *testing.T) {
+	at := func(on string) *FieldUsed { return &FieldUsed{On: on} }
+	for _, c := range []struct {
+		from EnergySource
+		used FieldsUsed
+		want bool
+	}{
+		{FromDisplacement, FieldsUsed{}, true},
+		{FromStressStrain, FieldsUsed{Stress: at("integration"), Strain: at("integration")}, true},
+		{FromStrain, FieldsUsed{Strain: at("integration")}, true},
+		{FromStressStrain, FieldsUsed{Stress: at("cell"), Strain: at("cell")}, false},
+		{FromStress, FieldsUsed{Stress: at("point")}, false},
+	} {
+		p := &plan{from: c.from, inputs: &inputs{used: c.used}}
+		if p.isSampledClosely() != c.want {
+			t.Errorf("from %s of %+v: %v", c.from, c.used, !c.want)
+		}
+	}
+}
+
 // Forces for one radian: the ring stores 2π times their work.
 func TestGapOfARadian(t *testing.T) {
 	points := [][3]float64{{10, 0, 0}, {20, 0, 0}, {20, 5, 0}, {10, 5, 0}}

@@ -64,14 +64,20 @@ func (b *best) where() (cell, source Number, at *Vector) {
 }
 
 // A candidate is one cell that may enter a ranked list, with all that the list says
-// of it. Key is the value it is ranked by.
+// of it.
 type candidate struct {
+	record
+	at Vector
+}
+
+// A record is what a list says of a cell, but for where it is. Key is the value that the
+// cell is ranked by.
+type record struct {
 	key   float64
 	place place
 
 	region     int32
 	elementID  int64
-	at         Vector
 	measure    float64
 	energy     float64
 	density    float64

@@ -240,7 +240,8 @@ func (p *plan) volumeWithoutLimit(total *part) Number {
 	var volume Sum
 	for i := range p.regions.regions {
 		if !p.regions.regions[i].limit.exists() {
-			volume.Join(&total.accounts[i].volume)
+			ofRegion, _ := total.accounts[i].bins.sums()
+			volume.Join(&ofRegion)
 		}
 	}
 	return Number(volume.Float64())
@@ -249,13 +250,15 @@ func (p *plan) volumeWithoutLimit(total *part) Number {
 // layOut turns one account into the ledger's form. Without an isotropic law there is no
 // split, without a limit no utilisation.
 func (p *plan) layOut(a *account, isIsotropic, hasLimit bool) Account {
+	volume, energy := a.bins.sums()
 	account := Account{
-		Cells: a.cells, Volume: Number(a.volume.Float64()), Mass: None, Energy: Number(a.energy.Float64()), EnergyShare: None,
+		Cells: a.cells, Volume: Number(volume.Float64()), Mass: None, Energy: Number(energy.Float64()), EnergyShare: None,
 		EnergyVolumetric: None, EnergyDistortional: None, MeanDensity: None,
 		MaxDensity: a.maxDensity.number(), PeakDensity: a.peak.number(), MaxEquivalentStress: None,
 		MaxUtilisation: None, MaxUtilisationCell: None, MaxUtilisationSource: None,
 		CellsPastLimit: None, VolumePastLimit: None, EnergyPastLimit: None, CellsYielded: None,
 		CurveEnergy: None, ErrorEstimate: None, EnergyError: None,
+		Concentration: a.bins.concentration(),
 	}
 	account.MaxDensityCell, account.MaxDensitySource, account.MaxDensityAt = a.maxDensity.where()
 	_, _, account.PeakDensityAt = a.peak.where()
@@ -263,7 +266,7 @@ func (p *plan) layOut(a *account, isIsotropic, hasLimit bool) Account {
 		account.MeanDensity = account.Energy / account.Volume
 	}
 	if isIsotropic {
-		distortional := a.energy
+		distortional := energy
 		distortional.Subtract(&a.volumetric)
 		account.EnergyVolumetric = Number(a.volumetric.Float64())
 		account.EnergyDistortional = Number(distortional.Float64())
@@ -295,13 +298,7 @@ func (p *plan) fillShares(ledger *Ledger) {
 
 // fillLists lays out the hotspots and the cells past their limit.
 func (p *plan) fillLists(ledger *Ledger, total *part) {
-	ledger.Hotspots = []Hotspot{}
-	total.hotspots.trim()
-	for rank, c := range total.hotspots.list {
-		entry := p.hotspot(rank+1, &c)
-		entry.LocalEstimate = p.regions.regions[c.region].localEstimate(&ledger.Regions[c.region].Account, &entry)
-		ledger.Hotspots = append(ledger.Hotspots, entry)
-	}
+	p.fillHotspots(ledger, total)
 	ledger.PastLimit = PastLimit{
 		Criterion: string(p.criterion()), Cells: ledger.Total.CellsPastLimit,
 		Volume: ledger.Total.VolumePastLimit, Energy: ledger.Total.EnergyPastLimit, EnergyShare: None,
@@ -320,34 +317,17 @@ func (p *plan) fillLists(ledger *Ledger, total *part) {
 	}
 }
 
-// hotspot lays out one entry of the list of hotspots: a single cell.
-func (p *plan) hotspot(rank int, c *candidate) Hotspot {
-	at := c.at
-	factor := LoadFactor(p.regions.regions[c.region].limit.criterion, Number(c.limitShare))
-	entry := Hotspot{
-		Rank: rank, Region: p.regions.regions[c.region].name, Cell: c.place.cell, Source: c.place.source, ElementID: elementID(c),
-		At: &at, Density: Number(c.density), PeakDensity: Number(c.peak), Energy: None, EnergyShare: None, Volume: None, Cells: None,
-		Prominence: None, EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
-		StressMargin: factor - 1, LoadFactor: factor,
-	}
-	if !math.IsNaN(c.limitShare) {
-		isPast := c.limitShare > 1
-		entry.PastLimit = &isPast
-	}
-	return entry
-}
-
 // rankedCell lays out one cell past its limit.
 func (p *plan) rankedCell(c *candidate) RankedCell {
 	at := c.at
 	return RankedCell{
-		Cell: c.place.cell, Source: c.place.source, ElementID: elementID(c), Region: p.regions.regions[c.region].name,
+		Cell: c.place.cell, Source: c.place.source, ElementID: elementID(&c.record), Region: p.regions.regions[c.region].name,
 		At: &at, Density: Number(c.density), EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
 	}
 }
 
 // elementID returns the file's own number of a cell.
-func elementID(c *candidate) Number {
+func elementID(c *record) Number {
 	if c.elementID == mesh.NoLabel {
 		return None
 	}
@@ -364,14 +344,16 @@ func (l *Ledger) withoutEnergy() {
 	for _, a := range accounts {
 		a.Energy, a.EnergyShare, a.MeanDensity, a.EnergyPastLimit = None, None, None, None
 		a.MaxDensity, a.MaxDensityCell, a.MaxDensitySource, a.MaxDensityAt = None, None, None, nil
-		a.PeakDensity, a.PeakDensityAt, a.CurveEnergy = None, nil, None
+		a.PeakDensity, a.PeakDensityAt, a.CurveEnergy, a.Concentration = None, nil, None, nil
 	}
 	if l.Repeated != nil {
 		l.Repeated.Energy = None
 	}
 	l.PastLimit.Energy, l.PastLimit.EnergyShare = None, None
 	for i := range l.Hotspots {
-		l.Hotspots[i].Density, l.Hotspots[i].PeakDensity = None, None
+		h := &l.Hotspots[i]
+		h.Density, h.PeakDensity, h.MeanDensity = None, None, None
+		h.Energy, h.EnergyShare, h.RegionShare, h.Prominence, h.EnergyAt = None, None, None, None, nil
 	}
 	for _, list := range [][]RankedCell{l.PastLimit.Worst, l.AllPastLimit} {
 		for i := range list {

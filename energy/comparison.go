@@ -265,10 +265,8 @@ func (c *comparing) tolerance() Number {
 func (c *comparing) findChanges() {
 	for i := range c.to.Runs {
 		c.findErrors(i + 1)
-		if i+1 != c.to.Baseline {
-			c.findNew(i + 1)
-			c.findGone(i + 1)
-		}
+		c.findNew(i + 1)
+		c.findGone(i + 1)
 	}
 }
 

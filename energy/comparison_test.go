@@ -239,8 +239,10 @@ func TestEnergyGoesWithTheSquareOfTheLoad(t *testing.T) {
 	if stress.Value != 60 || stress.Difference != 10 || stress.Withheld != "the load is 1.2 times the reference, in the baseline 1 times" {
 		t.Errorf("stress %+v", stress)
 	}
-	for _, quantity := range []string{"max_utilisation", "cells_past_limit", "volume_past_limit", "energy_past_limit", "volume_share_past_limit", "energy_share_past_limit"} {
-		if row := scaled.Row(4, "", quantity); row.Withheld != stress.Withheld {
+	notNormalised := strings.Fields(`max_equivalent_stress max_utilisation cells_past_limit volume_past_limit volume_share_past_limit
+		energy_past_limit energy_share_past_limit cells_yielded curve_energy`)
+	for _, quantity := range ComparedQuantities() {
+		if row := scaled.Row(4, "bar", quantity); (row.Withheld == stress.Withheld) != slices.Contains(notNormalised, quantity) {
 			t.Errorf("%+v", row)
 		}
 	}
@@ -541,6 +543,13 @@ func TestComparedRequirements(t *testing.T) {
 		}
 		if difference := cmp.Diff(c.want, got, sameNumbers); difference != "" {
 			t.Errorf("%s of %q: want -, got +\n%s", c.requirement.Quantity, c.requirement.Region, difference)
+		}
+	}
+	// The balance is each run's own; its gap may be of either sign.
+	old.Balance, fresh.Balance = &Balance{Gap: 0.01}, &Balance{Gap: -0.05}
+	for i, r := range compared(t, CompareOptions{Requirements: []Requirement{bound("balance.gap", "", none, 0.02)}}, old, fresh, other).Requirements {
+		if r.Met != (i == 0) || i == 1 && r.Value != -0.05 || i == 2 && r.Value.Exists() || (r.Why != "") != (i > 0) {
+			t.Errorf("%+v", r)
 		}
 	}
 	// Cells with plastic strain hide what the limit says, here as in a ledger.

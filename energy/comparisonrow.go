@@ -211,8 +211,7 @@ func (c *comparing) judge() {
 		for j := range c.to.Runs {
 			if run := j + 1; !isChange || run != c.to.Baseline {
 				value, why := c.required(run, r)
-				result := outcome(r, value, why, hiddenByYielding(c.run(run), r))
-				c.to.Requirements = append(c.to.Requirements, ComparisonRequirement{run, result})
+				c.to.Requirements = append(c.to.Requirements, ComparisonRequirement{run, outcome(c.run(run), r, value, why)})
 			}
 		}
 	}

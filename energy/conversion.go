@@ -49,8 +49,8 @@ func statedUnit(unit Text) string {
 	return string(unit)
 }
 
-// apply returns the converted ledger: model, materials, accounts and hotspots, which are
-// what a comparison reads. The ledger itself stays as it is, and so do lists of cells.
+// apply returns the converted ledger: model, materials, accounts, hotspots and balance,
+// which are what a comparison reads. The ledger itself stays as it is, and so do lists of cells.
 func (c *conversion) apply(ledger *Ledger, units UnitLabels) *Ledger {
 	converted := *ledger
 	converted.Units = units
@@ -69,6 +69,23 @@ func (c *conversion) apply(ledger *Ledger, units UnitLabels) *Ledger {
 	converted.Hotspots = make([]Hotspot, len(ledger.Hotspots))
 	for i := range ledger.Hotspots {
 		converted.Hotspots[i] = c.hotspot(&ledger.Hotspots[i])
+	}
+	converted.Balance = c.balance(ledger.Balance)
+	return &converted
+}
+
+func (c *conversion) balance(balance *Balance) *Balance {
+	if balance == nil {
+		return nil
+	}
+	converted := *balance
+	converted.ExternalWork *= c.energy()
+	converted.Stored *= c.energy()
+	converted.Elsewhere *= c.energy()
+	converted.Parts = make([]Elsewhere, len(balance.Parts))
+	for i, part := range balance.Parts {
+		part.Energy *= c.energy()
+		converted.Parts[i] = part
 	}
 	return &converted
 }

@@ -24,6 +24,8 @@ var dimensions = map[string][4]float64{
 	"material.youngs_moduli": {0, 1, 0, 0}, "material.shear_moduli": {0, 1, 0, 0}, "material.stiffness": {0, 1, 0, 0},
 	"estimate.stress": {0, 1, 0, 0},
 
+	"balance.external_work": {3, 1, 0, -2}, "balance.stored": {3, 1, 0, -2}, "balance.elsewhere": {3, 1, 0, -2}, "part.energy": {3, 1, 0, -2},
+
 	"model.diagonal": {1, 0, 0, 0}, "model.hotspot_tolerance": {1, 0, 0, 0},
 }
 
@@ -97,6 +99,9 @@ func TestConversionOfEveryNumber(t *testing.T) {
 	ledger.Hotspots[1].LocalEstimate = &LocalEstimate{Refused: "no"}
 	fill(reflect.ValueOf(&ledger.Hotspots[1].LocalEstimate.Neuber).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Hotspots[1].LocalEstimate.EnergyDensity).Elem(), &next)
+	ledger.Balance = &Balance{Parts: make([]Elsewhere, 2)}
+	fill(reflect.ValueOf(ledger.Balance).Elem(), &next)
+	fill(reflect.ValueOf(&ledger.Balance.Parts[1]).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Materials[1]).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Model).Elem(), &next)
 	units := labels("mm", "MPa", "kg")
@@ -112,6 +117,8 @@ func TestConversionOfEveryNumber(t *testing.T) {
 	before, after := ledger.Hotspots[1].LocalEstimate, got.Hotspots[1].LocalEstimate
 	checkConverted(t, "estimate.", before.Neuber, after.Neuber, factors)
 	checkConverted(t, "estimate.", before.EnergyDensity, after.EnergyDensity, factors)
+	checkConverted(t, "balance.", *ledger.Balance, *got.Balance, factors)
+	checkConverted(t, "part.", ledger.Balance.Parts[1], got.Balance.Parts[1], factors)
 	checkConverted(t, "material.", ledger.Materials[1], got.Materials[1], factors)
 	checkConverted(t, "model.", ledger.Model, got.Model, factors)
 	if got.Units != units {

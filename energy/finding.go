@@ -40,6 +40,7 @@ var severities = map[string]string{
 	"repeated-piece":         Warning,
 	"array-not-everywhere":   Warning,
 	"node-order":             Warning,
+	"hotspot-pool":           Warning,
 
 	"ghost-cells":          Note,
 	"mirrored-cells":       Note,

@@ -90,6 +90,7 @@ func (w *worker) evaluateGradients(chunk *mesh.Chunk, i int, r *region, orientat
 	w.peak[i] = math.NaN() // the file gives no stress or strain at any place
 	w.equivalent[i] = r.limit.equivalent(&mean)
 	w.utilisation[i] = r.limit.utilisation(w.equivalent[i])
+	w.tensor[i] = mean
 	if !isFinite(w.energy[i], w.volumetric[i], w.equivalent[i], w.density[i]) {
 		return notFinite
 	}

@@ -106,6 +106,20 @@ func TestHenckyOfAPerfectlyPlasticBar(t *testing.T) {
 	expect(t, 1e-12, []expectation{{"volume", law.Density(&volume), 0.5 * 200000 / (3 * 0.4) * 0.03 * 0.03}})
 }
 
+// Rounding of the equivalent strain does not carry a state beyond the last point; more
+// does.
+func TestHenckyAtTheLastPoint(t *testing.T) {
+	law := hencky(t, curveOf(t, []CurvePoint{{0, 0}, {250. / 200000, 250}, {0.02, 250}}), 200000, 0.3)
+	last := law.equivalent.Last().Strain
+	want := law.equivalent.Area(last)
+	for beyond, isWithin := range map[float64]bool{-1e-9: true, 5e-13: true, 2e-12: false} {
+		shear := mesh.SymmetricTensor{0, 0, 0, last * (1 + beyond) * math.Sqrt(3) / 2}
+		if got := law.Density(&shear); isWithin != within(got, want, 2e-9) || isWithin == math.IsNaN(got) {
+			t.Errorf("%g beyond the last point: density %.12g, of %.12g there", beyond, got, want)
+		}
+	}
+}
+
 func TestEquivalentStrain(t *testing.T) {
 	for _, c := range []struct {
 		strain mesh.SymmetricTensor

@@ -177,7 +177,7 @@ func (w *worker) evaluatePoints(chunk *mesh.Chunk, i int, r *region, orientation
 		}
 		density := Density(&stress, &strain)
 		if density > w.peak[i] {
-			w.peak[i], w.peakNode[i] = density, int32(q)
+			w.peak[i], w.peakNode[i], w.tensor[i] = density, int32(q), stress
 		}
 		equivalent := r.limit.equivalent(&stress)
 		largest, least = max(largest, equivalent), min(least, equivalent)

@@ -30,6 +30,8 @@ type Ledger struct {
 	// AllPastLimit lists every cell past its limit in the order of PastLimit.Worst,
 	// when Options.ListAllPastLimit asked for it.
 	AllPastLimit []RankedCell `json:"-"`
+	// HotspotCells lists the cells of every hotspot, rank by rank, the peak first.
+	HotspotCells []HotspotCell `json:"-"`
 }
 
 // LedgerSchema names the form of a Ledger.
@@ -192,7 +194,7 @@ type Account struct {
 	ErrorEstimate        Number  `json:"error_estimate"`
 	EnergyError          Number  `json:"energy_error"`
 
-	Concentration *NotBuilt `json:"concentration"`
+	Concentration *Concentration `json:"concentration"` // nil where no energy is stored
 }
 
 // RegionAccount is the account of one region.
@@ -239,8 +241,13 @@ type RankedCell struct {
 	Utilisation      Number  `json:"utilisation"`
 }
 
-// A Hotspot is a place where energy gathers. The keys of its surroundings (energy,
-// energy share, volume, cells, prominence) are null while hotspots are single cells.
+// A Hotspot is a place where energy gathers: the cells that are joined to a peak of
+// density through faces, within its region, and that have at least 1 - prominence of the
+// peak's density, the prominence being that of the study. Cell, At, Density and what is
+// said of stress are those of the peak's cell.
+//
+// Energy, Volume, Cells and what follows from them are null where such cells may be
+// outside the pool. Of a hotspot that is a single cell Prominence is null.
 type Hotspot struct {
 	Rank             int     `json:"rank"`
 	Region           string  `json:"region"`
@@ -262,7 +269,24 @@ type Hotspot struct {
 	StressMargin     Number  `json:"stress_margin"`
 	LoadFactor       Number  `json:"load_factor"`
 
+	RegionShare         Number  `json:"region_share"` // of the region's energy
+	MeanDensity         Number  `json:"mean_density"`
+	EnergyAt            *Vector `json:"energy_at"`   // centroid of the energy
+	Principal1          Number  `json:"principal_1"` // principal stresses, the largest first, where
+	Principal1Direction *Vector `json:"principal_1_direction"`
+	Principal2          Number  `json:"principal_2"` // the cell's density is largest
+	Principal2Direction *Vector `json:"principal_2_direction"`
+	Principal3          Number  `json:"principal_3"`
+	Principal3Direction *Vector `json:"principal_3_direction"`
+
 	LocalEstimate *LocalEstimate `json:"local_estimate"`
+}
+
+// A HotspotCell is one cell of a hotspot.
+type HotspotCell struct {
+	Source int
+	Cell   int64
+	Rank   int
 }
 
 // PastLimit lists the cells whose utilisation is above 1. Cells, Volume and Energy are

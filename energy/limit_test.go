@@ -291,8 +291,8 @@ func TestEachRegionByItsOwnCriterion(t *testing.T) {
 	}
 }
 
-// A cell with values on points has the value that governs over its points, in tension or
-// in compression; so has a cell with stress from the displacement, by the mean.
+// A cell with values on points, or at integration points, has the value that governs over
+// them, in tension or in compression; so has a cell with stress from the displacement, by the mean.
 func TestGoverningOverPoints(t *testing.T) {
 	points, cell := brick(1, 1, 1)
 	brittle := material250()
@@ -306,8 +306,15 @@ func TestGoverningOverPoints(t *testing.T) {
 	} {
 		stress := uniform(8, 0, 0, 0, 0, 0, 0)
 		stress[3], stress[6] = []float64{c.low, 0, 0, 0, 0, 0}, []float64{0, c.high, 0, 0, 0, 0}
-		m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: []memoryCell{cell}, arrays: []memoryArray{pointArray("stress", stress...)}}}}
-		ledger := tally(t, m, stressOptions(mesh.OnPoint, MaxPrincipal, brittle))
+		onPoints := stressOptions(mesh.OnPoint, MaxPrincipal, brittle)
+		inCells := stressOptions(0, MaxPrincipal, brittle)
+		inCells.Fields.Stress.Integration, inCells.Fields.Stress.Rule = true, "gauss 2x2x2"
+		m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: []memoryCell{cell}, arrays: []memoryArray{cellArray("stress", slices.Concat(stress...))}}}}
+		if got := tally(t, m, inCells).Total; got.MaxEquivalentStress != Number(c.equivalent) || !within(float64(got.MaxUtilisation), c.utilisation, 1e-15) {
+			t.Errorf("%s, at integration points: %+v", c.name, got)
+		}
+		m.pieces[0].arrays = []memoryArray{pointArray("stress", stress...)}
+		ledger := tally(t, m, onPoints)
 		if got := ledger.Total; got.MaxEquivalentStress != Number(c.equivalent) || !within(float64(got.MaxUtilisation), c.utilisation, 1e-15) ||
 			(got.CellsPastLimit == 1) != (c.utilisation > 1) {
 			t.Errorf("%s: %+v", c.name, got)
@@ -468,6 +475,16 @@ func TestCriterionUnsuited(t *testing.T) {
 				t.Errorf("%s, general law %v: finding %v", criterion, isGeneral, isFound)
 			}
 		}
+	}
+	points, cell := brick(1, 1, 1)
+	m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: []memoryCell{cell}, arrays: []memoryArray{cellArray("stress", stateT02[:])}}}}
+	graphite.YoungsModuli, graphite.ShearModuli, graphite.PoissonsRatios = &[3]float64{181000, 10300, 12000}, &[3]float64{7170, 3900, 6100}, &[3]float64{0.28, 0.41, 0.23}
+	ledger := tally(t, m, stressOptions(mesh.OnCell, VonMises, graphite))
+	if got := ledger.Total.MaxEquivalentStress; !within(float64(got), 205.548048, 1e-8) || !hasFinding(ledger, "criterion-unsuited") {
+		t.Errorf("equivalent stress %v, findings %+v", got, ledger.Findings)
+	}
+	if err := tallyError(t, m, stressOptions(mesh.OnCell, DistortionEnergy, graphite)); !strings.Contains(err.Error(), `material "graphite" has none`) {
+		t.Errorf("error %v", err)
 	}
 }
 

@@ -21,7 +21,7 @@ type lowerCell struct {
 	corners   int
 	dimension int
 	each      int  // corners of each of its parts: of a line of a poly-line 2
-	hasStress bool // cell data: some component is not 0
+	hasStress bool // some component is not 0, where fields are not on points
 }
 
 // lowerCells holds lower cells and nothing of other cells.
@@ -54,7 +54,11 @@ func (w *worker) keepLower(chunk *mesh.Chunk, i int) {
 		tensor := field.at(chunk, i, node)
 		return tensor.IsFinite() && tensor != mesh.SymmetricTensor{}
 	}
-	cell.hasStress = field.on == mesh.OnCell && isAt(0)
+	if field.exists() && field.on != mesh.OnPoint {
+		for q := range int32(max(1, field.points)) { // the cell, or its integration points
+			cell.hasStress = cell.hasStress || isAt(q)
+		}
+	}
 	for _, node := range w.cell.Nodes[:shape.CornerCount] {
 		l.nodes = append(l.nodes, node)
 		if len(w.model.Pieces) > 1 {
@@ -330,7 +334,7 @@ func (v *faceVisitor) mark(number int, part *lowerPart, faces [][]int32) {
 
 // facesOf appends the points on each face of a solid or edge of a plane cell.
 func facesOf(cell *mesh.Cell, to [][]int32) [][]int32 {
-	if cell.Faces != nil && len(cell.Faces) > 0 {
+	if len(cell.Faces) > 0 {
 		rest := cell.Faces[1:]
 		for len(rest) > 0 {
 			count := rest[0]

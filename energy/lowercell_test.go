@@ -301,6 +301,37 @@ func TestPartsThatCarryStress(t *testing.T) {
 	}
 }
 
+// Of results at integration points any counts, also in a cell array that holds them in a
+// row.
+func TestPartsWithIntegrationPoints(t *testing.T) {
+	line, err := mesh.ShapeOf(mesh.Line, 2, [3]int{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	layout, err := mesh.NewLayout(mesh.OrderOf6, 6, mesh.TensorShear, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	zero, one := make([]float64, 6), []float64{0, 0, 0, 0, 0, 4}
+	values := slices.Concat(one, zero, zero, zero, zero, one) // of three cells at two points each
+	for _, on := range []mesh.Location{mesh.OnField, mesh.OnCell} {
+		chunk := &mesh.Chunk{Count: 3, Nodes: []int32{0, 1, 0, 1, 0, 1}, Start: []int32{0, 2, 4, 6}, Shapes: []*mesh.Shape{line, line, line}, Points: make([]float64, 6)}
+		if chunk.FieldValues = [][]float64{values}; on == mesh.OnCell {
+			chunk.FieldValues, chunk.Values = nil, chunk.FieldValues
+		}
+		w := &worker{part: &part{}, plan: &plan{dimension: 3, model: &mesh.Model{Pieces: make([]mesh.Piece, 1)}, inputs: &inputs{
+			stress: tensorInput{on: on, layout: layout, columns: []int{0}, points: 2},
+		}}}
+		for i := range 3 {
+			chunk.Cell(i, &w.cell)
+			w.keepLower(chunk, i)
+		}
+		if c := w.part.lower.cells; len(c) != 3 || !c[0].hasStress || c[1].hasStress || !c[2].hasStress {
+			t.Errorf("on %v: %+v", on, c)
+		}
+	}
+}
+
 // What is found does not depend on the schedule.
 func TestPartsDoNotDependOnTheSchedule(t *testing.T) {
 	points, cells := row(200)

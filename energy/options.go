@@ -130,6 +130,10 @@ type LimitOptions struct {
 type HotspotOptions struct {
 	Count int    // 0: 20
 	By    string // utilisation | density | energy; "": utilisation where every region has a limit, else density
+
+	Prominence  float64 // share by which density falls around a peak, above 0 and below 1; 0: 0.2
+	SingleCells bool    // list single cells, not the peaks of density
+	Pool        int     // densest cells among which peaks are looked for; 0: 16,384
 }
 
 // BalanceOptions says what is known of the work of the loads; at most one of the two is

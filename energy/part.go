@@ -37,18 +37,20 @@ type exclusion struct {
 type account struct {
 	cells, pastCells, yieldedCells int64
 
-	volume, energy, volumetric Sum
-	pastVolume, pastEnergy     Sum
-	curveEnergy                Sum
-	beyondCurve                int64 // cells strained beyond the last point of their curve
+	bins                               densityBins // volume and energy
+	volumetric, pastVolume, pastEnergy Sum
+	curveEnergy                        Sum
+	beyondCurve                        int64 // cells strained beyond the last point of their curve
 
 	maxDensity, peak, maxUtilisation best
 	maxEquivalent, minEquivalent     float64 // -Inf and Inf before the first cell
+
+	outside float64 // largest density of a cell that the pool does not keep; -Inf: none
 }
 
 // newAccount returns the account of no cell.
 func newAccount() account {
-	return account{maxEquivalent: math.Inf(-1), minEquivalent: math.Inf(1)}
+	return account{maxEquivalent: math.Inf(-1), minEquivalent: math.Inf(1), outside: math.Inf(-1)}
 }
 
 // join adds another account of the same region, or of another one for the total.
@@ -56,8 +58,7 @@ func (a *account) join(other *account) {
 	a.cells += other.cells
 	a.pastCells += other.pastCells
 	a.yieldedCells += other.yieldedCells
-	a.volume.Join(&other.volume)
-	a.energy.Join(&other.energy)
+	a.bins.join(&other.bins)
 	a.volumetric.Join(&other.volumetric)
 	a.curveEnergy.Join(&other.curveEnergy)
 	a.beyondCurve += other.beyondCurve
@@ -68,6 +69,7 @@ func (a *account) join(other *account) {
 	a.maxUtilisation.join(&other.maxUtilisation)
 	a.maxEquivalent = max(a.maxEquivalent, other.maxEquivalent)
 	a.minEquivalent = min(a.minEquivalent, other.minEquivalent)
+	a.outside = max(a.outside, other.outside)
 }
 
 // A part is the account of some of a model's cells. Parts of one model join to the
@@ -83,9 +85,9 @@ type part struct {
 	negative             [2048]int64
 	hasStress, hasStrain bool // some value that is not 0 was seen
 
-	hotspots ranking
-	worst    ranking
-	past     []candidate // every cell past its limit, where asked for
+	pool  *pool // common to all parts of a run
+	worst ranking
+	past  []candidate // every cell past its limit, where asked for
 
 	lower     lowerCells
 	strained  int64   // cells with a principal strain above largeStrain
@@ -96,17 +98,16 @@ type part struct {
 }
 
 // newPart returns a part that has seen no cell.
-func newPart(p *plan) *part {
-	result := &part{accounts: make([]account, len(p.regions.regions))}
+func newPart(p *plan, pool *pool) *part {
+	result := &part{pool: pool, accounts: make([]account, len(p.regions.regions))}
 	for i := range result.accounts {
 		result.accounts[i] = newAccount()
 	}
-	result.hotspots.count = p.hotspotCount
 	result.worst.count = p.listCount
 	return result
 }
 
-// join adds another part of the same model.
+// join adds another part of the same model, but for its pool, which is common to all.
 func (p *part) join(other *part) {
 	for i := range p.accounts {
 		p.accounts[i].join(&other.accounts[i])
@@ -127,7 +128,6 @@ func (p *part) join(other *part) {
 	}
 	p.hasStress = p.hasStress || other.hasStress
 	p.hasStrain = p.hasStrain || other.hasStrain
-	p.hotspots.join(&other.hotspots)
 	p.worst.join(&other.worst)
 	p.past = append(p.past, other.past...)
 	p.lower.join(&other.lower)

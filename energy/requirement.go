@@ -93,20 +93,18 @@ func judge(ledger *Ledger, requirements []Requirement) []RequirementResult {
 	for i := range requirements {
 		r := &requirements[i]
 		value, why := valueOf(ledger, r)
-		hidden := cmp.Or(hiddenByYielding(ledger, r), hiddenBySign(r, value))
-		results = append(results, outcome(r, value, why, hidden))
+		results = append(results, outcome(ledger, r, value, why))
 	}
 	return results
 }
 
-// outcome holds a number against a requirement. why says why there is none, hidden why
-// the number does not count though it keeps the bound.
-func outcome(r *Requirement, value Number, why, hidden string) RequirementResult {
+// outcome holds a number of a ledger against a requirement. why says why there is none.
+func outcome(ledger *Ledger, r *Requirement, value Number, why string) RequirementResult {
 	result := RequirementResult{
 		Name: r.Name, Quantity: r.Quantity, Region: Text(r.Region), AtMost: r.AtMost, AtLeast: r.AtLeast,
 		Value: value, Met: value.Exists() && !(value > r.AtMost) && !(value < r.AtLeast), Why: Text(why),
 	}
-	if result.Met && hidden != "" {
+	if hidden := cmp.Or(hiddenByYielding(ledger, r), hiddenBySign(r, value)); result.Met && hidden != "" {
 		result.Met, result.Why = false, Text(hidden)
 	}
 	return result

@@ -15,34 +15,52 @@ import (
 // Kulisch 2013, Computer Arithmetic and Validity, ch. 8 (long accumulator); the
 // overlapping digits are our own choice, so that no carry has to run.
 type Sum struct {
-	digit [64]struct{ low, high uint64 }
+	digit [64]digit
+}
+
+// A digit is 128 bits in two's complement.
+type digit struct{ low, high uint64 }
+
+// add adds another digit.
+func (d *digit) add(term digit) {
+	var carry uint64
+	d.low, carry = bits.Add64(d.low, term.low, 0)
+	d.high, _ = bits.Add64(d.high, term.high, carry)
+}
+
+// A term is one double: ±mantissa × 2^(exponent-1075).
+type term struct {
+	mantissa uint64
+	exponent int    // from 1
+	sign     uint64 // all bits set: negative
+}
+
+// termOf takes a finite value apart.
+func termOf(value float64) term {
+	bits64 := math.Float64bits(value)
+	exponent, mantissa := int(bits64>>52)&0x7ff, bits64&(1<<52-1)
+	if exponent == 0 {
+		exponent = 1 // subnormal: same unit, no hidden bit
+	} else {
+		mantissa |= 1 << 52
+	}
+	return term{mantissa, exponent, uint64(int64(bits64) >> 63)}
+}
+
+// number returns which digit takes the term.
+func (t term) number() int { return t.exponent >> 5 & 63 }
+
+// digit returns the term in two's complement, in units of its digit.
+func (t term) digit() digit {
+	shift := uint(t.exponent & 31)
+	low, carry := bits.Add64(t.mantissa<<shift^t.sign, t.sign&1, 0)
+	return digit{low, (t.mantissa>>(64-shift) ^ t.sign) + carry}
 }
 
 // Add adds one finite value.
 func (s *Sum) Add(value float64) {
-	bits64 := math.Float64bits(value)
-	exponent := int(bits64>>52) & 0x7ff
-	mantissa := bits64 & (1<<52 - 1)
-	if exponent == 0 {
-		exponent = 1 // subnormal: same unit, no hidden bit
-		if mantissa == 0 {
-			return
-		}
-	} else {
-		mantissa |= 1 << 52
-	}
-	// value = mantissa × 2^(exponent-1075)
-	digit, shift := exponent>>5, uint(exponent&31)
-	low, high := mantissa<<shift, mantissa>>(64-shift)
-	d := &s.digit[digit]
-	// Two's complement of the 128-bit term where the value is negative.
-	negative := uint64(int64(bits64) >> 63)
-	low, high = low^negative, high^negative
-	var carry uint64
-	low, carry = bits.Add64(low, negative&1, 0)
-	high += carry
-	d.low, carry = bits.Add64(d.low, low, 0)
-	d.high, _ = bits.Add64(d.high, high, carry)
+	t := termOf(value)
+	s.digit[t.number()].add(t.digit())
 }
 
 // AddAll adds finite values.
@@ -55,10 +73,7 @@ func (s *Sum) AddAll(values []float64) {
 // Join adds another sum.
 func (s *Sum) Join(other *Sum) {
 	for i := range s.digit {
-		d, o := &s.digit[i], &other.digit[i]
-		var carry uint64
-		d.low, carry = bits.Add64(d.low, o.low, 0)
-		d.high, _ = bits.Add64(d.high, o.high, carry)
+		s.digit[i].add(other.digit[i])
 	}
 }
 

@@ -36,15 +36,15 @@ func Tally(ctx context.Context, model *mesh.Model, options *Options, done *atomi
 	if err := p.lookAtMotion(ctx, walk); err != nil {
 		return nil, err
 	}
+	total := newPart(p, p.newPool())
 	workers := make([]*worker, walk.Workers())
 	err = walk.Each(ctx, &p.inputs.want, done, func(number int) mesh.Visitor {
-		workers[number] = newWorker(p)
+		workers[number] = newWorker(p, total.pool)
 		return workers[number].visit
 	})
 	if err != nil {
 		return nil, err
 	}
-	total := newPart(p)
 	for _, w := range workers {
 		total.join(w.part)
 	}

@@ -705,7 +705,8 @@ func TestPastLimit(t *testing.T) {
 	}
 	m := &memoryMesh{pieces: []memoryPiece{{points: points, cells: cells, arrays: []memoryArray{cellArray("stress", stress...), cellArray("strain", strain...), labels1("element id", 11, 12, 13, 14, 15)}}}}
 	options := solidOptions(mesh.OnCell, steel())
-	options.Limit.List, options.ListAllPastLimit, options.Hotspots.Count = 2, true, 3
+	options.Limit.List, options.ListAllPastLimit = 2, true
+	options.Hotspots.Count, options.Hotspots.SingleCells = 3, true
 	ledger := tally(t, m, options)
 	total := ledger.Total
 	if total.CellsPastLimit != 3 || total.VolumePastLimit != 3 || !within(float64(total.EnergyPastLimit), (2*300*300+500*500)/(2*210000.), 1e-12) {
@@ -730,7 +731,7 @@ func TestPastLimit(t *testing.T) {
 		t.Errorf("worst cell %+v", ledger.PastLimit.Worst[0])
 	}
 	for i, want := range []int64{2, 1, 3} {
-		if got := ledger.Hotspots[i]; got.Cell != want || got.Rank != i+1 || got.PastLimit == nil || !*got.PastLimit || got.Energy.Exists() {
+		if got := ledger.Hotspots[i]; got.Cell != want || got.Rank != i+1 || got.PastLimit == nil || !*got.PastLimit || got.Prominence.Exists() {
 			t.Errorf("hotspot %d: %+v, want cell %d", i+1, got, want)
 		}
 	}
@@ -1009,7 +1010,8 @@ func TestRequirements(t *testing.T) {
 		{Requirement{Quantity: "hotspot.2.density", AtMost: 3, AtLeast: None}, 1, true, ""},
 		{Requirement{Quantity: "hotspot.1.density", Region: "a", AtMost: 3, AtLeast: None}, 1, true, ""},
 		{Requirement{Quantity: "hotspot.9.density", AtMost: 3, AtLeast: None}, None, false, "no hotspot"},
-		{Requirement{Quantity: "hotspot.1.energy", AtMost: 3, AtLeast: None}, None, false, "not available"},
+		{Requirement{Quantity: "hotspot.1.energy", AtMost: 3, AtLeast: None}, 3, true, ""},
+		{Requirement{Quantity: "hotspot.1.utilisation", AtMost: 1, AtLeast: None}, None, false, "not available"},
 	} {
 		c.requirement.Name = c.requirement.Quantity
 		options.Requirements = []Requirement{c.requirement}

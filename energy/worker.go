@@ -29,7 +29,12 @@ type worker struct {
 	isYielded   []bool
 	curve       []float64 // energy under the material's curve; NaN beyond its end
 
-	strained float64 // largest size of a principal strain of the current cell, where above largeStrain
+	strained float64                // largest size of a principal strain of the current cell, where above largeStrain
+	tensor   []mesh.SymmetricTensor // stress where the peak density is
+	ranked   []float64              // the column that hotspots are ranked by
+
+	offered          []int32 // cells of the chunk that the pool may keep
+	byDensity, byKey floor   // the pool's, as they were after the last chunk
 
 	// The places of the current cell: its nodes, or one place for cell data.
 	stress, strain []mesh.SymmetricTensor
@@ -43,10 +48,10 @@ type worker struct {
 	placeValues    []float64 // shape functions at the current integration point; nil elsewhere
 }
 
-func newWorker(p *plan) *worker {
+func newWorker(p *plan, pool *pool) *worker {
 	return &worker{
-		plan: p, part: newPart(p), isPerCell: p.inputs.isPerCell(),
-		smallest: 1e-12 * math.Pow(p.bounds.Diagonal(), float64(p.dimension)),
+		plan: p, part: newPart(p, pool), isPerCell: p.inputs.isPerCell(),
+		smallest: 1e-12 * math.Pow(p.bounds.Diagonal(), float64(p.dimension)), byDensity: pool.byDensity.floor, byKey: pool.byKey.floor,
 	}
 }
 
@@ -69,6 +74,7 @@ func (w *worker) visit(chunk *mesh.Chunk) error {
 		}
 	}
 	w.gather(chunk)
+	w.fillPool(chunk)
 	return nil
 }
 
@@ -78,8 +84,17 @@ func (w *worker) grow(count int) {
 		return
 	}
 	w.region, w.peakNode, w.isYielded = make([]int32, count), make([]int32, count), make([]bool, count)
+	w.tensor = make([]mesh.SymmetricTensor, count)
 	for _, column := range []*[]float64{&w.measure, &w.energy, &w.volumetric, &w.density, &w.peak, &w.equivalent, &w.utilisation, &w.curve} {
 		*column = make([]float64, count)
+	}
+	switch w.by {
+	case "utilisation":
+		w.ranked = w.utilisation
+	case "energy":
+		w.ranked = w.energy
+	default:
+		w.ranked = w.density
 	}
 }
 
@@ -188,7 +203,7 @@ func (w *worker) evaluateCell(chunk *mesh.Chunk, i int, r *region) exclusionReas
 		w.volumetric[i] = VolumetricDensity(&stress, &strain) * w.measure[i]
 	}
 	w.density[i], w.peak[i], w.peakNode[i] = density, density, 0
-	w.isYielded[i] = isYielded
+	w.isYielded[i], w.tensor[i] = isYielded, stress
 	if r.hencky != nil {
 		reached := sum(&strain, w.plasticAt(chunk, i, 0))
 		w.curve[i] = r.hencky.Density(&reached) * w.measure[i]
@@ -225,7 +240,7 @@ func (w *worker) evaluateNodes(chunk *mesh.Chunk, i int, r *region, orientation 
 			return notFinite
 		}
 		if density := Density(stress, strain); density > w.peak[i] {
-			w.peak[i], w.peakNode[i] = density, int32(k)
+			w.peak[i], w.peakNode[i], w.tensor[i] = density, int32(k), *stress
 		}
 		equivalent := r.limit.equivalent(stress)
 		largest, least = max(largest, equivalent), min(least, equivalent)
@@ -480,12 +495,11 @@ func (w *worker) gather(chunk *mesh.Chunk) {
 func (w *worker) gatherRun(chunk *mesh.Chunk, number, low, high int) {
 	a := &w.part.accounts[number]
 	a.cells += int64(high - low)
-	a.volume.AddAll(w.measure[low:high])
-	a.energy.AddAll(w.energy[low:high])
 	a.volumetric.AddAll(w.volumetric[low:high])
 	if w.regions.regions[number].hencky != nil {
 		w.gatherCurve(a, low, high)
 	}
+	a.bins.addAll(w.density[low:high], w.measure[low:high], w.energy[low:high])
 	for i := low; i < high; i++ {
 		p := place{source: chunk.Source, cell: chunk.First + int64(i)}
 		if w.isYielded[i] {
@@ -535,16 +549,35 @@ func (w *worker) rank(chunk *mesh.Chunk, i int, p place, a *account) {
 			}
 		}
 	}
-	key := w.density[i]
-	switch w.by {
-	case "utilisation":
-		key = utilisation
-	case "energy":
-		key = w.energy[i]
+	density, key := w.density[i], w.ranked[i]
+	if w.byDensity.takes(density, p) || w.byKey.takes(key, p) {
+		w.offered = append(w.offered, int32(i))
+	} else {
+		a.outside = max(a.outside, density)
 	}
-	if !math.IsNaN(key) && w.part.hotspots.takes(key, p) {
-		w.part.hotspots.add(w.candidate(chunk, i, p, key))
+}
+
+// fillPool hands the pool the cells of the chunk that it may keep.
+func (w *worker) fillPool(chunk *mesh.Chunk) {
+	if len(w.offered) == 0 {
+		return
 	}
+	pool := w.part.pool
+	pool.lock.Lock()
+	defer pool.lock.Unlock()
+	for _, i := range w.offered {
+		p := place{source: chunk.Source, cell: chunk.First + int64(i)}
+		if !pool.takes(w.density[i], w.ranked[i], p) {
+			pool.leave(w.region[i], w.density[i])
+			continue
+		}
+		chunk.Cell(int(i), &w.cell)
+		to := pool.add(w.density[i], w.ranked[i], &w.cell, chunk.Piece)
+		to.record, to.stress = w.record(chunk, int(i), p, w.ranked[i]), w.tensor[i]
+	}
+	w.offered = w.offered[:0]
+	pool.raise()
+	w.byDensity, w.byKey = pool.byDensity.floor, pool.byKey.floor
 }
 
 // centroidOf returns the centroid of cell i of the chunk.
@@ -572,8 +605,13 @@ func (w *worker) peakPlace(chunk *mesh.Chunk, i int) Vector {
 
 // candidate returns what the lists say of cell i.
 func (w *worker) candidate(chunk *mesh.Chunk, i int, p place, key float64) candidate {
-	c := candidate{
-		key: key, place: p, region: w.region[i], elementID: mesh.NoLabel, at: w.centroidOf(chunk, i),
+	return candidate{w.record(chunk, i, p, key), w.centroidOf(chunk, i)}
+}
+
+// record returns what the lists say of cell i, but for where it is.
+func (w *worker) record(chunk *mesh.Chunk, i int, p place, key float64) record {
+	c := record{
+		key: key, place: p, region: w.region[i], elementID: mesh.NoLabel,
 		measure: w.measure[i], energy: w.energy[i], density: w.density[i], peak: w.peak[i],
 		equivalent: w.equivalent[i], limitShare: w.utilisation[i],
 	}

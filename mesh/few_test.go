@@ -109,6 +109,17 @@ func TestFewReadsFew(t *testing.T) {
 		if c.stride > fewGap && read != int64(c.cells+1) {
 			t.Errorf("stride %d: %d points were read, want %d", c.stride, read, c.cells+1)
 		}
+		err = walk.Few(context.Background(), []Span{{1, 3, 4}}, want, func(int) Visitor {
+			return func(chunk *Chunk) error {
+				if x := float64(6 * c.stride); chunk.First != 33 || chunk.Count != 1 || chunk.Points[0] != x {
+					t.Errorf("stride %d: first cell %d, %d cells, x %g, want %g", c.stride, chunk.First, chunk.Count, chunk.Points[0], x)
+				}
+				return nil
+			}
+		})
+		if err != nil {
+			t.Fatal(err)
+		}
 		want.PointValues = []string{"lost"}
 		if err := walk.Few(context.Background(), []Span{{1, 0, 10}}, want, func(int) Visitor { return func(*Chunk) error { return nil } }); err == nil {
 			t.Error("no error of an array that is lost")

@@ -150,7 +150,7 @@ func (c *Cell) spaceRule() *Tabulation {
 	case c.IsRational():
 		return c.Shape.FineRule()
 	case c.Shape.Dimension == 3, c.Shape.form == lineForm, c.Shape.form == triangleForm:
-		return c.Shape.ProductRule()
+		return c.Shape.moment()
 	}
 	return c.Shape.FineRule()
 }

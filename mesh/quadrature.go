@@ -17,8 +17,7 @@ type Tabulation struct {
 // determinant is dimension × p - d in a simplex of dimension d and functions of degree
 // p, and each field adds p. It is nil where the shape does not interpolate.
 //
-// It does the same for one field times one coordinate; with rational weights nothing is
-// polynomial, and [Shape.FineRule] comes closest.
+// With rational weights nothing is polynomial, and [Shape.FineRule] comes closest.
 func (s *Shape) ProductRule() *Tabulation { return s.product() }
 
 // RingProductRule returns the rule for the product of two fields times the radius.

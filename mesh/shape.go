@@ -29,6 +29,7 @@ type Shape struct {
 	faceCorners func() [][]int
 	product     func() *Tabulation
 	ringProduct func() *Tabulation
+	moment      func() *Tabulation
 	measure     func() *Tabulation
 	fine        func() *Tabulation
 	atCorners   func() *Tabulation
@@ -114,6 +115,7 @@ func newShape(row *cellTypeRow, key shapeKey, isLattice bool) *Shape {
 	s.faceCorners = sync.OnceValue(s.findFaceCorners)
 	s.product = sync.OnceValue(func() *Tabulation { return s.tabulate(s.integrandDegrees(2)) })
 	s.ringProduct = sync.OnceValue(func() *Tabulation { return s.tabulate(s.integrandDegrees(3)) })
+	s.moment = sync.OnceValue(func() *Tabulation { return s.tabulate(s.integrandDegrees(1)) })
 	s.measure = sync.OnceValue(func() *Tabulation { return s.tabulate(s.integrandDegrees(0)) })
 	s.fine = sync.OnceValue(func() *Tabulation { return s.tabulate([3]int{fineDegree, fineDegree, fineDegree}) })
 	s.atCorners = sync.OnceValue(s.tabulateCorners)

@@ -107,7 +107,7 @@ func csvHeading(row reflect.Type) []string {
 		switch {
 		case field.Anonymous:
 			names = append(names, csvHeading(field.Type)...)
-		case field.Type == laterType:
+		case field.Type == laterType, field.Type.Kind() == reflect.Slice:
 		case field.Type == vectorType:
 			for _, axis := range axes {
 				names = append(names, key+axis)
@@ -171,7 +171,10 @@ func csvCells(cells []string, row reflect.Value) ([]string, error) {
 			}
 		default:
 			part := row.Field(i)
-			if part.Kind() == reflect.Pointer && part.IsNil() {
+			switch {
+			case part.Kind() == reflect.Slice:
+				continue
+			case part.Kind() == reflect.Pointer && part.IsNil():
 				cells = append(cells, make([]string, len(csvHeading(part.Type().Elem())))...)
 				continue
 			}

@@ -55,7 +55,10 @@ func bracket() *energy.Ledger {
 	corner.MaxUtilisationAt = at(8.5125, 9.875, 8.4375)
 	corner.CellsPastLimit, corner.VolumePastLimit, corner.EnergyPastLimit, corner.VolumeWithoutLimit = 6, 13.8125, 2.53125, 0
 
+	legs.Concentration = concentration(0.0412345, 0.1523456, 0.2634567, 0.5312345, 0.4612345678, 0.6123456)
+	corner.Concentration = concentration(0.0612345, 0.2223456, 0.3534567, 0.6212345, 0.5412345678, 0.5023456)
 	total := corner
+	total.Concentration = concentration(0.0712345, 0.2523456, 0.4034567, 0.6812345, 0.6012345678, 0.4123456)
 	total.Cells, total.Volume, total.Mass = 3757, 17943.437251509775, 0.04844728057907639
 	total.Energy, total.EnergyShare = 201.16420518, 1
 	total.EnergyVolumetric, total.EnergyDistortional, total.MeanDensity = 24.19915534, 176.96504984, 0.01121101842
@@ -76,6 +79,11 @@ func bracket() *energy.Ledger {
 	for i, cell := range worst {
 		hotspots = append(hotspots, hotspot(i+1, cell, is(true)))
 	}
+	first := &hotspots[0]
+	first.Energy, first.EnergyShare, first.RegionShare, first.Volume, first.Cells = 1.8234567, 0.009064519, 0.017837365, 9.8765432, 5
+	first.Prominence, first.MeanDensity, first.EnergyAt = 1, 0.18462498, at(8.5, 9.5, 8.45)
+	first.Principal1, first.Principal2, first.Principal3 = 170.25, 12.5, -3.125
+	first.Principal1Direction, first.Principal2Direction, first.Principal3Direction = at(0.6, 0, 0.8), at(0, 1, 0), at(0.8, 0, -0.6)
 	hotspots = append(hotspots, hotspot(7, energy.RankedCell{
 		Cell: 118, ElementID: energy.None, Region: "legs", At: at(3.25, 10.125, 47.5),
 		Density: 0.08123456789, EquivalentStress: 104.1912345, Utilisation: 0.69460823,
@@ -159,6 +167,16 @@ func hotspot(rank int, cell energy.RankedCell, isPast *bool) energy.Hotspot {
 		Density: cell.Density, PeakDensity: cell.Density, Energy: none, EnergyShare: none, Volume: none, Cells: none,
 		Prominence: none, EquivalentStress: cell.EquivalentStress, Utilisation: cell.Utilisation, PastLimit: isPast,
 		StressMargin: factor - 1, LoadFactor: factor,
+		RegionShare: none, MeanDensity: none, Principal1: none, Principal2: none, Principal3: none,
+	}
+}
+
+// concentration returns measures that lie between those of even and of concentrated
+// energy.
+func concentration(top1, top5, top10, top25, gini, effective energy.Number) *energy.Concentration {
+	return &energy.Concentration{
+		Top1: top1, Top5: top5, Top10: top10, Top25: top25, Gini: gini, EffectiveVolume: effective, BinWidth: 0.021897148654116678,
+		Curve: [][2]float64{{0, 0}, {0.01, float64(top1)}, {0.1, float64(top10)}, {1, 1}},
 	}
 }
 
@@ -268,7 +286,7 @@ func zero() *energy.Ledger {
 	ledger.Balance = &energy.Balance{Gap: energy.None, Reasons: []string{"the external work is 0"}, Source: "stated by the study", Parts: []energy.Elsewhere{}}
 	for _, account := range []*energy.Account{&ledger.Regions[0].Account, &ledger.Regions[1].Account, &ledger.Total} {
 		account.Energy, account.EnergyShare, account.EnergyVolumetric, account.EnergyDistortional = 0, energy.None, 0, 0
-		account.MeanDensity, account.MaxDensity, account.PeakDensity = 0, 0, 0
+		account.MeanDensity, account.MaxDensity, account.PeakDensity, account.Concentration = 0, 0, 0, nil
 		account.MaxEquivalentStress, account.MaxUtilisation = 0, 0
 	}
 	ledger.Regions[0].Volume, ledger.Regions[1].Volume, ledger.Total.Volume = 1.25e13, 3e-7, 1.25e13

@@ -22,7 +22,9 @@ func worstSection(ledger *energy.Ledger) section {
 		ranks[i] = i + 1
 	}
 	heading := fmt.Sprintf("Furthest past the limit: %d of %s", len(worst), grouped(cellsPastLimit(ledger)))
-	return newSection(heading, rankedTable(ledger, ranks, worst))
+	t := rankedTable(ledger, ranks, worst)
+	t.dropIdle()
+	return newSection(heading, t)
 }
 
 // hotspotsSection names the first hotspots.
@@ -42,11 +44,15 @@ func hotspotsSection(ledger *energy.Ledger) section {
 		})
 	}
 	t := rankedTable(ledger, ranks, cells)
-	t.columns = append(t.columns, column{kind: word, heading: quantityOf("past_limit").name})
+	t.columns = append(t.columns,
+		numbers("energy_share", &ledger.Units),
+		column{kind: word, heading: quantityOf("past_limit").name},
+	)
 	for i, hotspot := range hotspots {
 		text, tone := pastLimitWord(hotspot.PastLimit)
-		t.rows[i] = append(t.rows[i], phrase{text, tone})
+		t.rows[i] = append(t.rows[i], phrase{text: inShares.text(hotspot.EnergyShare)}, phrase{text, tone})
 	}
+	t.dropIdle()
 	return newSection(fmt.Sprintf("Hotspots: first %d of %d", len(hotspots), len(ledger.Hotspots)), t)
 }
 
@@ -114,6 +120,5 @@ func rankedTable(ledger *energy.Ledger, ranks []int, cells []energy.RankedCell) 
 		)
 		t.mark(9, utilisationTone(cell.Utilisation))
 	}
-	t.dropIdle()
 	return t
 }

