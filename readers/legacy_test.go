@@ -281,7 +281,7 @@ func TestLegacyErrors(t *testing.T) {
 }
 
 func TestLegacyEmptyCells(t *testing.T) {
-	text := strings.NewReplacer("CELLS 1 5\n", "CELLS 3 7\n0 ", "0 1 2 3\n", "0 1 2 3 0\n", "CELL_TYPES 1\n10", "CELL_TYPES 3\n0 10 0").Replace(legacyTetrahedron)
+	text := strings.NewReplacer("CELLS 1 5\n", "CELLS 3 7\n0 ", "\nCELL_TYPES 1\n10", " 0\nCELL_TYPES 3\n0 10 0").Replace(legacyTetrahedron)
 	_, got := read(t, text)
 	if !slices.EqualFunc(got.nodes, [][]int32{{}, {0, 1, 2, 3}, {}}, slices.Equal) || got.types["0"] != 2 {
 		t.Errorf("nodes %v of %v", got.nodes, got.types)
