@@ -29,7 +29,7 @@ type account struct {
 // tallyAll tallies one account after the other. An account that fails does not keep
 // the others from being done.
 func (p *program) tallyAll(ctx context.Context, accounts []*account, options *tallyOptions) error {
-	opened := &results{in: p.in}
+	opened := &results{in: p.in, allowOutside: options.allowOutside}
 	defer opened.close()
 	var ledgers []*energy.Ledger
 	for i, a := range accounts {

@@ -113,7 +113,7 @@ func (p *program) compare(ctx context.Context, args []string, options *compareOp
 
 // comparedRuns reads the ledgers, and tallies the studies; nil where one cannot be read.
 func (p *program) comparedRuns(ctx context.Context, paths []string, options *compareOptions) ([]energy.ComparedRun, error) {
-	opened := &results{in: p.in}
+	opened := &results{in: p.in, allowOutside: options.allowOutside}
 	defer opened.close()
 	var runs []energy.ComparedRun
 	isWhole := true

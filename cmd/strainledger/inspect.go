@@ -50,7 +50,7 @@ func (p *program) inspect(ctx context.Context, args []string, options *commonOpt
 	if err != nil {
 		return err
 	}
-	opened := &results{in: p.in}
+	opened := &results{in: p.in, allowOutside: options.allowOutside}
 	defer opened.close()
 	inspection := &energy.Inspection{Schema: energy.InspectionSchema}
 	for _, file := range named.Files {

@@ -21,6 +21,8 @@ type commonOptions struct {
 	colour     string // always | never | auto
 	workers    int    // 0: all processors
 	noProgress bool
+
+	allowOutside bool // follow references that leave the folder of the file that makes them
 }
 
 func (o *commonOptions) declare(flags *pflag.FlagSet) {
@@ -30,6 +32,7 @@ func (o *commonOptions) declare(flags *pflag.FlagSet) {
 	flags.StringVar(&o.colour, "color", "auto", "colour in the text: `WHEN` is always, never or auto (a terminal)")
 	flags.IntVar(&o.workers, "workers", 0, "use `N` processors; without it, all")
 	flags.BoolVar(&o.noProgress, "no-progress", false, "show no progress on the terminal")
+	flags.BoolVar(&o.allowOutside, "allow-outside", false, "follow references of a file to files outside its folder")
 }
 
 // colourChoices are what --color may be.

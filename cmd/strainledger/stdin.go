@@ -16,8 +16,10 @@ import (
 // A results opens result files. What comes through the standard input is kept in a
 // temporary file, since reading needs any part of it at any time.
 type results struct {
-	in   io.Reader
-	kept string // the temporary file, "" until it is needed
+	in           io.Reader
+	allowOutside bool
+	kept         string        // the temporary file, "" until it is needed
+	models       []*mesh.Model // to be closed
 }
 
 // open reads the headers of the files, which are blocks of one model.
@@ -32,13 +34,15 @@ func (r *results) open(ctx context.Context, files []string, options readers.Opti
 		}
 		paths[i] = r.kept
 	}
+	options.AllowOutside = r.allowOutside
 	model, err := readers.Open(ctx, paths, options)
 	if place := new(readers.Error); errors.As(err, &place) && place.Path == r.kept {
 		place.Path = study.Stdin
 	}
-	if err != nil || r.kept == "" {
-		return model, err
+	if err != nil {
+		return nil, err
 	}
+	r.models = append(r.models, model)
 	for i := range model.Sources {
 		if model.Sources[i].Path == r.kept {
 			model.Sources[i].Path = study.Stdin
@@ -87,8 +91,13 @@ func (r *results) disk(path string) string {
 	return path
 }
 
-// close removes the temporary file.
+// close lets go of the models' temporary files and of the kept input.
 func (r *results) close() {
+	for _, model := range r.models {
+		if model.Close != nil {
+			model.Close() // what is left is the system's to clean
+		}
+	}
 	if r.kept != "" {
 		os.Remove(r.kept)
 	}
