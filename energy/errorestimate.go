@@ -150,7 +150,6 @@ type comparer struct {
 	errors []regionError
 	misfit Sum
 	nodal  []mesh.SymmetricTensor // σ* at the nodes of the cell
-	inFile []mesh.SymmetricTensor // the file's stress there
 }
 
 func newComparer(p *plan, pool *pool, smooth *recovery, wanted map[place]float64) *comparer {

@@ -513,6 +513,46 @@ func TestNoErrorOfBendingInQuadraticCells(t *testing.T) {
 	}
 }
 
+// The cells' own values are the mean of σ_h, whatever else the displacement holds: a strain
+// that is uniform over each cell does not count, nor does anything in linear triangles.
+func TestMeanOfTheCellComesFromTheFile(t *testing.T) {
+	c := newCookMembrane(t, 8, gauss2)
+	for _, isSplit := range []bool{false, true} {
+		estimate := func(change func(u []float64), off bool) Number {
+			m := c.piece(c.centroidStress())
+			arrays := m.pieces[0].arrays
+			if isSplit { // two triangles with the value of their quadrilateral
+				m.pieces[0].cells = nil
+				stress := memoryArray{name: "stress", on: mesh.OnCell, components: 3}
+				for i, q := range c.quads {
+					m.pieces[0].cells = append(m.pieces[0].cells, memoryCell{mesh.Triangle, []int32{q[0], q[1], q[2]}}, memoryCell{mesh.Triangle, []int32{q[0], q[2], q[3]}})
+					value := arrays[0].values[3*i : 3*i+3]
+					stress.values = append(append(stress.values, value...), value...)
+				}
+				arrays[0] = stress
+			}
+			arrays[1].values = append([]float64(nil), arrays[1].values...)
+			change(arrays[1].values)
+			options := cookOptions(FromStress)
+			options.Fields.Displacement.Off = off
+			return tally(t, m, options).Total.EnergyError
+		}
+		plain := estimate(func([]float64) {}, false)
+		stretched := estimate(func(u []float64) {
+			for i, p := range c.points {
+				u[2*i], u[2*i+1] = u[2*i]+0.02*p[0], u[2*i+1]-0.03*p[0]-0.01*p[1]
+			}
+		}, false)
+		if !within(float64(stretched), float64(plain), 1e-9) {
+			t.Errorf("split %v: energy error %.12g with a uniform strain more, %.12g without", isSplit, stretched, plain)
+		}
+		alone := estimate(func([]float64) {}, true)
+		if isSame := within(float64(alone), float64(plain), 1e-9); isSame != isSplit {
+			t.Errorf("split %v: energy error %.12g without the displacement, %.12g with it", isSplit, alone, plain)
+		}
+	}
+}
+
 // Legendre's polynomials against their closed forms.
 func TestLegendre(t *testing.T) {
 	for _, x := range []float64{-1, -0.3, 0, 0.7, 1} {

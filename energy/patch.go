@@ -8,9 +8,9 @@ import (
 )
 
 const (
-	// mostPatchCells is the number of cells up to which patches are fitted: about 170 bytes
-	// are held for each hexahedron.
-	mostPatchCells = 4_000_000
+	// mostPatchCells is the number of cells up to which patches are fitted: about 450 bytes
+	// are held for each hexahedron (measured).
+	mostPatchCells = 1_000_000
 	// thinnest is how far the centroids of a patch must be from one line or plane: the
 	// variance across it, in units of the patch's radius squared. Those about an inner
 	// node of a regular mesh have 1/3 to 1/2 (common practice, no source).

@@ -275,3 +275,19 @@ func TestShapeFunctionsFollowVTK(t *testing.T) {
 		}
 	}
 }
+
+func TestDegree(t *testing.T) {
+	for _, c := range []struct {
+		cellType CellType
+		nodes    int
+		want     int
+	}{{Tetrahedron, 4, 1}, {Wedge, 6, 1}, {QuadraticHexahedron, 20, 2}, {BiquadraticWedge, 18, 2}, {QuadraticLinearQuad, 6, 2}, {LagrangeQuad, 16, 3}, {Polygon, 5, 0}} {
+		shape, err := ShapeOf(c.cellType, c.nodes, [3]int{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := shape.Degree(); got != c.want {
+			t.Errorf("%v: degree %d, want %d", c.cellType, got, c.want)
+		}
+	}
+}
