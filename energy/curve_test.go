@@ -321,6 +321,74 @@ func TestUpperYield(t *testing.T) {
 	}
 }
 
+// A fall of stress after the 0.2 % plastic strain, before hardening goes on, is no yield
+// point; one just before is.
+func TestYieldPointComesBeforeTheOffsetYield(t *testing.T) {
+	for plastic, isYield := range map[float64]bool{0.0019: true, 0.0021: false, 0.05: false} {
+		peak := CurvePoint{0.003 + plastic, 300}
+		points := []CurvePoint{{0, 0}, {0.001, 100}, {0.002, 200}, {0.0025, 250}, peak}
+		for _, after := range []CurvePoint{{0.001, 290}, {0.002, 295}, {0.01, 310}, {0.02, 305}} {
+			points = append(points, CurvePoint{peak.Strain + after.Strain, after.Stress})
+		}
+		a := analyse(t, recordOf(points), CurveOptions{})
+		if got := a.YieldPoint != nil; got != isYield {
+			t.Errorf("plastic strain %g: yield point %+v", plastic, a.YieldPoint)
+		}
+		if isYield && (*a.YieldPoint.Upper != peak || a.YieldPoint.Lower.Stress != 290 || !within(a.YieldPoint.PlateauEnd, peak.Strain+0.002+0.008*5/15, 1e-12)) {
+			t.Errorf("yield point %+v", a.YieldPoint)
+		}
+		if a.Ultimate.Stress != 310 {
+			t.Errorf("ultimate %v", a.Ultimate)
+		}
+	}
+	// A fall that is made good within 0.05 % strain is noise; one below 0.5 % is no upper
+	// yield point, though a plateau.
+	for _, c := range []struct {
+		low, back float64
+		isYield   bool
+		isUpper   bool
+	}{{290, 0.0004, false, false}, {290, 0.0006, true, true}, {299, 0.0006, true, false}, {298.4, 0.0006, true, true}} {
+		points := []CurvePoint{{0, 0}, {0.001, 100}, {0.002, 200}, {0.003, 300}, {0.003 + c.back/2, c.low}, {0.003 + c.back, 300}, {0.01, 320}}
+		yield := analyse(t, recordOf(points), CurveOptions{}).YieldPoint
+		if (yield != nil) != c.isYield || yield != nil && (yield.Upper != nil) != c.isUpper {
+			t.Errorf("%+v: yield point %+v", c, yield)
+		}
+	}
+}
+
+// The search for a line from within a window that reaches beyond it, and the edges of
+// what counts as met.
+func TestMeetingALine(t *testing.T) {
+	points := readCurve(t, "m05-aluminium.csv", CurveReading{}).Points
+	line := elasticLine{modulus: 70000, first: 5, last: 10}
+	if p, ok := line.meet(points, 70000, 0.002); !ok || !within(p.Stress, 301.538462, 1e-8) {
+		t.Errorf("from a window beyond the line: %v, %v", p, ok)
+	}
+	line.first = 8
+	if p, ok := line.meet(points, 70000, 0.002); ok {
+		t.Errorf("from a window with no point before the line: %v", p)
+	}
+	// Numbers without rounding: a last point on the line is a meeting.
+	bend := []CurvePoint{{0, 0}, {1, 1024}, {1.25, 1024}, {2.25, 1536}}
+	line = elasticLine{modulus: 1024, first: 0, last: 1}
+	if p, ok := line.meet(bend[:3], 1024, 0.25); !ok || p != bend[2] {
+		t.Errorf("at the last point: %v, %v", p, ok)
+	}
+	if p, ok := line.meet(bend, 1024, 0.25); !ok || p != bend[2] {
+		t.Errorf("at a point: %v, %v", p, ok)
+	}
+	// A tangent has to be below the least one.
+	rising := []CurvePoint{{0, 0}, {1, 1024}, {2, 1536}, {3, 1600}}
+	for least, want := range map[float64]CurvePoint{512: rising[2], 513: rising[1], 1024: rising[1]} {
+		if p, ok := line.tangent(rising, least); !ok || p != want {
+			t.Errorf("tangent below %g: %v, %v, want %v", least, p, ok, want)
+		}
+	}
+	if p, ok := line.tangent(rising, 64); ok {
+		t.Errorf("tangent below 64: %v", p)
+	}
+}
+
 // M-10 (derived) and M-10b (NACA form, from memory): the exponent from two points.
 func TestExponentFromTwoPoints(t *testing.T) {
 	expect(t, 1e-7, []expectation{

@@ -23,9 +23,6 @@ type YieldPoint struct {
 func (l *elasticLine) yieldPoint(points []CurvePoint) *YieldPoint {
 	for i := l.last; i+1 < len(points); i++ {
 		begin := points[i]
-		if points[i+1].Stress > begin.Stress {
-			continue
-		}
 		if begin.Strain-l.origin-begin.Stress/l.modulus > offsetStrain {
 			return nil
 		}
