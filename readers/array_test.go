@@ -158,3 +158,84 @@ func isSameValue(got string, want any) bool {
 	return err == nil && isNumber &&
 		(value == number || math.IsNaN(value) && math.IsNaN(number) || math.Abs(value-number) <= 1e-12*math.Abs(number))
 }
+
+// Bits that no float64 or int64 of the program could carry: payloads and signs of NaN,
+// the sign of zero, denormals, integers beyond 2⁵³ and 2⁶³; in either byte order.
+func TestReadArrayKeepsEveryBit(t *testing.T) {
+	words := []uint64{0x7ff0000000000001, 0xfff8dead0000beef, 0x8000000000000000, 1, 0x7ff8000000000000, 0xffffffffffffffff, 1<<53 + 1}
+	for _, number := range []string{"Float64", "Int64", "UInt64", "Float32", "UInt16"} {
+		for _, order := range []binary.AppendByteOrder{binary.LittleEndian, binary.BigEndian} {
+			size := numberNamed(number).size()
+			count := 8 * int64(len(words)) / size
+			var little, stored []byte
+			for _, word := range words {
+				little = binary.LittleEndian.AppendUint64(little, word)
+			}
+			for at := int64(0); at < int64(len(little)); at += size {
+				one := bytes.Clone(little[at : at+size])
+				if order.String() == "BigEndian" {
+					slices.Reverse(one)
+				}
+				stored = append(stored, one...)
+			}
+			text := `<VTKFile type="UnstructuredGrid" version="1.0" byte_order="` + order.String() + `" header_type="UInt64"><UnstructuredGrid>
+<Piece NumberOfPoints="` + formatCount(count) + `" NumberOfCells="0"><PointData><DataArray type="` + number + `" Name="v" format="appended" offset="0"/></PointData>
+<Points><DataArray type="Int8" NumberOfComponents="3" format="ascii">` + strings.Repeat("0 0 0 ", int(count)) + `</DataArray></Points></Piece></UnstructuredGrid>
+<AppendedData encoding="raw">_` + string(order.AppendUint64(nil, uint64(len(stored)))) + string(stored)
+			model, err := openBytes([]byte(text), Options{})
+			if err != nil {
+				t.Fatal(err)
+			}
+			cursor := model.Open()
+			if got := readWhole(t, cursor, model.Pieces[0].Find(mesh.OnPoint, "v"), 16); !bytes.Equal(got, little) {
+				t.Errorf("%s, %s: % x, want % x", number, order, got, little)
+			}
+			cursor.Close()
+		}
+	}
+}
+
+// What an array lacks is an error with its name, and asking for what it has not a fault
+// of the caller.
+func TestReadArrayFaults(t *testing.T) {
+	file := func(array string) string {
+		return `<VTKFile type="UnstructuredGrid"><UnstructuredGrid><Piece NumberOfPoints="9" NumberOfCells="0"><PointData>` + array + `</PointData>
+<Points><DataArray type="Int8" NumberOfComponents="3" format="ascii">` + strings.Repeat("0 ", 27) + `</DataArray></Points></Piece></UnstructuredGrid></VTKFile>`
+	}
+	for _, c := range []struct{ array, want string }{
+		{`<DataArray type="Bit" Name="few" format="ascii">1 0 1</DataArray>`, `array "few": 9 points with 1 component need 9 bits, found room for 3`},
+		{`<DataArray type="Bit" Name="few" format="binary">AQAAAP8=</DataArray>`, `array "few": 9 points with 1 component need 9 bits, found room for 8`},
+		{`<DataArray type="Bit" Name="none"/>`, `array "none": 9 points with 1 component need 9 bits, found room for 0`},
+		{`<Array type="String" Name="cut" format="binary">/wAAAGFi</Array>`, `array "cut": 255 bytes`},
+	} {
+		_, err := openBytes([]byte(file(c.array)), Options{})
+		if err == nil || !strings.Contains(err.Error(), c.want) {
+			t.Errorf("%s: error %v, want %s", c.array, err, c.want)
+		}
+	}
+	model, err := openBytes([]byte(file(`<DataArray type="Bit" Name="few" format="ascii">1 1 0 1 x 1 1 1 1</DataArray>`)), Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	cursor := model.Open()
+	defer cursor.Close()
+	array := &model.Pieces[0].Arrays[0]
+	if err := cursor.ReadArray(context.Background(), array, 0, make([]byte, 2)); err == nil || !strings.Contains(err.Error(), `array "few"`) {
+		t.Errorf("error %v, want one that names the array", err)
+	}
+	cancelled, cancel := context.WithCancel(context.Background())
+	cancel()
+	if err := cursor.ReadArray(cancelled, array, 0, make([]byte, 1)); err != context.Canceled {
+		t.Errorf("error %v", err)
+	}
+	for _, at := range []int64{-8, 4, 8} {
+		func() {
+			defer func() {
+				if recover() == nil {
+					t.Errorf("byte %d was read", at)
+				}
+			}()
+			cursor.ReadArray(context.Background(), array, at, make([]byte, 2))
+		}()
+	}
+}

@@ -161,16 +161,20 @@ func (a *addedCells) piece(number int) vtuPiece {
 }
 
 // inputArrays returns the point and cell arrays of a piece. One without points or cells
-// gets those that the other pieces of its block have, without values.
+// gets those that all other pieces of its block have, without values.
 func (a *addedCells) inputArrays(piece *mesh.Piece) []mesh.Array {
 	var arrays []mesh.Array
 	for _, on := range []mesh.Location{mesh.OnPoint, mesh.OnCell} {
-		model := fullPiece(a.model, piece, on)
-		for _, array := range slices.Concat(model.Arrays, model.OwnArrays) {
+		full := fullPiece(a.model, piece, on)
+		list := full.Arrays
+		if full == piece {
+			list = slices.Concat(list, piece.OwnArrays)
+		}
+		for _, array := range list {
 			if array.On != on {
 				continue
 			}
-			if model != piece {
+			if full != piece {
 				array.Tuples, array.Bytes = 0, 0
 			}
 			arrays = append(arrays, array)

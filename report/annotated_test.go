@@ -63,8 +63,22 @@ func annotate(t testing.TB, model *mesh.Model, folder string, workers int) strin
 		t.Fatal(err)
 	}
 	defer a.Close()
+	fillColumns(t, a)
+	files := &drafts{}
+	defer files.discard()
+	if err := a.write(context.Background(), &energy.Ledger{Hotspots: lastCells(model)}, files); err != nil {
+		t.Fatal(err)
+	}
+	if err := files.commit(); err != nil {
+		t.Fatal(err)
+	}
+	return a.target()
+}
+
+func fillColumns(t testing.TB, a *Annotation) {
+	t.Helper()
 	to := a.Columns()
-	for place := range model.CellCount() {
+	for place := range a.model.CellCount() {
 		for i, column := range []interface {
 			WriteAt([]byte, int64) (int, error)
 		}{to.Density, to.Energy, to.EquivalentStress, to.Utilisation} {
@@ -78,15 +92,6 @@ func annotate(t testing.TB, model *mesh.Model, folder string, workers int) strin
 			t.Fatal(err)
 		}
 	}
-	files := &drafts{}
-	defer files.discard()
-	if err := a.write(context.Background(), &energy.Ledger{Hotspots: lastCells(model)}, files); err != nil {
-		t.Fatal(err)
-	}
-	if err := files.commit(); err != nil {
-		t.Fatal(err)
-	}
-	return a.target()
 }
 
 func madeUp(place int64, column int) float64 {
