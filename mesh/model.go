@@ -43,6 +43,7 @@ type Array struct {
 	ComponentNames []string // nil when the file names none
 	Coding         string   // how the file keeps it: ascii, base64, raw, zlib, LZ4 or LZMA; "" unknown
 	Attributes     []string // what the file marks it as: Scalars, Tensors, GlobalIds, HigherOrderDegrees ...
+	Information    string   // what else the file says of it: its elements InformationKey as text
 	Bytes          int64    // length of its values as [Cursor.ReadArray] gives them
 	ID             int      // the reader's number of the array, for [Cursor.ReadArray]
 }

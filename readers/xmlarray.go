@@ -178,6 +178,7 @@ func (x *xmlFile) fill(a *column, e *element) error {
 		a.Components = max(1, int(components))
 	}
 	a.ComponentNames = componentNames(e, a.Components)
+	a.Information = x.information(e)
 	if a.number == bitNumber || a.number == stringNumber {
 		return x.placeContent(a, e)
 	}

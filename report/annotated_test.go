@@ -309,7 +309,7 @@ func (p *pieces) compareArray(given mesh.Array) bool {
 		return false
 	}
 	if given.Tuples == 0 { // what it has of the other pieces is their description
-		given.ComponentNames, given.Attributes = written.ComponentNames, written.Attributes
+		given.ComponentNames, given.Attributes, given.Information = written.ComponentNames, written.Attributes, written.Information
 	}
 	compareDescription(t, *written, given)
 	one, other := whole(t, p.one, &given), whole(t, p.other, written)
@@ -328,7 +328,7 @@ func (p *pieces) compareArray(given mesh.Array) bool {
 func compareDescription(t *testing.T, written, given mesh.Array) {
 	t.Helper()
 	if written.Type != given.Type || written.Components != given.Components || written.Tuples != given.Tuples ||
-		!slices.Equal(written.ComponentNames, given.ComponentNames) || !slices.Equal(written.Attributes, given.Attributes) {
+		!slices.Equal(written.ComponentNames, given.ComponentNames) || !slices.Equal(written.Attributes, given.Attributes) || written.Information != given.Information {
 		t.Errorf("array %+v, want %+v", written, given)
 	}
 }

@@ -10,6 +10,7 @@ import (
 	"math/rand/v2"
 	"os"
 	"path/filepath"
+	"reflect"
 	"slices"
 	"strings"
 	"syscall"
@@ -162,6 +163,38 @@ func TestCellsHiddenByGrids(t *testing.T) {
 		}
 		cursor.Close()
 	}
+}
+
+// What arrays say of integration points is kept, and so is what they are.
+func TestInformationIsKept(t *testing.T) {
+	given := open(t, "../testdata/integration/dictionary-vtk.vtu")
+	written := open(t, annotate(t, given, t.TempDir(), 2))
+	compareModels(t, given, written)
+	if len(given.Schemes) == 0 || !reflect.DeepEqual(written.Schemes, given.Schemes) {
+		t.Errorf("schemes %+v, want %+v", written.Schemes, given.Schemes)
+	}
+	if !reflect.DeepEqual(fieldNames(written), fieldNames(given)) {
+		t.Errorf("fields %q, want %q", fieldNames(written), fieldNames(given))
+	}
+	information := `<InformationKey name="UNITS_LABEL" location="vtkDataArray">N &lt; mm²</InformationKey>`
+	path := writeText(t, t.TempDir(), "in.vtu", triangles(`<DataArray type="Int32" Name="f" format="ascii">1 2`+information+`</DataArray>`,
+		"", `<DataArray type="Int32" Name="c" format="ascii">1 2`+information+`<InformationKey name="a&amp;b" location="&#34;"><Value index="0">3</Value></InformationKey></DataArray>`))
+	given = open(t, path)
+	written = open(t, annotate(t, given, t.TempDir(), 2))
+	if got := written.Sources[0].Fields[0].Information; got != information+"\n" {
+		t.Errorf("field: %s", got)
+	}
+	want := information + "\n" + `<InformationKey name="a&amp;b" location="&#34;"><Value index="0">3</Value>` + "\n</InformationKey>\n"
+	if got := written.Pieces[0].Arrays[0].Information; got != want {
+		t.Errorf("cell array: %s, want %s", got, want)
+	}
+}
+
+func fieldNames(model *mesh.Model) (names []string) {
+	for _, field := range model.Fields {
+		names = append(names, field.Name)
+	}
+	return names
 }
 
 // Several wholes of several parts make a tree; several files of one block are pieces.

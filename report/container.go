@@ -169,6 +169,6 @@ func writeInline(ctx context.Context, to io.Writer, a *vtuArray, cursor mesh.Cur
 	if err := encoder.Close(); err != nil {
 		return err
 	}
-	_, err := fmt.Fprintf(to, "\n</%s>\n", name)
+	_, err := fmt.Fprintf(to, "\n%s</%s>\n", a.Information, name)
 	return err
 }

@@ -123,7 +123,12 @@ func (a *vtuArray) element(to *strings.Builder, isField bool, offset int64) {
 	if isField {
 		tuples = fmt.Sprintf(" NumberOfTuples=\"%d\"", a.Tuples)
 	}
-	fmt.Fprintf(to, "<%s%s%s format=\"appended\" offset=\"%d\"/>\n", name, describe(&a.Array), tuples, offset)
+	fmt.Fprintf(to, "<%s%s%s format=\"appended\" offset=\"%d\"", name, describe(&a.Array), tuples, offset)
+	if a.Information == "" {
+		to.WriteString("/>\n")
+		return
+	}
+	fmt.Fprintf(to, ">\n%s</%s>\n", a.Information, name)
 }
 
 // vtkFile returns the beginning of a file with its root element.
