@@ -51,6 +51,8 @@ type worker struct {
 	rule           *mesh.Tabulation // of integration points, for
 	ruleShape      *mesh.Shape
 	placeValues    []float64 // shape functions at the current integration point; nil elsewhere
+
+	bytes []byte // of one column
 }
 
 func newWorker(p *plan, pool *pool) *worker {
@@ -82,6 +84,9 @@ func (w *worker) visit(chunk *mesh.Chunk) error {
 	}
 	w.gather(chunk)
 	w.fillPool(chunk)
+	if w.options.Columns != nil {
+		return w.writeColumns(chunk)
+	}
 	return nil
 }
 

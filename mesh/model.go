@@ -42,6 +42,10 @@ type Array struct {
 	Tuples         int64
 	ComponentNames []string // nil when the file names none
 	Coding         string   // how the file keeps it: ascii, base64, raw, zlib, LZ4 or LZMA; "" unknown
+	Attributes     []string // what the file marks it as: Scalars, Tensors, GlobalIds, HigherOrderDegrees ...
+	Information    string   // what else the file says of it: its elements InformationKey as text
+	Bytes          int64    // length of its values as [Cursor.ReadArray] gives them
+	ID             int      // the reader's number of the array, for [Cursor.ReadArray]
 }
 
 // IsInteger reports whether the array holds whole numbers by its type.
@@ -61,6 +65,7 @@ type Source struct {
 	Points int64   // those on the border of two structured pieces counted once
 	Cells  int64   // ghosts included
 	Time   float64 // NaN when the file gives none
+	Fields []Array // arrays of the file's data set as a whole
 }
 
 // A Piece is a run of cells that share one set of points.
@@ -70,7 +75,9 @@ type Piece struct {
 	FirstCell  int64 // number of its first cell in the source
 	CellCount  int64
 	PointCount int64
+	Points     *Array  // how the coordinates are stored; nil where a grid tells them
 	Arrays     []Array // point and cell arrays in file order
+	OwnArrays  []Array // those that only the reader itself uses, for other pieces of the set lack them
 	RunCells   int     // cells that are best read in one go; 0: no preference
 
 	Grid *Grid // of a structured piece, else nil
@@ -160,6 +167,10 @@ type Cursor interface {
 	// slices belong to the cursor and are valid until its next call of Cells. Node numbers have
 	// been checked against the piece's point count, cell sizes against the shape.
 	Cells(ctx context.Context, span Span, want *Want, to *Chunk) error
+	// ReadArray fills to with the bytes of an array from byte at on, which is a
+	// multiple of 8: numbers of the array's type, low byte first, tuple after tuple;
+	// bits eight to a byte, the first one highest; strings with a zero behind each.
+	ReadArray(ctx context.Context, array *Array, at int64, to []byte) error
 	Close() error
 }
 

@@ -11,21 +11,23 @@ import (
 // title it is a stream of words; in binary files the values between them are
 // big-endian and begin behind the end of the line.
 type legacyFile struct {
-	file      *file
-	window    *window
-	cursor    *cursor
-	limits    Limits
-	isBinary  bool
-	version   int // 100 × major + minor
-	kind      string
-	piece     *piece
-	sections  map[string]*section // by keyword
-	types     *column
-	grid      legacyGrid
-	fields    []*column
-	texts     map[*column][]string // strings of field arrays
-	textBytes int64
-	ends      bool // no more words
+	file          *file
+	window        *window
+	cursor        *cursor
+	limits        Limits
+	isBinary      bool
+	version       int // 100 × major + minor
+	kind          string
+	piece         *piece
+	sections      map[string]*section // by keyword
+	types         *column
+	grid          legacyGrid
+	fields        []*column
+	texts         map[*column][]string // strings of field arrays
+	textBytes     int64
+	keywordOfData string             // section of point or cell data that is read
+	marked        map[arrayName]bool // attributes that are given, by location and attribute
+	ends          bool               // no more words
 }
 
 // readLegacy reads a legacy file as one block.
@@ -35,7 +37,7 @@ func (o *opener) readLegacy(f *file, at branch) error {
 	}
 	l := &legacyFile{
 		file: f, window: newWindow(&o.cursor.hand, f), cursor: o.cursor, limits: o.limits,
-		piece: &piece{file: f}, sections: map[string]*section{}, texts: map[*column][]string{},
+		piece: &piece{file: f}, sections: map[string]*section{}, texts: map[*column][]string{}, marked: map[arrayName]bool{},
 	}
 	if err := l.read(); err != nil {
 		return err
