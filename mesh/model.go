@@ -44,6 +44,7 @@ type Array struct {
 	Coding         string   // how the file keeps it: ascii, base64, raw, zlib, LZ4 or LZMA; "" unknown
 	Attributes     []string // what the file marks it as: Scalars, Tensors, GlobalIds, HigherOrderDegrees ...
 	Information    string   // what else the file says of it: its elements InformationKey as text
+	Offsets        string   // of a field array at integration points: the cell array that says where each cell's tuples begin
 	Bytes          int64    // length of its values as [Cursor.ReadArray] gives them
 	ID             int      // the reader's number of the array, for [Cursor.ReadArray]
 }
@@ -61,6 +62,7 @@ func (a Array) IsInteger() bool {
 // collection) has no points and cells of its own and stands before them.
 type Source struct {
 	Path   string // as the caller or the referring file gave it
+	Format string // form and version, and how the file is compressed as a whole
 	Bytes  int64
 	Points int64   // those on the border of two structured pieces counted once
 	Cells  int64   // ghosts included
@@ -112,20 +114,11 @@ type Model struct {
 	Pieces  []Piece   // in file order, whatever the container
 	Fields  []Array   // arrays of the data set as a whole, of one name once
 	Texts   []Text    // field arrays that hold text
-	Schemes []Scheme  // of integration points, where the files describe them
+	Schemes Schemes   // of integration points, where the files describe them
 	Times   []float64 // all states that the files hold, rising
 	Remarks []Remark
 	Open    func() Cursor // one for each worker
 	Close   func() error  // lets go of temporary files, after the cursors; nil: there are none
-}
-
-// A Scheme says where the integration points of cells of one type lie, by the values of
-// the cell's shape functions there.
-type Scheme struct {
-	Type    CellType
-	Nodes   int
-	Shapes  []float64 // for each point the value for each node
-	Weights []float64 // of each point; all 0 where the file's writer did not know them
 }
 
 // A Text is the content of a field array that holds text: strings, or small whole

@@ -31,7 +31,6 @@ type column struct {
 	isColour  bool    // text of 0 to 1 for bytes of 0 to 255
 	perCell   int64   // of a field array: tuples for each cell of the file
 	content   *column // of bits and strings: their bytes, in text one number for each bit
-	offsets   string  // of a field array: the cell array that says where each cell's tuples begin
 	payload
 	slot int // position among the kept buffers of a cursor
 }

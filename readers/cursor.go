@@ -251,10 +251,10 @@ func (c *cursor) marks(p *piece, span mesh.Span) ([]uint8, error) {
 // checkOffsets compares the places that the file gives for the tuples of each cell with
 // those at which they are taken to be: one cell after the other, as many for each.
 func (c *cursor) checkOffsets(p *piece, span mesh.Span, a *column) error {
-	if a.offsets == "" {
+	if a.Offsets == "" {
 		return nil
 	}
-	offsets, err := p.find(mesh.OnCell, a.offsets)
+	offsets, err := p.find(mesh.OnCell, a.Offsets)
 	if err != nil {
 		return err
 	}

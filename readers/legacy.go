@@ -1,6 +1,7 @@
 package readers
 
 import (
+	"fmt"
 	"math"
 	"strings"
 
@@ -42,7 +43,7 @@ func (o *opener) readLegacy(f *file, at branch) error {
 	if err := l.read(); err != nil {
 		return err
 	}
-	source := mesh.Source{Path: f.path, Bytes: f.bytes, Time: math.NaN()}
+	source := f.source(l.format(), math.NaN())
 	for _, a := range l.fields {
 		if err := o.addField(a, &source, l.texts[a]); err != nil {
 			return err
@@ -58,6 +59,15 @@ func (o *opener) readLegacy(f *file, at branch) error {
 	o.shareFields([]*piece{l.piece}, l.fields, source.Cells)
 	o.model.Sources = append(o.model.Sources, source)
 	return nil
+}
+
+// format names the form of the file.
+func (l *legacyFile) format() string {
+	coding := "ascii"
+	if l.isBinary {
+		coding = "binary"
+	}
+	return fmt.Sprintf("VTK legacy %d.%d, %s", l.version/100, l.version%100, coding)
 }
 
 // read reads the whole header.

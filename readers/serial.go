@@ -26,7 +26,7 @@ func (o *opener) newSet(name string) *pieceSet {
 
 // readSerial reads a data set whose pieces are all in this file.
 func (o *opener) readSerial(x *xmlFile, at branch) error {
-	source := mesh.Source{Path: x.file.path, Bytes: x.file.bytes, Time: math.NaN()}
+	source := x.file.source(x.format(), math.NaN())
 	times, chosen, err := x.pickStep(o.options.Time)
 	if err != nil {
 		return placedAt(x.file, x.data, err)
@@ -95,7 +95,7 @@ func (o *opener) fields(x *xmlFile, source *mesh.Source) ([]*column, error) {
 		if err := x.countField(a, e); err != nil {
 			return nil, err
 		}
-		a.offsets = x.informationText(e, "QUADRATURE_OFFSET_ARRAY_NAME")
+		a.Offsets = x.informationText(e, "QUADRATURE_OFFSET_ARRAY_NAME")
 		if err := o.addField(a, source, x.strings(a)); err != nil {
 			return nil, err
 		}
