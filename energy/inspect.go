@@ -92,9 +92,9 @@ func (i *inspector) audit(ctx context.Context, arrays []InspectedArray, total *i
 	}
 	for a := range arrays {
 		arrays[a].TakenFor, arrays[a].Why = "", ""
-		for _, field := range p.inputs.used.all() {
-			if used := field.used; used != nil && isUsedArray(used, &arrays[a]) {
-				arrays[a].TakenFor, arrays[a].Why = Text(field.key), Text(used.Why)
+		for _, field := range p.inputs.used.Taken() {
+			if isUsedArray(field.FieldUsed, &arrays[a]) {
+				arrays[a].TakenFor, arrays[a].Why = Text(field.Key), Text(field.Why)
 			}
 		}
 	}

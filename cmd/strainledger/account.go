@@ -202,8 +202,8 @@ func (p *program) detail(a *account, options *tallyOptions, format string, value
 
 // fieldDetails says which array was taken for what and why.
 func (p *program) fieldDetails(a *account, options *tallyOptions, fields *energy.FieldsUsed) {
-	for _, field := range namedFields(fields) {
-		p.detail(a, options, "%s", field.sentence())
+	for _, field := range fields.Taken() {
+		p.detail(a, options, "%s", fieldSentence(&field))
 	}
 }
 
