@@ -25,6 +25,7 @@ type pool struct {
 	keys      []float64 // their keys; NaN where there is no cell
 	free      []int32   // places in cells that hold none
 	room      int       // cells that are held before those that do not stay are dropped
+	scratch   []float64 // for finding the last that stays
 	slabs     slabs     // of what the cells hold
 
 	// outside holds for each region the largest density of a cell that the pool does
@@ -129,10 +130,19 @@ func (s *slabs) points(count int) []float64 {
 	return list
 }
 
+// mostHeld is how many cells are held before those that do not stay are dropped: a
+// quarter more than can stay. A larger part takes memory, a smaller one time.
+func mostHeld(count int, isByKey bool) int {
+	if isByKey {
+		count *= 2
+	}
+	return count + max(16, count/4)
+}
+
 // newPool returns an empty pool for a model of so many cells and regions.
 func newPool(count int, cells int64, regions int, isByKey bool) *pool {
-	p := &pool{count: count, isByKey: isByKey, room: 2 * count, outside: make([]float64, regions)}
-	room := min(cells, 3*int64(count))
+	p := &pool{count: count, isByKey: isByKey, room: mostHeld(count, isByKey), outside: make([]float64, regions)}
+	room := min(cells, int64(p.room))
 	p.cells, p.densities, p.keys = make([]poolCell, 0, room), make([]float64, 0, room), make([]float64, 0, room)
 	p.byDensity.floor, p.byKey.floor = noFloor, closedFloor
 	if isByKey {
@@ -237,7 +247,6 @@ func (p *pool) trim() {
 			p.free = append(p.free, int32(i))
 		}
 	}
-	p.room = len(p.cells) - len(p.free) + p.count
 }
 
 // holds reports whether there is a cell at a place of the list.
@@ -247,12 +256,13 @@ func (p *pool) holds(i int) bool { return p.densities[i] == p.densities[i] }
 // floor that lets everything pass where there are fewer. Values that are not a number are
 // not among them.
 func (p *pool) markFirst(values []float64, stays []bool) floor {
-	list := make([]float64, 0, len(values))
+	list := p.scratch[:0]
 	for _, value := range values {
 		if value == value {
 			list = append(list, value)
 		}
 	}
+	p.scratch = list
 	least, isFull := math.Inf(-1), len(list) >= p.count
 	if isFull {
 		least = largest(list, p.count)
