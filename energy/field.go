@@ -103,7 +103,7 @@ type inputs struct {
 	thickness                                    scalarInput
 	displacement                                 vectorInput     // read where the energy comes from it
 	elementID                                    int             // column of Chunk.Labels, or -1
-	rule                                         *mesh.GaussRule // of integration points; nil: none
+	rule                                         integrationRule // of integration points; nil: none
 	nodalForce                                   nodalForces     // read for the balance
 
 	strainIsElastic bool
@@ -136,6 +136,7 @@ type fieldFinder struct {
 	findings       *findings
 	in             *inputs
 	described      map[string]int // Gauss points along each direction, by array
+	schemes        mesh.Schemes   // that the files describe
 	cells          int64
 	hasIntegration bool      // there are results at integration points
 	unnamed        [2]string // two arrays taken for stress and strain although their names say nothing

@@ -92,9 +92,9 @@ func (i *inspector) audit(ctx context.Context, arrays []InspectedArray, total *i
 	}
 	for a := range arrays {
 		arrays[a].TakenFor, arrays[a].Why = "", ""
-		for _, field := range p.inputs.used.all() {
-			if used := field.used; used != nil && isUsedArray(used, &arrays[a]) {
-				arrays[a].TakenFor, arrays[a].Why = Text(field.key), Text(used.Why)
+		for _, field := range p.inputs.used.Taken() {
+			if isUsedArray(field.FieldUsed, &arrays[a]) {
+				arrays[a].TakenFor, arrays[a].Why = Text(field.Key), Text(field.Why)
 			}
 		}
 	}
@@ -340,7 +340,7 @@ func (i *inspector) describe(total *inspected) InspectedFile {
 	m := i.model
 	file := InspectedFile{CellsByType: []InspectedType{}, Times: slices.Clone(m.Times), Blocks: []InspectedBlock{}, Arrays: []InspectedArray{}}
 	if len(m.Sources) > 0 {
-		file.Path = m.Sources[0].Path
+		file.Path, file.Format = m.Sources[0].Path, m.Sources[0].Format
 	}
 	for _, cellType := range slices.Sorted(maps.Keys(total.cells)) {
 		file.Cells += total.cells[cellType]
@@ -352,12 +352,13 @@ func (i *inspector) describe(total *inspected) InspectedFile {
 	}
 	for _, source := range m.Sources {
 		file.Points += source.Points
+		file.Bytes += source.Bytes
 	}
 	for block, name := range m.Blocks {
 		file.Blocks = append(file.Blocks, InspectedBlock{name, points[block], total.blocks[block]})
 	}
 	for _, array := range i.arrays {
-		entry := InspectedArray{Name: array.Name, On: array.On.String(), Type: array.Type, Components: array.Components, Tuples: array.Tuples, Finite: None}
+		entry := InspectedArray{Name: array.Name, On: array.On.String(), Type: array.Type, Components: array.Components, Tuples: array.Tuples, Finite: None, Coding: Text(array.Coding)}
 		entry.TakenFor, entry.Why = takenFor(array)
 		file.Arrays = append(file.Arrays, entry)
 	}
@@ -429,5 +430,9 @@ func takenFor(array mesh.Array) (field, why Text) {
 	if found == noRole || array.On == mesh.OnField || isMisplaced || !fits(array.Components) {
 		return "", ""
 	}
-	return keys[found], Text("by its name and " + strconv.Itoa(array.Components) + " components; the values were not looked at")
+	components := " components"
+	if array.Components == 1 {
+		components = " component"
+	}
+	return keys[found], Text("by its name and " + strconv.Itoa(array.Components) + components + "; the values were not looked at")
 }

@@ -27,6 +27,7 @@ type InspectedFile struct {
 	Blocks      []InspectedBlock  `json:"blocks"`
 	Measure     *InspectedMeasure `json:"measure"`
 	Arrays      []InspectedArray  `json:"arrays"` // of several states, the first's
+	Bytes       int64             `json:"bytes"`  // on disk, with the files that it refers to
 }
 
 // Bounds is a range of space: xmin, xmax, ymin, ymax, zmin, zmax.
@@ -72,4 +73,6 @@ type InspectedArray struct {
 	// Sum holds decimal texts, never empty: those of whole-number arrays are exact,
 	// beyond what a double can hold.
 	Sum []json.Number `json:"sum"`
+
+	Coding Text `json:"coding"` // how the file keeps it: ascii, base64, raw, zlib, LZ4, LZMA
 }

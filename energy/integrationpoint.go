@@ -2,6 +2,7 @@ package energy
 
 import (
 	"encoding/json"
+	"reflect"
 	"slices"
 	"strconv"
 	"strings"
@@ -14,6 +15,13 @@ import (
 // "number_of_components"}]}. The order is the number of Gauss points along each
 // parametric direction, the first of which varies slowest.
 const descriptionName = "IntegrationPointMetaData"
+
+// An integrationRule gives points and weights in the cells of a shape: a
+// [mesh.GaussRule], or the [mesh.Schemes] of the file.
+type integrationRule interface {
+	Points() int // in a cell
+	Tabulate(*mesh.Shape) (*mesh.Tabulation, error)
+}
 
 // describedPoints returns the number of Gauss points along each direction of the
 // integration-point arrays that the file describes, by name.
@@ -71,12 +79,13 @@ func (f *fieldFinder) findIntegrationArrays(model *mesh.Model) {
 	cells := model.CellCount()
 	for _, array := range model.Fields {
 		_, isDescribed := described[array.Name]
+		isDescribed = isDescribed || array.Offsets != "" && len(model.Schemes) > 0
 		if cells > 0 && array.Tuples >= cells && array.Tuples%cells == 0 && isNumeric(array) && (isDescribed || f.isStatedAtIntegration(array.Name)) {
 			f.arrays = append(f.arrays, array)
 			f.hasIntegration = true
 		}
 	}
-	f.described, f.cells = described, cells
+	f.described, f.schemes, f.cells = described, model.Schemes, cells
 	// A cell array may hold the points of each cell in one long tuple.
 	f.hasIntegration = f.hasIntegration || f.options.Fields.Stress.Integration || f.options.Fields.Strain.Integration
 }
@@ -122,7 +131,7 @@ func placesName(on mesh.Location) string {
 // description. It returns the number of points in a cell and the number of components
 // at each.
 func (f *fieldFinder) settleRule(key string, field *Field, array *mesh.Array) (points, components int, err error) {
-	rule := &mesh.GaussRule{}
+	var rule integrationRule
 	switch order := f.described[array.Name]; {
 	case field.Rule != "":
 		if rule, err = ParseRule(field.Rule); err != nil {
@@ -134,11 +143,13 @@ func (f *fieldFinder) settleRule(key string, field *Field, array *mesh.Array) (p
 			dimension = 3
 		}
 		rule = &mesh.GaussRule{Counts: slices.Repeat([]int{order}, dimension), FirstIsSlowest: true}
+	case array.Offsets != "" && f.schemes.Points() > 0:
+		rule = f.schemes
 	default:
 		return 0, 0, inputError("[fields] %s: array %q holds integration points, but the file does not describe their rule; state rule = \"gauss 3x3\"", key, array.Name)
 	}
 	points = rule.Points()
-	if f.in.rule != nil && (f.in.rule.FirstIsSlowest != rule.FirstIsSlowest || !slices.Equal(f.in.rule.Counts, rule.Counts)) {
+	if f.in.rule != nil && !reflect.DeepEqual(f.in.rule, rule) {
 		return 0, 0, inputError("[fields] %s: array %q has another integration rule than the field before it", key, array.Name)
 	}
 	f.in.rule = rule

@@ -1,5 +1,7 @@
 package energy
 
+import "slices"
+
 // A Ledger is the account of one run, as it is written to ledger.json. Its keys, their
 // order and their meaning are fixed by the schema's number; keys of parts that are not
 // built yet are null. All numbers are in the consistent units of the study.
@@ -105,19 +107,27 @@ type FieldsUsed struct {
 	ElementID               *FieldUsed `json:"element_id"`
 }
 
-// all lists the fields with their keys in the study.
-func (f *FieldsUsed) all() []struct {
-	key  string
-	used *FieldUsed
-} {
-	return []struct {
-		key  string
-		used *FieldUsed
-	}{
-		{"stress", f.Stress}, {"strain", f.Strain}, {"thermal_strain", f.ThermalStrain}, {"plastic_strain", f.PlasticStrain},
-		{"equivalent_plastic_strain", f.EquivalentPlasticStrain}, {"displacement", f.Displacement}, {"temperature", f.Temperature},
-		{"nodal_force", f.NodalForce}, {"element_id", f.ElementID},
+// A NamedField is a field with the array that was taken for it.
+type NamedField struct {
+	Key  string // in the study and the ledger
+	Name string // for people
+	*FieldUsed
+}
+
+// Taken lists the fields for which an array was taken, in the ledger's order.
+func (f *FieldsUsed) Taken() []NamedField {
+	fields := []NamedField{
+		{"stress", "stress", f.Stress},
+		{"strain", "strain", f.Strain},
+		{"thermal_strain", "thermal strain", f.ThermalStrain},
+		{"plastic_strain", "plastic strain", f.PlasticStrain},
+		{"equivalent_plastic_strain", "equivalent plastic strain", f.EquivalentPlasticStrain},
+		{"displacement", "displacement", f.Displacement},
+		{"temperature", "temperature", f.Temperature},
+		{"nodal_force", "nodal force", f.NodalForce},
+		{"element_id", "element number", f.ElementID},
 	}
+	return slices.DeleteFunc(fields, func(field NamedField) bool { return field.FieldUsed == nil })
 }
 
 // FieldUsed is one array's part in the account. Order, Shear and Kind are empty where

@@ -74,6 +74,10 @@ type memoryCursor struct {
 
 func (c *memoryCursor) Close() error { return nil }
 
+func (c *memoryCursor) ReadArray(context.Context, *mesh.Array, int64, []byte) error {
+	panic("no test reads arrays whole")
+}
+
 func (c *memoryCursor) Points(_ context.Context, piece int, low, high int64, to []float64) error {
 	for i, point := range c.mesh.pieces[piece].points[low:high] {
 		copy(to[3*i:], point[:])

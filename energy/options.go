@@ -67,9 +67,10 @@ type Options struct {
 	Loading          *Loading // nil: nothing is stated
 	HotspotTolerance float64  // distance within which hotspots of two runs match; 0: not stated
 
-	Workers          int  // 0: all processors
-	ChunkCells       int  // cells in a chunk; 0: the walk's default
-	ListAllPastLimit bool // keep every cell past its limit for Ledger.AllPastLimit
+	Workers          int      // 0: all processors
+	ChunkCells       int      // cells in a chunk; 0: the walk's default
+	ListAllPastLimit bool     // keep every cell past its limit for Ledger.AllPastLimit
+	Columns          *Columns // gets what is computed for each cell; nil: nothing
 }
 
 // Fields holds what the study states of each field.

@@ -20,6 +20,7 @@ type plan struct {
 	hotspotCount int
 	listCount    int
 	bounds       mesh.Bounds
+	places       []int64  // of the first cell of each piece among all cells of the model
 	border       pointSet // points that regions share, where fields are on points
 	isUnknown    bool     // the energy cannot be told: inelastic strain and no law
 	findings     findings
@@ -103,6 +104,7 @@ func newPlan(ctx context.Context, walk *mesh.Walk, model *mesh.Model, options *O
 	}
 	p.chooseLists()
 	p.chooseSampling()
+	p.places = firstPlaces(model)
 	p.noteSettings()
 	return p, nil
 }

@@ -41,6 +41,9 @@ func (p *plan) chooseSampling() {
 		p.sampling = sampledByGradients
 	case in.rule != nil && in.source().points > 0:
 		p.sampling = sampledAtIntegration
+		if _, isGauss := in.rule.(*mesh.GaussRule); !isGauss {
+			why = "the stress at the file's own integration points is not taken to the nodes; state their rule if it is a product of Gauss points"
+		}
 	case p.isStressPerCell():
 		p.sampling, p.againstGradients = sampledPerCell, hasGradients
 	case in.source().on != mesh.OnPoint:
@@ -109,8 +112,8 @@ func (w *worker) nodeTable(rule *mesh.Tabulation) *nodeTable {
 		shape.Derivatives(at, t.Derivatives[n*k:n*k+n])
 	}
 	table := &nodeTable{atNodes: t}
-	if rule != nil {
-		table.extrapolate = extrapolation(w.inputs.rule.Counts, shape.Degree(), rule, places)
+	if gauss, ok := w.inputs.rule.(*mesh.GaussRule); ok && rule != nil {
+		table.extrapolate = extrapolation(gauss.Counts, shape.Degree(), rule, places)
 	}
 	if w.nodeTables == nil {
 		w.nodeTables = map[*mesh.Shape]*nodeTable{}

@@ -51,6 +51,8 @@ type worker struct {
 	rule           *mesh.Tabulation // of integration points, for
 	ruleShape      *mesh.Shape
 	placeValues    []float64 // shape functions at the current integration point; nil elsewhere
+
+	bytes []byte // of one column
 }
 
 func newWorker(p *plan, pool *pool) *worker {
@@ -85,6 +87,9 @@ func (w *worker) visit(chunk *mesh.Chunk) error {
 	if w.looksAround() {
 		low := chunk.First - w.model.Pieces[chunk.Piece].FirstCell
 		w.part.boxes = append(w.part.boxes, chunkBox{mesh.Span{Piece: chunk.Piece, Low: low, High: low + int64(chunk.Count)}, chunk.Bounds()})
+	}
+	if w.options.Columns != nil {
+		return w.writeColumns(chunk)
 	}
 	return nil
 }

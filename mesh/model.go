@@ -42,6 +42,11 @@ type Array struct {
 	Tuples         int64
 	ComponentNames []string // nil when the file names none
 	Coding         string   // how the file keeps it: ascii, base64, raw, zlib, LZ4 or LZMA; "" unknown
+	Attributes     []string // what the file marks it as: Scalars, Tensors, GlobalIds, HigherOrderDegrees ...
+	Information    string   // what else the file says of it: its elements InformationKey as text
+	Offsets        string   // of a field array at integration points: the cell array that says where each cell's tuples begin
+	Bytes          int64    // length of its values as [Cursor.ReadArray] gives them
+	ID             int      // the reader's number of the array, for [Cursor.ReadArray]
 }
 
 // IsInteger reports whether the array holds whole numbers by its type.
@@ -57,10 +62,12 @@ func (a Array) IsInteger() bool {
 // collection) has no points and cells of its own and stands before them.
 type Source struct {
 	Path   string // as the caller or the referring file gave it
+	Format string // form and version, and how the file is compressed as a whole
 	Bytes  int64
 	Points int64   // those on the border of two structured pieces counted once
 	Cells  int64   // ghosts included
 	Time   float64 // NaN when the file gives none
+	Fields []Array // arrays of the file's data set as a whole
 }
 
 // A Piece is a run of cells that share one set of points.
@@ -70,7 +77,9 @@ type Piece struct {
 	FirstCell  int64 // number of its first cell in the source
 	CellCount  int64
 	PointCount int64
+	Points     *Array  // how the coordinates are stored; nil where a grid tells them
 	Arrays     []Array // point and cell arrays in file order
+	OwnArrays  []Array // those that only the reader itself uses, for other pieces of the set lack them
 	RunCells   int     // cells that are best read in one go; 0: no preference
 
 	Grid *Grid // of a structured piece, else nil
@@ -105,20 +114,11 @@ type Model struct {
 	Pieces  []Piece   // in file order, whatever the container
 	Fields  []Array   // arrays of the data set as a whole, of one name once
 	Texts   []Text    // field arrays that hold text
-	Schemes []Scheme  // of integration points, where the files describe them
+	Schemes Schemes   // of integration points, where the files describe them
 	Times   []float64 // all states that the files hold, rising
 	Remarks []Remark
 	Open    func() Cursor // one for each worker
 	Close   func() error  // lets go of temporary files, after the cursors; nil: there are none
-}
-
-// A Scheme says where the integration points of cells of one type lie, by the values of
-// the cell's shape functions there.
-type Scheme struct {
-	Type    CellType
-	Nodes   int
-	Shapes  []float64 // for each point the value for each node
-	Weights []float64 // of each point; all 0 where the file's writer did not know them
 }
 
 // A Text is the content of a field array that holds text: strings, or small whole
@@ -160,6 +160,10 @@ type Cursor interface {
 	// slices belong to the cursor and are valid until its next call of Cells. Node numbers have
 	// been checked against the piece's point count, cell sizes against the shape.
 	Cells(ctx context.Context, span Span, want *Want, to *Chunk) error
+	// ReadArray fills to with the bytes of an array from byte at on, which is a
+	// multiple of 8: numbers of the array's type, low byte first, tuple after tuple;
+	// bits eight to a byte, the first one highest; strings with a zero behind each.
+	ReadArray(ctx context.Context, array *Array, at int64, to []byte) error
 	Close() error
 }
 

@@ -23,6 +23,10 @@ type lineCursor struct {
 
 func (c *lineCursor) Close() error { c.closed.Add(1); return nil }
 
+func (c *lineCursor) ReadArray(context.Context, *Array, int64, []byte) error {
+	panic("no test reads arrays whole")
+}
+
 func (c *lineCursor) Points(_ context.Context, piece int, low, high int64, to []float64) error {
 	c.loads.Add(1)
 	if len(to) != int(3*(high-low)) {

@@ -5,8 +5,6 @@ import (
 	"slices"
 	"strconv"
 	"strings"
-
-	"strainledger/mesh"
 )
 
 // readCollection reads one state of a collection of files, each at a time. Files of one
@@ -24,7 +22,7 @@ func (o *opener) readCollection(x *xmlFile, at branch) error {
 	if err != nil {
 		return placedAt(x.file, x.data, err)
 	}
-	o.model.Sources = append(o.model.Sources, mesh.Source{Path: x.file.path, Bytes: x.file.bytes, Time: math.NaN()})
+	o.model.Sources = append(o.model.Sources, x.file.source(x.format(), math.NaN()))
 	at.time = times[chosen]
 	var entries []*element
 	for _, e := range x.data.children {

@@ -12,10 +12,11 @@ import (
 type form uint8
 
 const (
-	plainForm form = iota + 1 // one run of bytes
-	blockForm                 // compressed blocks
-	textForm                  // numbers in words
-	emptyForm                 // no values
+	plainForm  form = iota + 1 // one run of bytes
+	blockForm                  // compressed blocks
+	textForm                   // numbers in words
+	emptyForm                  // no values
+	stringForm                 // strings of a legacy file
 )
 
 // A column is one array of a file: what it holds and where it stands. It is shared
@@ -25,11 +26,11 @@ type column struct {
 	number    number
 	bigEndian bool
 	file      *file
-	start     int64  // where its values begin in the file
-	isLevel   bool   // ghost levels of old files: above 0 means duplicate
-	isColour  bool   // text of 0 to 1 for bytes of 0 to 255
-	perCell   int64  // of a field array: tuples for each cell of the file
-	offsets   string // of a field array: the cell array that says where each cell's tuples begin
+	start     int64   // where its values begin in the file
+	isLevel   bool    // ghost levels of old files: above 0 means duplicate
+	isColour  bool    // text of 0 to 1 for bytes of 0 to 255
+	perCell   int64   // of a field array: tuples for each cell of the file
+	content   *column // of bits and strings: their bytes, in text one number for each bit
 	payload
 	slot int // position among the kept buffers of a cursor
 }
@@ -37,13 +38,15 @@ type column struct {
 // coding says how the file keeps the array.
 func (a *column) coding() string {
 	switch {
-	case a.form == textForm:
+	case a.content != nil:
+		return a.content.coding()
+	case a.form == textForm, a.form == stringForm && !a.strings.isBinary:
 		return "ascii"
 	case a.form == blockForm:
 		return [...]string{zlibBlocks: "zlib", lz4Blocks: "LZ4", lzmaBlocks: "LZMA"}[a.blocks.compressor]
 	case a.form == plainForm && a.stored.isBase64:
 		return "base64"
-	case a.form == plainForm:
+	case a.form == plainForm, a.form == stringForm:
 		return "raw"
 	}
 	return ""
@@ -51,11 +54,12 @@ func (a *column) coding() string {
 
 // A payload is where the values of an array are and how they are kept.
 type payload struct {
-	form   form
-	length int64   // bytes that are there, decoded; of text unknown
-	stored stored  // plainForm
-	blocks *blocks // blockForm
-	text   *index  // textForm
+	form    form
+	length  int64       // bytes that are there, decoded; of text unknown
+	stored  stored      // plainForm
+	blocks  *blocks     // blockForm
+	text    *index      // textForm
+	strings *stringList // stringForm
 }
 
 // width returns the bytes of one tuple.
@@ -81,6 +85,10 @@ func (a *column) need(tuples int64, what string) error {
 	bytes := tuples * a.width()
 	values := tuples * int64(a.Components)
 	switch {
+	case tuples > 0 && a.number == bitNumber:
+		if err := a.needBits(tuples, what); err != nil {
+			return err
+		}
 	case tuples == 0 || a.number.size() == 0:
 	case a.form == textForm:
 		if most := a.text.most(); values > most {
@@ -91,6 +99,24 @@ func (a *column) need(tuples int64, what string) error {
 		return a.fail(truncated("%d %s with %s need %d bytes, found %d", tuples, what, counted(a.Components, "component"), bytes, a.length))
 	}
 	a.Tuples = tuples
+	return nil
+}
+
+// needBits is need for bits.
+func (a *column) needBits(tuples int64, what string) error {
+	if tuples > (1<<62)/int64(a.Components) {
+		return a.fail(malformed("found %d %s, need fewer", tuples, what))
+	}
+	room := int64(0)
+	if a.content != nil {
+		room = a.content.most()
+		if a.content.form != textForm {
+			room *= 8
+		}
+	}
+	if bits := tuples * int64(a.Components); bits > room {
+		return a.fail(truncated("%d %s with %s need %d bits, found room for %d", tuples, what, counted(a.Components, "component"), bits, room))
+	}
 	return nil
 }
 
@@ -114,6 +140,7 @@ type slot struct {
 	stream    blockStream // large blocks
 	words     words       // text: where reading goes on
 	next      int64       // text: number of the word that comes next
+	strings   stringPlace
 	swapped   []byte
 	floats    []float64
 	labels    []int64
@@ -189,6 +216,10 @@ func (a *column) load(c *cursor, s *slot, low, high int64) error {
 		return a.unpackBlocks(c, s, low, high)
 	case textForm:
 		return a.parse(c, s, low, high)
+	case stringForm:
+		s.reserve(high-low, 0)
+		s.low, s.high = low, high
+		return a.strings.read(&c.hand, &s.strings, s.data, low)
 	}
 	return truncated("found no values, need %d bytes", high)
 }

@@ -3,15 +3,13 @@ package readers
 import (
 	"math"
 	"strconv"
-
-	"strainledger/mesh"
 )
 
 // readComposite reads a tree of files: multiblock data, a partitioned data set, or a
 // collection of those. Each file is a block, named by the names on the way to it with
 // slashes between; what has no name is called by its index.
 func (o *opener) readComposite(x *xmlFile, at branch) error {
-	source := mesh.Source{Path: x.file.path, Bytes: x.file.bytes, Time: math.NaN()}
+	source := x.file.source(x.format(), math.NaN())
 	if _, err := o.fields(x, &source); err != nil {
 		return err
 	}

@@ -37,7 +37,13 @@ type arrayName struct {
 
 // columns returns all columns of the piece.
 func (p *piece) columns() []*column {
-	columns := slices.Concat(p.arrays, p.unlisted, p.fields, p.faces.columns())
+	// What all pieces of a file share comes first and so has the same place in each.
+	columns := slices.Concat(p.fields, p.arrays, p.unlisted, p.faces.columns())
+	for _, a := range p.arrays {
+		if a.content != nil {
+			columns = append(columns, a.content)
+		}
+	}
 	if p.points != nil {
 		columns = append(columns, p.points)
 	}
@@ -102,6 +108,7 @@ func (p *piece) find(on mesh.Location, name string) (*column, error) {
 type cursor struct {
 	unpacker
 	pieces []*piece
+	listed []*column // by mesh.Array.ID
 	hand   hand
 	slots  []slot
 
@@ -125,8 +132,8 @@ type cursor struct {
 	fields    [][]float64
 }
 
-func newCursor(pieces []*piece, slots int) *cursor {
-	return &cursor{pieces: pieces, slots: make([]slot, slots)}
+func newCursor(pieces []*piece, listed []*column, slots int) *cursor {
+	return &cursor{pieces: pieces, listed: listed, slots: make([]slot, slots)}
 }
 
 // Close lets go of the files.
@@ -244,10 +251,10 @@ func (c *cursor) marks(p *piece, span mesh.Span) ([]uint8, error) {
 // checkOffsets compares the places that the file gives for the tuples of each cell with
 // those at which they are taken to be: one cell after the other, as many for each.
 func (c *cursor) checkOffsets(p *piece, span mesh.Span, a *column) error {
-	if a.offsets == "" {
+	if a.Offsets == "" {
 		return nil
 	}
-	offsets, err := p.find(mesh.OnCell, a.offsets)
+	offsets, err := p.find(mesh.OnCell, a.Offsets)
 	if err != nil {
 		return err
 	}

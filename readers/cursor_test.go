@@ -100,7 +100,7 @@ func TestOldOrderOfHexahedra(t *testing.T) {
 		third   int // first node of the third vertical edge
 	}{{[3]int64{2, 2, 2}, 18}, {[3]int64{3, 3, 3}, 28}, {[3]int64{2, 3, 4}, 26}, {[3]int64{1, 1, 3}, 12}, {[3]int64{2, 2, 1}, -1}} {
 		count := (test.degrees[0] + 1) * (test.degrees[1] + 1) * (test.degrees[2] + 1)
-		c := newCursor(nil, 0)
+		c := newCursor(nil, nil, 0)
 		c.types, c.start = []mesh.CellType{mesh.Tetrahedron, mesh.LagrangeHexahedron}, []int32{0, 4, 4 + int32(count)}
 		want := []int32{100, 101, 102, 103}
 		for i := range int32(count) {

@@ -27,20 +27,11 @@ func textOf(data []byte) []string {
 
 // strings returns the strings of an array, nil when it holds none: each is its bytes
 // and a zero.
-func (x *xmlFile) strings(a *column, e *element) []string {
-	if a.number != stringNumber {
+func (x *xmlFile) strings(a *column) []string {
+	if a.number != stringNumber || a.content.Tuples == 0 || a.content.Tuples > x.limits.Text {
 		return nil
 	}
-	bytes := &column{Array: a.Array, file: a.file, number: int8Number, start: a.start}
-	bytes.Components = 1
-	if x.place(bytes, e) != nil {
-		return nil
-	}
-	length, err := bytes.countTuples(x.cursor)
-	if err != nil || length > x.limits.Text {
-		return nil
-	}
-	data, err := bytes.bytes(x.cursor, 0, length)
+	data, err := a.content.bytes(x.cursor, 0, a.content.Tuples)
 	if err != nil {
 		return nil
 	}

@@ -5,6 +5,8 @@ import (
 	"errors"
 	"io"
 	"os"
+
+	"strainledger/mesh"
 )
 
 // A file is one file that headers or arrays are read from. Content is set where it
@@ -13,9 +15,18 @@ type file struct {
 	path    string // as given, for messages
 	disk    string // what the system opens
 	size    int64
-	bytes   int64 // of the file on disk, which may be compressed
-	text    int64 // bytes at the beginning that are text, for line numbers in messages
+	bytes   int64  // of the file on disk, which may be compressed
+	text    int64  // bytes at the beginning that are text, for line numbers in messages
+	packing string // how the file is compressed as a whole: gzip, zstd or xz; "" not
 	content io.ReaderAt
+}
+
+// source begins the description of the file.
+func (f *file) source(format string, time float64) mesh.Source {
+	if f.packing != "" {
+		format += ", " + f.packing
+	}
+	return mesh.Source{Path: f.path, Format: format, Bytes: f.bytes, Time: time}
 }
 
 // fail makes an error at a byte offset of the file.

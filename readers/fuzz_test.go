@@ -88,10 +88,50 @@ func brokenPromise(data []byte) string {
 			}
 		}
 	}
-	if firstErr != nil {
-		return ""
+	if fault := storedFault(model); fault != "" || firstErr != nil {
+		return fault
 	}
 	return modelFault(model, first)
+}
+
+// storedFault reads every array as it is stored, at once and in steps.
+func storedFault(model *mesh.Model) string {
+	var arrays []mesh.Array
+	for i := range model.Pieces {
+		piece := &model.Pieces[i]
+		arrays = append(append(arrays, piece.Arrays...), piece.OwnArrays...)
+		if piece.Points != nil {
+			arrays = append(arrays, *piece.Points)
+		}
+	}
+	for i := range model.Sources {
+		arrays = append(arrays, model.Sources[i].Fields...)
+	}
+	for i := range arrays {
+		whole, err := storedBytes(model, &arrays[i], max(8, arrays[i].Bytes))
+		steps, stepsErr := storedBytes(model, &arrays[i], max(8, arrays[i].Bytes/20/8*8))
+		switch {
+		case (err == nil) != (stepsErr == nil):
+			return fmt.Sprintf("array %q: at once %v, in steps %v", arrays[i].Name, err, stepsErr)
+		case err != nil && placeFault(err) != "":
+			return placeFault(err)
+		case err == nil && !bytes.Equal(whole, steps):
+			return fmt.Sprintf("array %q: in steps other bytes than at once", arrays[i].Name)
+		}
+	}
+	return ""
+}
+
+func storedBytes(model *mesh.Model, array *mesh.Array, step int64) ([]byte, error) {
+	cursor := model.Open()
+	defer cursor.Close()
+	data := make([]byte, array.Bytes)
+	for at := int64(0); at < array.Bytes; at += step {
+		if err := cursor.ReadArray(context.Background(), array, at, data[at:min(at+step, array.Bytes)]); err != nil {
+			return nil, err
+		}
+	}
+	return data, nil
 }
 
 func placeFault(err error) string {

@@ -1,6 +1,7 @@
 package readers
 
 import (
+	"fmt"
 	"math"
 	"strings"
 
@@ -11,21 +12,23 @@ import (
 // title it is a stream of words; in binary files the values between them are
 // big-endian and begin behind the end of the line.
 type legacyFile struct {
-	file      *file
-	window    *window
-	cursor    *cursor
-	limits    Limits
-	isBinary  bool
-	version   int // 100 × major + minor
-	kind      string
-	piece     *piece
-	sections  map[string]*section // by keyword
-	types     *column
-	grid      legacyGrid
-	fields    []*column
-	texts     map[*column][]string // strings of field arrays
-	textBytes int64
-	ends      bool // no more words
+	file          *file
+	window        *window
+	cursor        *cursor
+	limits        Limits
+	isBinary      bool
+	version       int // 100 × major + minor
+	kind          string
+	piece         *piece
+	sections      map[string]*section // by keyword
+	types         *column
+	grid          legacyGrid
+	fields        []*column
+	texts         map[*column][]string // strings of field arrays
+	textBytes     int64
+	keywordOfData string             // section of point or cell data that is read
+	marked        map[arrayName]bool // attributes that are given, by location and attribute
+	ends          bool               // no more words
 }
 
 // readLegacy reads a legacy file as one block.
@@ -35,12 +38,12 @@ func (o *opener) readLegacy(f *file, at branch) error {
 	}
 	l := &legacyFile{
 		file: f, window: newWindow(&o.cursor.hand, f), cursor: o.cursor, limits: o.limits,
-		piece: &piece{file: f}, sections: map[string]*section{}, texts: map[*column][]string{},
+		piece: &piece{file: f}, sections: map[string]*section{}, texts: map[*column][]string{}, marked: map[arrayName]bool{},
 	}
 	if err := l.read(); err != nil {
 		return err
 	}
-	source := mesh.Source{Path: f.path, Bytes: f.bytes, Time: math.NaN()}
+	source := f.source(l.format(), math.NaN())
 	for _, a := range l.fields {
 		if err := o.addField(a, &source, l.texts[a]); err != nil {
 			return err
@@ -56,6 +59,15 @@ func (o *opener) readLegacy(f *file, at branch) error {
 	o.shareFields([]*piece{l.piece}, l.fields, source.Cells)
 	o.model.Sources = append(o.model.Sources, source)
 	return nil
+}
+
+// format names the form of the file.
+func (l *legacyFile) format() string {
+	coding := "ascii"
+	if l.isBinary {
+		coding = "binary"
+	}
+	return fmt.Sprintf("VTK legacy %d.%d, %s", l.version/100, l.version%100, coding)
 }
 
 // read reads the whole header.

@@ -13,6 +13,7 @@ func (l *legacyFile) attributes(keyword string) error {
 	tuples := l.piece.pointCount
 	for {
 		var err error
+		l.keywordOfData = keyword
 		switch keyword {
 		case "POINT_DATA", "CELL_DATA":
 			on, tuples = mesh.OnPoint, l.piece.pointCount
@@ -61,9 +62,28 @@ func (l *legacyFile) keep(a *column) {
 	}
 	if a.On == mesh.OnCell && a.Name == "HigherOrderDegrees" && a.Components == 3 {
 		p.degrees = a
+		l.mark(a, "HigherOrderDegrees")
 	}
 	if a.On == mesh.OnPoint && a.Name == "RationalWeights" && a.Components == 1 {
 		p.weights = a.Name
+		l.mark(a, "RationalWeights")
+	}
+	l.mark(a, keywordAttributes[l.keywordOfData])
+}
+
+// keywordAttributes are the attributes that keywords of point and cell data give.
+var keywordAttributes = map[string]string{
+	"SCALARS": "Scalars", "COLOR_SCALARS": "Scalars", "VECTORS": "Vectors", "NORMALS": "Normals", "TENSORS": "Tensors",
+	"TENSORS6": "Tensors", "TEXTURE_COORDINATES": "TCoords", "GLOBAL_IDS": "GlobalIds", "PEDIGREE_IDS": "PedigreeIds",
+	"EDGE_FLAGS": "EdgeFlag",
+}
+
+// mark gives an array an attribute, which only the first one of points or cells has.
+func (l *legacyFile) mark(a *column, attribute string) {
+	key := arrayName{a.On, attribute}
+	if attribute != "" && !l.marked[key] {
+		l.marked[key] = true
+		a.Attributes = append(a.Attributes, attribute)
 	}
 }
 

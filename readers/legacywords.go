@@ -254,9 +254,11 @@ func (l *legacyFile) binaryValues(a *column, count int64) error {
 	if found := l.file.size - a.start; bytes > found {
 		return a.fail(truncated("%d tuples with %s need %d bytes, found %d", a.Tuples, counted(a.Components, "component"), bytes, found))
 	}
-	if a.number != bitNumber {
-		a.payload = payload{form: plainForm, length: bytes, stored: stored{file: l.file, start: a.start}}
-		a.bigEndian = true
+	plain := payload{form: plainForm, length: bytes, stored: stored{file: l.file, start: a.start}}
+	if a.number == bitNumber {
+		a.content = l.bytesOf(a, plain)
+	} else {
+		a.payload, a.bigEndian = plain, true
 	}
 	return l.window.jump(a.start + bytes)
 }
@@ -283,72 +285,10 @@ func (l *legacyFile) textValues(a *column, count int64) error {
 		return a.fail(err)
 	}
 	text.end = words.offset
-	if a.number != bitNumber {
-		a.payload = payload{form: textForm, text: text}
+	if words := (payload{form: textForm, text: text}); a.number == bitNumber {
+		a.content = l.bytesOf(a, words)
+	} else {
+		a.payload = words
 	}
 	return l.window.jump(words.offset)
-}
-
-// textStrings passes over one line for each string.
-func (l *legacyFile) textStrings(a *column, count int64) error {
-	if _, err := l.line(); err != nil {
-		return err
-	}
-	if found := l.file.size - l.window.offset(); count > found+1 {
-		return a.fail(truncated("%d strings needed, found %d bytes", count, found))
-	}
-	for range count {
-		line, err := l.line()
-		if err != nil {
-			return err
-		}
-		l.keepText(a, decodePercent(line))
-	}
-	return nil
-}
-
-// keepText notes a string of a field array, of long ones the first.
-func (l *legacyFile) keepText(a *column, text string) {
-	if a.On == mesh.OnField && l.textBytes+int64(len(text)) <= l.limits.Text {
-		l.textBytes += int64(len(text)) + 16
-		l.texts[a] = append(l.texts[a], strings.ToValidUTF8(text, "\ufffd"))
-	}
-}
-
-// binaryStrings passes over strings, each behind its length in 1, 2, 4 or 8 bytes,
-// which the top two bits of the first byte tell.
-func (l *legacyFile) binaryStrings(a *column, count int64) error {
-	if _, err := l.line(); err != nil {
-		return err
-	}
-	offset := l.window.offset()
-	if found := l.file.size - offset; count > found {
-		return a.fail(truncated("%d strings needed, found %d bytes", count, found))
-	}
-	for i := range count {
-		var head [8]byte
-		if err := l.cursor.hand.readAt(l.file, head[:1], offset); err != nil {
-			return a.fail(err)
-		}
-		size := int64(8) >> (head[0] >> 6)
-		head[0] = 0
-		if err := l.cursor.hand.readAt(l.file, head[8-size:], offset); err != nil {
-			return a.fail(err)
-		}
-		head[8-size] &= 0x3f
-		length := word(head[:], 8, true)
-		offset += size
-		if found := l.file.size - offset; length > uint64(found) {
-			return a.fail(truncated("string %d of %d has %d bytes by its length, found %d", i, count, length, found))
-		}
-		if a.On == mesh.OnField && int64(length) <= l.limits.Text {
-			text := make([]byte, length)
-			if err := l.cursor.hand.readAt(l.file, text, offset); err != nil {
-				return a.fail(err)
-			}
-			l.keepText(a, string(text))
-		}
-		offset += int64(length)
-	}
-	return l.window.jump(offset)
 }

@@ -59,6 +59,7 @@ type opener struct {
 	cursor     *cursor // reads what headers need
 	model      *mesh.Model
 	pieces     []*piece
+	listed     []*column        // by mesh.Array.ID
 	taken      map[string]bool  // files that are in the model, by clean path
 	fieldNames map[string]int   // places of field arrays in the model
 	perCell    map[string]int64 // tuples of field arrays for each cell
@@ -71,7 +72,7 @@ type opener struct {
 
 func newOpener(ctx context.Context, options Options) *opener {
 	return &opener{
-		ctx: ctx, options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, 1),
+		ctx: ctx, options: options, limits: options.Limits.withDefaults(), cursor: newCursor(nil, nil, 1),
 		model: &mesh.Model{}, taken: map[string]bool{}, fieldNames: map[string]int{}, perCell: map[string]int64{}, blockNames: map[string]bool{}, remarks: map[string]bool{},
 	}
 }
@@ -251,10 +252,7 @@ func (o *opener) finish() error {
 	for i, p := range o.pieces {
 		slots = max(slots, p.numberSlots())
 		o.model.Pieces[i].RunCells = p.runCells()
-		for _, a := range p.arrays {
-			a.Coding = a.coding()
-			o.model.Pieces[i].Arrays = append(o.model.Pieces[i].Arrays, a.Array)
-		}
+		o.describe(p, &o.model.Pieces[i])
 	}
 	for _, source := range o.model.Sources {
 		if !math.IsNaN(source.Time) {
@@ -266,10 +264,24 @@ func (o *opener) finish() error {
 	if err := o.checkTime(); err != nil {
 		return err
 	}
-	pieces := o.pieces
-	o.model.Open = func() mesh.Cursor { return newCursor(pieces, slots) }
+	pieces, listed := o.pieces, o.listed
+	o.model.Open = func() mesh.Cursor { return newCursor(pieces, listed, max(slots, 1)) }
 	o.model.Close = o.close
 	return nil
+}
+
+// describe puts a piece's arrays into its description.
+func (o *opener) describe(p *piece, to *mesh.Piece) {
+	for _, a := range p.arrays {
+		to.Arrays = append(to.Arrays, o.list(a))
+	}
+	for _, a := range p.unlisted {
+		to.OwnArrays = append(to.OwnArrays, o.list(a))
+	}
+	if p.points != nil {
+		points := o.list(p.points)
+		to.Points = &points
+	}
 }
 
 // checkTime compares the time that was asked for with those of the files: some state

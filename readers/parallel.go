@@ -11,7 +11,7 @@ import (
 // readParallel reads a file that lists the pieces of one data set, each a file of its
 // own. What it declares of arrays is not believed: the pieces say what there is.
 func (o *opener) readParallel(x *xmlFile, at branch) error {
-	source := mesh.Source{Path: x.file.path, Bytes: x.file.bytes, Time: at.time}
+	source := x.file.source(x.format(), at.time)
 	if _, err := o.fields(x, &source); err != nil {
 		return err
 	}

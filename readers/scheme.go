@@ -27,14 +27,11 @@ func informationKey(e *element, name string) *element {
 // informationText returns the text of an information key, "" without it.
 func (x *xmlFile) informationText(e *element, name string) string {
 	key := informationKey(e, name)
-	if key == nil || key.end-key.start > x.limits.Text {
+	if key == nil {
 		return ""
 	}
-	text := make([]byte, key.end-key.start)
-	if x.cursor.hand.readAt(x.file, text, key.start) != nil {
-		return ""
-	}
-	return strings.TrimSpace(string(text))
+	text, _ := x.textOf(key)
+	return strings.TrimSpace(text)
 }
 
 // addSchemes takes the definitions of a piece's cell arrays into the model, of one cell

@@ -2,6 +2,7 @@ package readers
 
 import (
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -25,7 +26,7 @@ func (o *opener) newSet(name string) *pieceSet {
 
 // readSerial reads a data set whose pieces are all in this file.
 func (o *opener) readSerial(x *xmlFile, at branch) error {
-	source := mesh.Source{Path: x.file.path, Bytes: x.file.bytes, Time: math.NaN()}
+	source := x.file.source(x.format(), math.NaN())
 	times, chosen, err := x.pickStep(o.options.Time)
 	if err != nil {
 		return placedAt(x.file, x.data, err)
@@ -94,8 +95,8 @@ func (o *opener) fields(x *xmlFile, source *mesh.Source) ([]*column, error) {
 		if err := x.countField(a, e); err != nil {
 			return nil, err
 		}
-		a.offsets = x.informationText(e, "QUADRATURE_OFFSET_ARRAY_NAME")
-		if err := o.addField(a, source, x.strings(a, e)); err != nil {
+		a.Offsets = x.informationText(e, "QUADRATURE_OFFSET_ARRAY_NAME")
+		if err := o.addField(a, source, x.strings(a)); err != nil {
 			return nil, err
 		}
 		fields = append(fields, a)
@@ -122,6 +123,9 @@ func (x *xmlFile) countField(a *column, e *element) error {
 // addField takes a field array into the model, of one name the first, and the state's
 // time and texts from it.
 func (o *opener) addField(a *column, source *mesh.Source, strings []string) error {
+	if !slices.ContainsFunc(source.Fields, func(other mesh.Array) bool { return other.Name == a.Name }) {
+		source.Fields = append(source.Fields, o.list(a))
+	}
 	_, isKnown := o.fieldNames[a.Name]
 	if !isKnown {
 		o.fieldNames[a.Name] = len(o.model.Fields)

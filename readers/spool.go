@@ -27,10 +27,13 @@ func (o *opener) unpack(f *file) (*file, error) {
 	}
 	packed := io.NewSectionReader(handReader{&o.cursor.hand, f}, 0, f.size)
 	var plain io.Reader
+	packing := ""
 	switch {
 	case bytes.HasPrefix(head, []byte{0x1f, 0x8b}):
+		packing = "gzip"
 		plain, err = gzip.NewReader(packed)
 	case bytes.HasPrefix(head, []byte{0x28, 0xb5, 0x2f, 0xfd}):
+		packing = "zstd"
 		var decoder *zstd.Decoder
 		decoder, err = zstd.NewReader(packed, zstd.WithDecoderConcurrency(1), zstd.WithDecoderMaxWindow(zstdWindow))
 		if err == nil {
@@ -38,6 +41,7 @@ func (o *opener) unpack(f *file) (*file, error) {
 		}
 		plain = decoder
 	case bytes.HasPrefix(head, []byte{0xfd, '7', 'z', 'X', 'Z', 0}):
+		packing = "xz"
 		plain, err = xz.NewReader(packed, lzmaDictionary)
 	default:
 		return f, nil
@@ -47,7 +51,7 @@ func (o *opener) unpack(f *file) (*file, error) {
 	}
 	unpacked, err := o.spool(plain, f.path)
 	if unpacked != nil {
-		unpacked.bytes = f.size
+		unpacked.bytes, unpacked.packing = f.size, packing
 	}
 	return unpacked, err
 }

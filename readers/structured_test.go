@@ -66,7 +66,7 @@ func TestStructuredCells(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
-			c := newCursor(nil, 0)
+			c := newCursor(nil, nil, 0)
 			c.start = []int32{0}
 			g.read(c, g.cellCount()-1, g.cellCount(), false)
 			var got []int64

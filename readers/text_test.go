@@ -14,7 +14,7 @@ import (
 // parseWords parses a text as an array of so many numbers.
 func parseWords(text string, n number, count int) ([]byte, error) {
 	f := &file{path: "text", size: int64(len(text)), content: strings.NewReader(text)}
-	c := newCursor(nil, 1)
+	c := newCursor(nil, nil, 1)
 	a := &column{file: f, number: n}
 	a.Components = 1
 	a.payload = payload{form: textForm, text: newIndex(f, 0, f.size, true)}
@@ -141,7 +141,7 @@ func TestFloatsEqualStrconv(t *testing.T) {
 		a := &column{file: f, number: float64Number}
 		a.Components = 1
 		a.payload = payload{form: textForm, text: newIndex(f, 0, f.size, true)}
-		data, err := a.bytes(newCursor(nil, 1), int64(low)*8, int64(high)*8)
+		data, err := a.bytes(newCursor(nil, nil, 1), int64(low)*8, int64(high)*8)
 		if err != nil {
 			t.Fatal(err)
 		}

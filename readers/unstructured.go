@@ -74,6 +74,11 @@ func (x *xmlFile) arraysOf(p *piece, e *element) error {
 			if !p.keep(a, x.version < 200) {
 				continue
 			}
+			for _, attribute := range attributes {
+				if name, ok := child.get(attribute); ok && name == a.Name {
+					a.Attributes = append(a.Attributes, attribute)
+				}
+			}
 			if on == mesh.OnCell && a.Name == child.attribute("HigherOrderDegrees") && a.Components == 3 {
 				p.degrees = a
 			}

@@ -1,6 +1,7 @@
 package readers
 
 import (
+	"fmt"
 	"strconv"
 	"strings"
 )
@@ -22,6 +23,11 @@ type xmlFile struct {
 	appended       int64 // offset of the first byte of the appended arrays
 	appendedBase64 bool
 	step           string // TimeStep of the arrays that are taken; "" takes all
+}
+
+// format names the form of the file.
+func (x *xmlFile) format() string {
+	return fmt.Sprintf("VTK XML %d.%d, %s", x.version/100, x.version%100, x.kind)
 }
 
 // readXML reads the header: all elements with their attributes, no values.

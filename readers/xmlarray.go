@@ -178,11 +178,29 @@ func (x *xmlFile) fill(a *column, e *element) error {
 		a.Components = max(1, int(components))
 	}
 	a.ComponentNames = componentNames(e, a.Components)
+	a.Information = x.information(e)
 	if a.number == bitNumber || a.number == stringNumber {
-		a.form = emptyForm
-		return nil
+		return x.placeContent(a, e)
 	}
 	return x.place(a, e)
+}
+
+// placeContent finds the bytes of bits and strings.
+func (x *xmlFile) placeContent(a *column, e *element) error {
+	a.form = emptyForm
+	number := uint8Number
+	if a.number == stringNumber {
+		number = int8Number // as text, bytes above 127 are negative
+	}
+	a.content = &column{
+		Array: mesh.Array{Name: a.Name, On: a.On, Type: number.String(), Components: 1},
+		file:  a.file, number: number, start: a.start,
+	}
+	err := x.place(a.content, e)
+	if err == nil && a.number == stringNumber {
+		a.content.Tuples, err = a.content.countTuples(x.cursor)
+	}
+	return err
 }
 
 // place finds the values of an array.

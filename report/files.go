@@ -1,12 +1,11 @@
 package report
 
 import (
-	"bufio"
+	"context"
 	"errors"
 	"fmt"
 	"io"
 	"io/fs"
-	"math/rand/v2"
 	"os"
 	"path/filepath"
 
@@ -34,44 +33,51 @@ func reportFiles(ledger *energy.Ledger) []reportFile {
 }
 
 // WriteFiles writes the ledger to the folder in every form: ledger.json, its tables as
-// CSV with columns.csv, summary.md and requirements.xml. It creates the folder where it
-// is missing, replaces files of these names, and leaves all others alone.
+// CSV with columns.csv, summary.md and requirements.xml, and the annotated results where
+// there are any (nil: none). It creates the folder where it is missing, replaces files of
+// these names, and leaves all others alone.
 //
 // The ledger has to list every cell past its limit (Options.ListAllPastLimit).
 //
 // Each file is written under another name, and they take their own names only when all
 // are complete. An error names the file, and what was there before it is still there.
-func WriteFiles(dir string, ledger *energy.Ledger) error {
+// Errors from reading the results, and ctx's, come as they are.
+func WriteFiles(ctx context.Context, dir string, ledger *energy.Ledger, annotation *Annotation) error {
 	if err := checkAllPastLimit(ledger); err != nil {
 		return err
 	}
-	return writeFiles(dir, reportFiles(ledger))
+	if annotation == nil {
+		return writeFiles(dir, reportFiles(ledger))
+	}
+	err := writeFilesAnd(dir, reportFiles(ledger), func(files *drafts) error { return annotation.write(ctx, ledger, files) })
+	if err == nil {
+		annotation.removeFormer()
+	}
+	return err
 }
 
 // writeFiles writes the files of a report, all of them or none.
 func writeFiles(dir string, files []reportFile) error {
+	return writeFilesAnd(dir, files, func(*drafts) error { return nil })
+}
+
+// writeFilesAnd writes the files of a report and those that more adds, all of them or
+// none.
+func writeFilesAnd(dir string, files []reportFile, more func(*drafts) error) error {
 	if err := os.MkdirAll(dir, 0o777); err != nil {
 		return err
 	}
-	drafts := make([]string, len(files))
-	defer func() {
-		for _, draft := range drafts {
-			os.Remove(draft) // fails where the draft has become the file
-		}
-	}()
-	for i, file := range files {
-		drafts[i] = filepath.Join(dir, fmt.Sprintf(".%s.%08x", file.name, rand.Uint32()))
-		if err := writeFile(drafts[i], file); err != nil {
-			return fmt.Errorf("%s: %w", filepath.Join(dir, file.name), err)
+	drafts := &drafts{}
+	defer drafts.discard()
+	for _, file := range files {
+		if err := drafts.write(filepath.Join(dir, file.name), file.write); err != nil {
+			return err
 		}
 	}
-	for i, file := range files {
-		target := filepath.Join(dir, file.name)
-		if err := os.Rename(drafts[i], target); err != nil {
-			return fmt.Errorf("%s: %w", target, withoutPath(err))
-		}
+	if err := more(drafts); err != nil {
+		return err
 	}
-	return nil
+	return drafts.commit()
 }
 
 // checkAllPastLimit guards against a list of the cells past their limit that is not the
@@ -87,20 +93,6 @@ func checkAllPastLimit(ledger *energy.Ledger) error {
 		return fmt.Errorf("past-limit.csv: the accounts count %d cells past their limit, but %d are listed", count, listed)
 	}
 	return nil
-}
-
-// writeFile creates the file, which must not exist.
-func writeFile(path string, file reportFile) error {
-	out, err := os.OpenFile(path, os.O_WRONLY|os.O_CREATE|os.O_EXCL, 0o666)
-	if err != nil {
-		return withoutPath(err)
-	}
-	buffer := bufio.NewWriter(out)
-	err = file.write(buffer)
-	if err == nil {
-		err = buffer.Flush()
-	}
-	return withoutPath(errors.Join(err, out.Close()))
 }
 
 // withoutPath returns why a file operation failed, without the name it was tried under.

@@ -1,8 +1,10 @@
 package report
 
 import (
+	"context"
 	"encoding/xml"
 	"errors"
+	"io"
 	"math"
 	"os"
 	"path/filepath"
@@ -29,7 +31,7 @@ func folder(t *testing.T, dir string) []string {
 
 func TestWriteFilesCreatesTheFolder(t *testing.T) {
 	dir := filepath.Join(t.TempDir(), "new", "folder")
-	if err := WriteFiles(dir, bracket()); err != nil {
+	if err := WriteFiles(context.Background(), dir, bracket(), nil); err != nil {
 		t.Fatal(err)
 	}
 	want := []string{
@@ -48,7 +50,7 @@ func TestWriteFilesReplacesItsOwnAlone(t *testing.T) {
 			t.Fatal(err)
 		}
 	}
-	if err := WriteFiles(dir, bracket()); err != nil {
+	if err := WriteFiles(context.Background(), dir, bracket(), nil); err != nil {
 		t.Fatal(err)
 	}
 	mine, err := os.ReadFile(filepath.Join(dir, "mine.txt"))
@@ -87,7 +89,7 @@ func TestWriteFilesLeavesNothingHalfWritten(t *testing.T) {
 			}
 			ledger := bracket()
 			test.prepare(t, dir, ledger)
-			err := WriteFiles(dir, ledger)
+			err := WriteFiles(context.Background(), dir, ledger, nil)
 			if err == nil || !strings.Contains(err.Error(), test.want) {
 				t.Errorf("the error is %v, want one with %q", err, test.want)
 			}
@@ -107,7 +109,7 @@ func TestWriteFilesNamesWhatStandsInTheWay(t *testing.T) {
 	if err := os.MkdirAll(filepath.Join(target, "inside"), 0o777); err != nil {
 		t.Fatal(err)
 	}
-	err := WriteFiles(dir, bracket())
+	err := WriteFiles(context.Background(), dir, bracket(), nil)
 	if err == nil || !strings.HasPrefix(err.Error(), target+": ") {
 		t.Errorf("the error is %v, want one that starts with %s", err, target)
 	}
@@ -121,17 +123,17 @@ func TestWriteFilesNamesWhatStandsInTheWay(t *testing.T) {
 	if err := os.WriteFile(file, nil, 0o666); err != nil {
 		t.Fatal(err)
 	}
-	if err := WriteFiles(file, bracket()); !errors.Is(err, syscall.ENOTDIR) || !strings.Contains(err.Error(), file) {
+	if err := WriteFiles(context.Background(), file, bracket(), nil); !errors.Is(err, syscall.ENOTDIR) || !strings.Contains(err.Error(), file) {
 		t.Errorf("the error is %v, want one that names %s", err, file)
 	}
 }
 
 // A file that cannot be created names itself, not its draft.
 func TestWriteFilesWhereNothingCanBeCreated(t *testing.T) {
-	long := filepath.Join(t.TempDir(), "f")
-	err := writeFile(filepath.Join(long, "missing", "draft"), reportFiles(bracket())[0])
-	if !errors.Is(err, syscall.ENOENT) || strings.Contains(err.Error(), "draft") {
-		t.Errorf("the error is %v, want the reason alone", err)
+	target := filepath.Join(t.TempDir(), "f", "missing", "ledger.json")
+	err := (&drafts{}).write(target, func(to io.Writer) error { return JSON(to, bracket()) })
+	if !errors.Is(err, syscall.ENOENT) || err.Error() != target+": "+syscall.ENOENT.Error() {
+		t.Errorf("the error is %v, want the file and the reason alone", err)
 	}
 }
 

@@ -2,6 +2,7 @@ package report
 
 import (
 	"bytes"
+	"context"
 	"flag"
 	"os"
 	"path/filepath"
@@ -66,7 +67,7 @@ func TestFilesAgainstGolden(t *testing.T) {
 	for name, ledger := range ledgers {
 		t.Run(name, func(t *testing.T) {
 			dir := t.TempDir()
-			if err := WriteFiles(dir, ledger()); err != nil {
+			if err := WriteFiles(context.Background(), dir, ledger(), nil); err != nil {
 				t.Fatal(err)
 			}
 			for _, file := range reportFiles(ledger()) {

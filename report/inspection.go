@@ -46,6 +46,7 @@ func inspectionSections(file *energy.InspectedFile) []section {
 func contentSection(file *energy.InspectedFile) section {
 	t := &table{columns: []column{{kind: word}, {kind: prose}}}
 	t.add("format", file.Format)
+	t.add("bytes", grouped(energy.Number(file.Bytes)))
 	t.add("points", grouped(energy.Number(file.Points)))
 	t.add("cells", grouped(energy.Number(file.Cells)))
 	t.add("times", statesWords(file.Times))
@@ -106,6 +107,7 @@ func arraysSection(arrays []energy.InspectedArray) section {
 		{kind: name, heading: "array"},
 		{kind: word, heading: "on"},
 		{kind: word, heading: "type"},
+		{kind: word, heading: "stored"},
 		{kind: number, heading: "components"},
 		{kind: number, heading: "tuples"},
 		{kind: number, heading: "finite"},
@@ -119,6 +121,7 @@ func arraysSection(arrays []energy.InspectedArray) section {
 			array.Name,
 			array.On,
 			array.Type,
+			string(array.Coding),
 			grouped(energy.Number(array.Components)),
 			grouped(energy.Number(array.Tuples)),
 			inCounts.text(array.Finite),

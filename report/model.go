@@ -57,10 +57,8 @@ func modelSection(ledger *energy.Ledger) section {
 	if words := loadingWords(ledger.Model.Loading); words != "" {
 		t.add("loading", words)
 	}
-	for _, field := range fieldsOf(&ledger.Fields) {
-		if field.used != nil {
-			t.add(field.name, fieldWords(field.used))
-		}
+	for _, field := range ledger.Fields.Taken() {
+		t.add(field.Name, fieldWords(field.FieldUsed))
 	}
 	return newSection("How they were read", t)
 }
@@ -145,26 +143,6 @@ func unitWords(units *energy.UnitLabels) string {
 		return strings.Join(named, ", ")
 	}
 	return strings.Join(named, ", ") + "; not stated: " + strings.Join(unnamed, ", ")
-}
-
-// A namedField is one of the ledger's fields with its name for people.
-type namedField struct {
-	name string
-	used *energy.FieldUsed
-}
-
-func fieldsOf(fields *energy.FieldsUsed) []namedField {
-	return []namedField{
-		{"stress", fields.Stress},
-		{"strain", fields.Strain},
-		{"thermal strain", fields.ThermalStrain},
-		{"plastic strain", fields.PlasticStrain},
-		{"equivalent plastic strain", fields.EquivalentPlasticStrain},
-		{"displacement", fields.Displacement},
-		{"temperature", fields.Temperature},
-		{"nodal force", fields.NodalForce},
-		{"element number", fields.ElementID},
-	}
 }
 
 // fieldWords says in one line what an array was taken for and how that was decided.

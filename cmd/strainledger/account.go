@@ -69,12 +69,20 @@ func (p *program) account(ctx context.Context, opened *results, a *account, opti
 		return nil, err
 	}
 	p.detail(a, options, "headers of %d cells read in %.3f s", model.CellCount(), time.Since(started).Seconds())
+	workers := workerCount(options.workers)
+	var annotation *report.Annotation
+	if a.out != "" {
+		if annotation, err = report.NewAnnotation(a.out, model, workers); err != nil {
+			return nil, &reportError{err}
+		}
+		defer annotation.Close()
+		settings.Columns = annotation.Columns()
+	}
 	ledger, err := p.tallyModel(ctx, model, &settings, options)
 	if err != nil {
 		return nil, atFiles(err, a.study)
 	}
 	p.detail(a, options, "energy of %d cells computed after %.3f s", ledger.Total.Cells, time.Since(started).Seconds())
-	workers := workerCount(options.workers)
 	hash := options.hash || a.out != ""
 	if hash {
 		if err := hashSources(ctx, ledger.Sources, workers, opened.disk); err != nil {
@@ -98,7 +106,7 @@ func (p *program) account(ctx context.Context, opened *results, a *account, opti
 		Workers: workers,
 	}
 	p.fieldDetails(a, options, &ledger.Fields)
-	return ledger, p.writeFiles(ledger, a, options)
+	return ledger, p.writeFiles(ctx, ledger, annotation, a, options)
 }
 
 // tallyModel computes the ledger, with a bar where somebody watches.
@@ -112,13 +120,19 @@ func (p *program) tallyModel(ctx context.Context, model *mesh.Model, settings *e
 }
 
 // writeFiles writes the reports of an account to its folder.
-func (p *program) writeFiles(ledger *energy.Ledger, a *account, options *tallyOptions) error {
+func (p *program) writeFiles(ctx context.Context, ledger *energy.Ledger, annotation *report.Annotation, a *account, options *tallyOptions) error {
 	if a.out == "" {
 		return nil
 	}
-	if err := report.WriteFiles(a.out, ledger); err != nil {
+	started := time.Now()
+	err := report.WriteFiles(ctx, a.out, ledger, annotation)
+	if place := new(readers.Error); errors.As(err, &place) {
+		return err // the results were read once more
+	}
+	if err != nil {
 		return &reportError{err}
 	}
+	p.detail(a, options, "reports written in %.3f s", time.Since(started).Seconds())
 	if !options.quiet {
 		p.message("%s; reports are in %s", report.Summarise(ledger).Verdict, a.out)
 	}
@@ -188,8 +202,8 @@ func (p *program) detail(a *account, options *tallyOptions, format string, value
 
 // fieldDetails says which array was taken for what and why.
 func (p *program) fieldDetails(a *account, options *tallyOptions, fields *energy.FieldsUsed) {
-	for _, field := range namedFields(fields) {
-		p.detail(a, options, "%s", field.sentence())
+	for _, field := range fields.Taken() {
+		p.detail(a, options, "%s", fieldSentence(&field))
 	}
 }
 

@@ -48,6 +48,7 @@ func exitCode(err error) int {
 		faults      study.Faults
 		asked       *energy.StudyError
 		unwritten   *reportError
+		column      *energy.ColumnError
 	)
 	switch {
 	case err == nil:
@@ -61,7 +62,7 @@ func exitCode(err error) int {
 		return codeDone
 	case errors.As(err, &call), errors.As(err, &faults), errors.As(err, &asked):
 		return codeWrongCall
-	case errors.As(err, &unwritten):
+	case errors.As(err, &unwritten), errors.As(err, &column):
 		return codeNotWritten
 	}
 	return codeUnusable

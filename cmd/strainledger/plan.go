@@ -90,8 +90,8 @@ func (r *plannedRun) text() string {
 		line("file     %s: %d points, %d cells%s", file.Path, file.Points, file.Cells, state)
 	}
 	line("energy   from %s", r.From)
-	for _, field := range namedFields(&r.Fields) {
-		line("field    %s", field.sentence())
+	for _, field := range r.Fields.Taken() {
+		line("field    %s", fieldSentence(&field))
 	}
 	for _, region := range r.Regions {
 		material, limit := "no material", "no limit"
@@ -114,51 +114,28 @@ func (r *plannedRun) text() string {
 	return text.String()
 }
 
-// A namedField is a field with the array that was taken for it.
-type namedField struct {
-	name string
-	used *energy.FieldUsed
-}
-
-// namedFields returns the fields that are used, in the ledger's order.
-func namedFields(fields *energy.FieldsUsed) []namedField {
-	var used []namedField
-	for _, field := range []namedField{
-		{"stress", fields.Stress},
-		{"strain", fields.Strain},
-		{"thermal strain", fields.ThermalStrain},
-		{"plastic strain", fields.PlasticStrain},
-		{"equivalent plastic strain", fields.EquivalentPlasticStrain},
-		{"displacement", fields.Displacement},
-		{"temperature", fields.Temperature},
-		{"nodal force", fields.NodalForce},
-		{"element number", fields.ElementID},
-	} {
-		if field.used != nil {
-			used = append(used, field)
-		}
+// fieldSentence says which array was taken for the field, how it is read, and why.
+func fieldSentence(f *energy.NamedField) string {
+	place := f.On
+	if place == "integration" {
+		place = "integration point"
 	}
-	return used
-}
-
-// sentence says which array was taken for the field, how it is read, and why.
-func (f namedField) sentence() string {
-	parts := []string{fmt.Sprintf("%s: array %q, one value for each %s", f.name, f.used.Array, f.used.On)}
+	parts := []string{fmt.Sprintf("%s: array %q, one value for each %s", f.Name, f.Array, place)}
 	for _, part := range []struct {
 		words string
 		value energy.Text
-	}{{"order", f.used.Order}, {"shear", f.used.Shear}, {"kind", f.used.Kind}, {"positive in", f.used.Sign}} {
+	}{{"order", f.Order}, {"shear", f.Shear}, {"kind", f.Kind}, {"positive in", f.Sign}} {
 		if part.value != "" {
 			parts = append(parts, part.words+" "+string(part.value))
 		}
 	}
-	if f.used.DecidedBy == "default" {
+	if f.DecidedBy == "default" {
 		parts = append(parts, "decided by default")
 	} else {
-		parts = append(parts, "decided by the "+f.used.DecidedBy)
+		parts = append(parts, "decided by the "+f.DecidedBy)
 	}
-	if f.used.Why != "" {
-		parts = append(parts, f.used.Why)
+	if f.Why != "" {
+		parts = append(parts, f.Why)
 	}
 	return strings.Join(parts, ", ")
 }
