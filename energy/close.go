@@ -122,7 +122,7 @@ func (p *plan) materials() []MaterialUsed {
 		m := &p.options.Materials[i]
 		isUsed := slices.ContainsFunc(p.regions.regions, func(r region) bool { return r.material == m })
 		if isUsed {
-			list = append(list, m.used())
+			list = append(list, m.used(p.options.Idealisation))
 		}
 	}
 	return list

@@ -70,6 +70,9 @@ func (c *conversion) apply(ledger *Ledger, units UnitLabels) *Ledger {
 	for i := range ledger.Hotspots {
 		converted.Hotspots[i] = c.hotspot(&ledger.Hotspots[i])
 	}
+	if centre := ledger.AtCentre; centre != nil {
+		converted.AtCentre = &AtCentre{*c.place(&centre.At), centre.Singular, c.surroundings(&centre.Surroundings)}
+	}
 	converted.Balance = c.balance(ledger.Balance)
 	return &converted
 }
@@ -107,6 +110,10 @@ func (c *conversion) material(material *MaterialUsed) MaterialUsed {
 		}
 	}
 	converted.YieldStress *= c.stress
+	converted.ControlRadius *= c.length
+	converted.CriticalDensity *= c.stress // the material's, whatever the load
+	converted.FractureToughness *= c.stress * Number(math.Sqrt(float64(c.length)))
+	converted.TensileStrength *= c.stress
 	return converted
 }
 
@@ -148,12 +155,30 @@ func (c *conversion) hotspot(hotspot *Hotspot) Hotspot {
 	converted.Energy *= c.energy()
 	converted.Volume *= c.volume()
 	converted.EquivalentStress *= c.stress
+	converted.MeanDensity *= c.density()
+	converted.EnergyAt = c.place(hotspot.EnergyAt)
+	converted.Principal1 *= c.stress
+	converted.Principal2 *= c.stress
+	converted.Principal3 *= c.stress
+	converted.Surroundings = c.surroundings(&hotspot.Surroundings)
 	if hotspot.LocalEstimate != nil {
 		estimate := *hotspot.LocalEstimate
 		estimate.Neuber.Stress *= c.stress
 		estimate.EnergyDensity.Stress *= c.stress
 		converted.LocalEstimate = &estimate
 	}
+	return converted
+}
+
+func (c *conversion) surroundings(s *Surroundings) Surroundings {
+	converted := *s
+	converted.BallRadius *= c.length
+	converted.BallVolume *= c.volume()
+	converted.AveragedDensity *= c.density()
+	converted.ControlRadius *= c.length
+	converted.ControlVolume *= c.volume()
+	converted.ControlDensity *= c.density()
+	converted.AveragedDensityRatio /= c.load
 	return converted
 }
 

@@ -18,9 +18,16 @@ var dimensions = map[string][4]float64{
 
 	"hotspot.at": {1, 0, 0, 0}, "hotspot.density": {0, 1, 0, -2}, "hotspot.peak_density": {0, 1, 0, -2},
 	"hotspot.energy": {3, 1, 0, -2}, "hotspot.volume": {3, 0, 0, 0}, "hotspot.equivalent_stress": {0, 1, 0, 0},
+	"hotspot.mean_density": {0, 1, 0, -2}, "hotspot.energy_at": {1, 0, 0, 0},
+	"hotspot.principal_1": {0, 1, 0, 0}, "hotspot.principal_2": {0, 1, 0, 0}, "hotspot.principal_3": {0, 1, 0, 0},
+	"around.ball_radius": {1, 0, 0, 0}, "around.ball_volume": {3, 0, 0, 0}, "around.averaged_density": {0, 1, 0, -2},
+	"around.control_radius": {1, 0, 0, 0}, "around.control_volume": {3, 0, 0, 0}, "around.control_density": {0, 1, 0, -2},
+	"around.averaged_density_ratio": {0, 0, 0, -2},
 
 	"material.youngs_modulus": {0, 1, 0, 0}, "material.proportional_limit": {0, 1, 0, 0},
 	"material.proportional_limit_compression": {0, 1, 0, 0}, "material.density": {-3, 0, 1, 0}, "material.yield_stress": {0, 1, 0, 0},
+	"material.control_radius": {1, 0, 0, 0}, "material.critical_density": {0, 1, 0, 0},
+	"material.fracture_toughness": {0.5, 1, 0, 0}, "material.tensile_strength": {0, 1, 0, 0},
 	"material.youngs_moduli": {0, 1, 0, 0}, "material.shear_moduli": {0, 1, 0, 0}, "material.stiffness": {0, 1, 0, 0},
 	"estimate.stress": {0, 1, 0, 0},
 
@@ -99,6 +106,9 @@ func TestConversionOfEveryNumber(t *testing.T) {
 	ledger.Hotspots[1].LocalEstimate = &LocalEstimate{Refused: "no"}
 	fill(reflect.ValueOf(&ledger.Hotspots[1].LocalEstimate.Neuber).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Hotspots[1].LocalEstimate.EnergyDensity).Elem(), &next)
+	fill(reflect.ValueOf(&ledger.Hotspots[1].Surroundings).Elem(), &next)
+	ledger.AtCentre = &AtCentre{At: Vector{1, -2, 3}}
+	fill(reflect.ValueOf(&ledger.AtCentre.Surroundings).Elem(), &next)
 	ledger.Balance = &Balance{Parts: make([]Elsewhere, 2)}
 	fill(reflect.ValueOf(ledger.Balance).Elem(), &next)
 	fill(reflect.ValueOf(&ledger.Balance.Parts[1]).Elem(), &next)
@@ -114,6 +124,11 @@ func TestConversionOfEveryNumber(t *testing.T) {
 	checkConverted(t, "", ledger.Total, got.Total, factors)
 	checkConverted(t, "", ledger.Regions[1].Account, got.Regions[1].Account, factors)
 	checkConverted(t, "hotspot.", ledger.Hotspots[1], got.Hotspots[1], factors)
+	checkConverted(t, "around.", ledger.Hotspots[1].Surroundings, got.Hotspots[1].Surroundings, factors)
+	checkConverted(t, "around.", ledger.AtCentre.Surroundings, got.AtCentre.Surroundings, factors)
+	if at := got.AtCentre.At; !near(at, Vector{25.4, -50.8, 76.2}) {
+		t.Errorf("the centre is %v", at)
+	}
 	before, after := ledger.Hotspots[1].LocalEstimate, got.Hotspots[1].LocalEstimate
 	checkConverted(t, "estimate.", before.Neuber, after.Neuber, factors)
 	checkConverted(t, "estimate.", before.EnergyDensity, after.EnergyDensity, factors)

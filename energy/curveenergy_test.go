@@ -30,7 +30,7 @@ func TestMaterialTakesItsCurve(t *testing.T) {
 	if given.YoungsModulus != 71000 || given.ProportionalLimit != 200 || given.Source != "stated" {
 		t.Errorf("given values were overwritten: %+v", given)
 	}
-	if used := m.used(); used.Curve != "m05.csv" || used.ProportionalLimitBy != "offset-0.01%" {
+	if used := m.used(Solid); used.Curve != "m05.csv" || used.ProportionalLimitBy != "offset-0.01%" {
 		t.Errorf("used %+v", used)
 	}
 }

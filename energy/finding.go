@@ -41,6 +41,7 @@ var severities = map[string]string{
 	"array-not-everywhere":   Warning,
 	"node-order":             Warning,
 	"hotspot-pool":           Warning,
+	"averaged-density":       Note,
 
 	"error-not-estimated":     Warning,
 	"hotspot-mesh-too-coarse": Warning,

@@ -25,8 +25,8 @@ func (p *plan) newPool() *pool {
 	return newPool(count, p.model.CellCount(), len(p.regions.regions), p.by != "density")
 }
 
-// fillHotspots lays out the list of hotspots.
-func (p *plan) fillHotspots(ledger *Ledger, total *part) {
+// chooseHotspots finds the hotspots of the list and orders them.
+func (p *plan) chooseHotspots(total *part) {
 	pool := total.pool
 	pool.trim()
 	peaks := p.findPeaks(total)
@@ -43,9 +43,19 @@ func (p *plan) fillHotspots(ledger *Ledger, total *part) {
 		ranked[i] = rankedIndex{key, c.place, int32(i)}
 	}
 	slices.SortFunc(ranked, compareRanked)
-	ledger.Hotspots = []Hotspot{}
 	for _, entry := range ranked[:min(len(ranked), p.hotspotCount)] {
-		ledger.Hotspots = append(ledger.Hotspots, p.hotspot(ledger, pool, &peaks[entry.index], len(ledger.Hotspots)+1))
+		total.hotspots = append(total.hotspots, peaks[entry.index])
+	}
+}
+
+// fillHotspots lays out the list of hotspots.
+func (p *plan) fillHotspots(ledger *Ledger, total *part) {
+	ledger.Hotspots = []Hotspot{}
+	for i := range total.hotspots {
+		ledger.Hotspots = append(ledger.Hotspots, p.hotspot(ledger, total.pool, &total.hotspots[i], i+1))
+	}
+	if total.centre != nil {
+		ledger.AtCentre = &AtCentre{At: *p.options.Hotspots.Centre, Singular: Text(total.centre.tag), Surroundings: total.centre.lay()}
 	}
 }
 
@@ -57,7 +67,7 @@ func (p *plan) findPeaks(total *part) []peak {
 	if p.options.Hotspots.SingleCells {
 		for i := range pool.cells {
 			if key := pool.keys[i]; !math.IsNaN(key) {
-				peaks = append(peaks, peak{int32(i), math.NaN(), []int32{int32(i)}})
+				peaks = append(peaks, peak{cell: int32(i), prominence: math.NaN(), members: []int32{int32(i)}})
 			}
 		}
 		return peaks
@@ -91,6 +101,7 @@ func (p *plan) hotspot(ledger *Ledger, pool *pool, found *peak, rank int) Hotspo
 		At: &at, Density: Number(c.density), PeakDensity: Number(c.peak), Energy: None, EnergyShare: None, Volume: None, Cells: None,
 		Prominence: Number(found.prominence), EquivalentStress: Number(c.equivalent), Utilisation: Number(c.limitShare),
 		RegionShare: None, MeanDensity: None, ErrorToTarget: None,
+		Singular: Text(found.around.tag), Surroundings: found.around.lay(),
 	}
 	entry.LoadFactor = LoadFactor(p.regions.regions[c.region].limit.criterion, entry.Utilisation)
 	entry.StressMargin = entry.LoadFactor - 1

@@ -18,6 +18,7 @@ type Ledger struct {
 	Repeated     *Repeated           `json:"repeated"`
 	Regions      []RegionAccount     `json:"regions"`
 	Hotspots     []Hotspot           `json:"hotspots"`
+	AtCentre     *AtCentre           `json:"at_centre"` // nil where the study states none
 	PastLimit    PastLimit           `json:"past_limit"`
 	Excluded     []Exclusion         `json:"excluded"`
 	Findings     []Finding           `json:"findings"`
@@ -168,6 +169,11 @@ type MaterialUsed struct {
 
 	YieldStress       Number `json:"yield_stress"`
 	HardeningExponent Number `json:"hardening_exponent"`
+
+	ControlRadius     Number `json:"control_radius"`
+	CriticalDensity   Number `json:"critical_density"`
+	FractureToughness Number `json:"fracture_toughness"`
+	TensileStrength   Number `json:"tensile_strength"`
 }
 
 // A Vector is a place or a direction in the model's axes: x, y, z.
@@ -290,7 +296,35 @@ type Hotspot struct {
 	Principal3          Number  `json:"principal_3"`
 	Principal3Direction *Vector `json:"principal_3_direction"`
 
+	Surroundings
+
 	LocalEstimate *LocalEstimate `json:"local_estimate"`
+}
+
+// Surroundings says what lies about a place: the mean density of the ball of the study's
+// radius about it, and of the ball of its material's control radius; and what the profile
+// of density tells. Cells count that are of its material. Numbers are null where no radius
+// is stated, or no quadrature point is inside.
+type Surroundings struct {
+	BallRadius           Number `json:"ball_radius"`
+	BallVolume           Number `json:"ball_volume"` // of the cells' parts in it
+	BallCells            Number `json:"ball_cells"`  // that have a part in it
+	AveragedDensity      Number `json:"averaged_density"`
+	Eigenvalue           Number `json:"eigenvalue"`        // λ of density ~ r^(2λ-2) about the place
+	EigenvalueSpread     Number `json:"eigenvalue_spread"` // how far it moves with a third of its cells left out
+	ControlRadius        Number `json:"control_radius"`
+	ControlVolume        Number `json:"control_volume"`
+	ControlDensity       Number `json:"control_density"`
+	AveragedDensityRatio Number `json:"averaged_density_ratio"` // control density over the material's critical density
+}
+
+// AtCentre is what lies about the place that the study states. Cells of all materials
+// count in its ball; its control radius is that of the material of the nearest cell, of
+// which cells count there.
+type AtCentre struct {
+	At       Vector `json:"at"`
+	Singular Text   `json:"singular"`
+	Surroundings
 }
 
 // A HotspotCell is one cell of a hotspot.

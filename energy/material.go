@@ -16,7 +16,11 @@ type Material struct {
 	ProportionalLimitCompression float64 // for MaxPrincipal; absent: as in tension
 	YieldStress                  float64 // with HardeningExponent at 0.2 % plastic strain; alone that of a perfectly plastic material
 	HardeningExponent            float64 // n of Ramberg and Osgood
-	Source                       string  // where the limit comes from
+	ControlRadius                float64 // of the ball over which the density of a brittle material is averaged,
+	CriticalDensity              float64 // and the density there at which it breaks; absent: from the next two
+	FractureToughness            float64 // K_c, in units of stress times the root of the model's length
+	TensileStrength              float64
+	Source                       string // where the limit comes from
 	Density                      float64
 	ThermalExpansion             float64
 	ReferenceTemperature         float64
@@ -72,7 +76,8 @@ func NewMaterial(name string) Material {
 	none := float64(None)
 	return Material{
 		Name: name, YoungsModulus: none, PoissonsRatio: none, ProportionalLimit: none,
-		ProportionalLimitCompression: none, YieldStress: none, HardeningExponent: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
+		ProportionalLimitCompression: none, YieldStress: none, HardeningExponent: none,
+		ControlRadius: none, CriticalDensity: none, FractureToughness: none, TensileStrength: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
 	}
 }
 
@@ -120,7 +125,7 @@ func (m *Material) lawName() string {
 }
 
 // used returns the values of the material as the ledger gives them.
-func (m *Material) used() MaterialUsed {
+func (m *Material) used(idealisation Idealisation) MaterialUsed {
 	used := MaterialUsed{
 		Name: m.Name, Law: m.lawName(), YoungsModulus: Number(m.YoungsModulus), PoissonsRatio: Number(m.PoissonsRatio),
 		ProportionalLimit: Number(m.ProportionalLimit), ProportionalLimitCompression: Number(m.ProportionalLimitCompression),
@@ -128,6 +133,8 @@ func (m *Material) used() MaterialUsed {
 		ReferenceTemperature: Number(m.ReferenceTemperature), Source: Text(m.Source),
 		YoungsModuli: m.YoungsModuli, ShearModuli: m.ShearModuli, PoissonsRatios: m.PoissonsRatios,
 		Stiffness: m.Stiffness, YieldStress: Number(m.YieldStress), HardeningExponent: Number(m.HardeningExponent),
+		ControlRadius: Number(m.controlRadius(idealisation)), CriticalDensity: Number(m.criticalDensity()),
+		FractureToughness: Number(m.FractureToughness), TensileStrength: Number(m.TensileStrength),
 	}
 	switch {
 	case m.AxesArray != "":

@@ -136,6 +136,8 @@ type HotspotOptions struct {
 	Prominence  float64 // share by which density falls around a peak, above 0 and below 1; 0: 0.2
 	SingleCells bool    // list single cells, not the peaks of density
 	Pool        int     // densest cells among which peaks are looked for; 0: 16,384
+	Radius      float64 // of the balls over which density is averaged; 0: not stated
+	Centre      *Vector // of one more such ball; nil: none
 }
 
 // ErrorOptions asks for an estimate of what the mesh leaves out.

@@ -85,9 +85,12 @@ type part struct {
 	negative             [2048]int64
 	hasStress, hasStrain bool // some value that is not 0 was seen
 
-	pool  *pool // common to all parts of a run
-	worst ranking
-	past  []candidate // every cell past its limit, where asked for
+	pool     *pool         // common to all parts of a run, from which come
+	hotspots []peak        // those of the list, by rank
+	centre   *surroundings // what lies about the study's centre; nil: none
+	boxes    []chunkBox    // of the chunks, where balls are looked into
+	worst    ranking
+	past     []candidate // every cell past its limit, where asked for
 
 	lower     lowerCells
 	strained  int64   // cells with a principal strain above largeStrain
@@ -131,6 +134,7 @@ func (p *part) join(other *part) {
 	}
 	p.hasStress = p.hasStress || other.hasStress
 	p.hasStrain = p.hasStrain || other.hasStrain
+	p.boxes = append(p.boxes, other.boxes...)
 	p.worst.join(&other.worst)
 	p.past = append(p.past, other.past...)
 	p.lower.join(&other.lower)

@@ -8,6 +8,7 @@ type peak struct {
 	cell       int32
 	prominence float64 // share by which density falls before a higher peak is met
 	members    []int32 // the hotspot's cells; nil where the pool does not hold all
+	around     surroundings
 }
 
 // peaks returns the peaks from which density falls by at least the given share before a

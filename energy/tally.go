@@ -48,6 +48,10 @@ func Tally(ctx context.Context, model *mesh.Model, options *Options, done *atomi
 	for _, w := range workers {
 		total.join(w.part)
 	}
+	p.chooseHotspots(total)
+	if err := p.lookAround(ctx, walk, total); err != nil {
+		return nil, err
+	}
 	if err := p.findUnaccounted(ctx, walk, total); err != nil {
 		return nil, err
 	}

@@ -84,6 +84,10 @@ func (w *worker) visit(chunk *mesh.Chunk) error {
 	}
 	w.gather(chunk)
 	w.fillPool(chunk)
+	if w.looksAround() {
+		low := chunk.First - w.model.Pieces[chunk.Piece].FirstCell
+		w.part.boxes = append(w.part.boxes, chunkBox{mesh.Span{Piece: chunk.Piece, Low: low, High: low + int64(chunk.Count)}, chunk.Bounds()})
+	}
 	if w.options.Columns != nil {
 		return w.writeColumns(chunk)
 	}
@@ -318,13 +322,7 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 	for q, element := range elements {
 		values := w.cell.Values(rule, q, w.rational)
 		var stress, strain mesh.SymmetricTensor
-		for k, value := range values {
-			s, e := &w.stress[k], &w.strain[k]
-			for c := range stress {
-				stress[c] += float64(value * s[c])
-				strain[c] += float64(value * e[c])
-			}
-		}
+		w.interpolate(values, &stress, &strain)
 		energy += float64(Density(&stress, &strain) * element)
 		volumetric += float64(VolumetricDensity(&stress, &strain) * element)
 		if r.hencky != nil {
@@ -337,6 +335,18 @@ func (w *worker) integrate(chunk *mesh.Chunk, i int, r *region, orientation mesh
 	w.volumetric[i] = 0
 	if w.law.IsIsotropic() {
 		w.volumetric[i] = volumetric * factor
+	}
+}
+
+// interpolate adds to stress and elastic strain their nodal values times those of the
+// shape functions.
+func (w *worker) interpolate(values []float64, stress, strain *mesh.SymmetricTensor) {
+	for k, value := range values {
+		s, e := &w.stress[k], &w.strain[k]
+		for c := range stress {
+			stress[c] += float64(value * s[c])
+			strain[c] += float64(value * e[c])
+		}
 	}
 }
 

@@ -233,3 +233,12 @@ func (c *Cell) Gradients(t *Tabulation, point int, to [][3]float64) (jacobianDet
 	}
 	return d
 }
+
+// Bounds returns the box that holds the cell's nodes.
+func (c *Cell) Bounds() Bounds {
+	bounds := emptyBounds()
+	for _, node := range c.Nodes {
+		bounds.add(c.Points[3*int(node):][:3])
+	}
+	return bounds
+}

@@ -237,3 +237,12 @@ func (c *Chunk) Cell(i int, to *Cell) {
 		to.Faces = c.Faces[c.FaceStart[i]:c.FaceStart[i+1]]
 	}
 }
+
+// Bounds returns the box that holds the nodes of all cells of the chunk.
+func (c *Chunk) Bounds() Bounds {
+	bounds := emptyBounds()
+	for _, node := range c.Nodes {
+		bounds.add(c.Points[3*int(node):][:3])
+	}
+	return bounds
+}

@@ -107,6 +107,17 @@ func (b *Bounds) Diagonal() float64 {
 	return math.Sqrt(float64(x*x) + float64(y*y) + float64(z*z))
 }
 
+// Distance returns how far a place is from the box, 0 within it; infinite where the box is
+// empty.
+func (b *Bounds) Distance(place [3]float64) float64 {
+	var square float64
+	for axis, x := range place {
+		outside := max(b.Low[axis]-x, x-b.High[axis], 0)
+		square += float64(outside * outside)
+	}
+	return math.Sqrt(square)
+}
+
 // add widens the box by points x y z x y z ...
 func (b *Bounds) add(points []float64) {
 	for i := 0; i+2 < len(points); i += 3 {

@@ -421,3 +421,19 @@ func compareFields(t *testing.T, written, given []mesh.Array, one, other mesh.Cu
 		}
 	}
 }
+
+// Every cell of a hotspot carries its rank, the lowest where hotspots share it; of one
+// whose cells are not known the peak's does.
+func TestEveryCellOfAHotspotIsMarked(t *testing.T) {
+	got := hotspotCells(&energy.Ledger{
+		Hotspots: []energy.Hotspot{{Rank: 1, Cell: 7}, {Rank: 2, Cell: 3}, {Rank: 3, Source: 1, Cell: 2}},
+		HotspotCells: []energy.HotspotCell{
+			{Cell: 7, Rank: 1}, {Cell: 8, Rank: 1}, {Cell: 4, Rank: 1},
+			{Cell: 3, Rank: 2}, {Cell: 4, Rank: 2}, {Source: 1, Cell: 0, Rank: 2},
+		},
+	})
+	want := []hotspotCell{{0, 3, 2}, {0, 4, 1}, {0, 7, 1}, {0, 8, 1}, {1, 0, 2}, {1, 2, 3}}
+	if !slices.Equal(got, want) {
+		t.Errorf("source, cell and rank %v, want %v", got, want)
+	}
+}

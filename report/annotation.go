@@ -186,11 +186,14 @@ type hotspotCell struct {
 }
 
 // hotspotCells lists the cells of all hotspots by source and cell; of a cell in several
-// the lowest rank.
+// the lowest rank. Of a hotspot whose cells are not all known there is the peak's.
 func hotspotCells(ledger *energy.Ledger) []hotspotCell {
 	var list []hotspotCell
 	for _, hotspot := range ledger.Hotspots {
 		list = append(list, hotspotCell{hotspot.Source, hotspot.Cell, int32(hotspot.Rank)})
+	}
+	for _, cell := range ledger.HotspotCells {
+		list = append(list, hotspotCell{cell.Source, cell.Cell, int32(cell.Rank)})
 	}
 	slices.SortFunc(list, func(a, b hotspotCell) int {
 		return cmp.Or(a.compare(&b), cmp.Compare(a.rank, b.rank))

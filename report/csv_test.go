@@ -158,7 +158,8 @@ func TestCSVHeadingsWithoutRows(t *testing.T) {
 	for _, test := range []struct{ file, want string }{
 		{"hotspots.csv", "rank,region,cell,source,element_id,at_x,at_y,at_z,density,peak_density,energy,energy_share,volume,cells,prominence,equivalent_stress,utilisation,past_limit,singular,stress_margin,load_factor,error_to_target,region_share,mean_density,energy_at_x,energy_at_y,energy_at_z," +
 			"principal_1,principal_1_direction_x,principal_1_direction_y,principal_1_direction_z,principal_2,principal_2_direction_x,principal_2_direction_y,principal_2_direction_z," +
-			"principal_3,principal_3_direction_x,principal_3_direction_y,principal_3_direction_z,local_estimate_neuber_stress,local_estimate_neuber_strain,local_estimate_energy_density_stress,local_estimate_energy_density_strain,local_estimate_refused\n"},
+			"principal_3,principal_3_direction_x,principal_3_direction_y,principal_3_direction_z," +
+			"ball_radius,ball_volume,ball_cells,averaged_density,eigenvalue,eigenvalue_spread,control_radius,control_volume,control_density,averaged_density_ratio,local_estimate_neuber_stress,local_estimate_neuber_strain,local_estimate_energy_density_stress,local_estimate_energy_density_strain,local_estimate_refused\n"},
 		{"past-limit.csv", "cell,source,element_id,region,at_x,at_y,at_z,density,equivalent_stress,utilisation\n"},
 		{"requirements.csv", "name,quantity,region,at_most,at_least,value,met,why\n"},
 	} {

@@ -84,7 +84,7 @@ func TestJSONKeepsTheContractsOrder(t *testing.T) {
 	if _, err := decoder.Token(); err != nil {
 		t.Fatal(err)
 	}
-	for _, want := range strings.Fields(`schema title units model study source fields materials total repeated regions hotspots
+	for _, want := range strings.Fields(`schema title units model study source fields materials total repeated regions hotspots at_centre
 		past_limit excluded findings balance requirements steps cases envelope caution run`) {
 		key, err := decoder.Token()
 		if err != nil || key != want {

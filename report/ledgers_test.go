@@ -1,6 +1,7 @@
 package report
 
 import (
+	"slices"
 	"strings"
 
 	"strainledger/energy"
@@ -26,6 +27,15 @@ func noMaterial(name string) energy.MaterialUsed {
 		Name: name, Law: "isotropic", YoungsModulus: none, PoissonsRatio: none, ProportionalLimit: none,
 		ProportionalLimitCompression: none, Density: none, ThermalExpansion: none, ReferenceTemperature: none,
 		YieldStress: none, HardeningExponent: none,
+		ControlRadius: none, CriticalDensity: none, FractureToughness: none, TensileStrength: none,
+	}
+}
+
+func noSurroundings() energy.Surroundings {
+	none := energy.None
+	return energy.Surroundings{
+		BallRadius: none, BallVolume: none, BallCells: none, AveragedDensity: none, Eigenvalue: none, EigenvalueSpread: none,
+		ControlRadius: none, ControlVolume: none, ControlDensity: none, AveragedDensityRatio: none,
 	}
 }
 
@@ -82,6 +92,11 @@ func bracket() *energy.Ledger {
 	first := &hotspots[0]
 	first.Energy, first.EnergyShare, first.RegionShare, first.Volume, first.Cells = 1.8234567, 0.009064519, 0.017837365, 9.8765432, 5
 	first.Prominence, first.MeanDensity, first.EnergyAt = 1, 0.18462498, at(8.5, 9.5, 8.45)
+	first.BallRadius, first.BallVolume, first.BallCells, first.AveragedDensity = 3, 56.548667764616276, 41, 0.1012345678
+	first.Singular, first.Eigenvalue, first.EigenvalueSpread = "cannot tell", 0.812345678, 0.1023456789
+	first.ControlRadius, first.ControlVolume, first.ControlDensity, first.AveragedDensityRatio = 0.28, 0.0459, 0.188, 1.1698
+	second := &hotspots[1]
+	second.BallRadius, second.BallVolume, second.BallCells, second.AveragedDensity, second.Singular = 3, 60.25, 44, 0.0987654321, "regular"
 	first.Principal1, first.Principal2, first.Principal3 = 170.25, 12.5, -3.125
 	first.Principal1Direction, first.Principal2Direction, first.Principal3Direction = at(0.6, 0, 0.8), at(0, 1, 0), at(0.8, 0, -0.6)
 	hotspots = append(hotspots, hotspot(7, energy.RankedCell{
@@ -95,6 +110,10 @@ func bracket() *energy.Ledger {
 	}
 	none := energy.LocalState{Stress: energy.None, Strain: energy.None}
 	hotspots[1].LocalEstimate = &energy.LocalEstimate{Neuber: none, EnergyDensity: none, Refused: "the place is singular: its elastic stress depends on the mesh"}
+
+	centre := &energy.AtCentre{At: *at(8.5, 10, 8.5), Singular: "singular", Surroundings: noSurroundings()}
+	centre.BallRadius, centre.BallVolume, centre.BallCells, centre.AveragedDensity = 3, 84.82, 52, 0.1112345678
+	centre.Eigenvalue, centre.EigenvalueSpread = 0.5444837, 0.0123456
 
 	return &energy.Ledger{
 		Schema: energy.LedgerSchema,
@@ -125,6 +144,7 @@ func bracket() *energy.Ledger {
 			{Name: "corner", Material: "aluminium", Criterion: "von-mises", Account: corner},
 		},
 		Hotspots: hotspots,
+		AtCentre: centre,
 		PastLimit: energy.PastLimit{
 			Criterion: "von-mises", Cells: 6, Volume: 13.8125, Energy: 2.53125, EnergyShare: 0.01258300474, Worst: worst[:6:6],
 		},
@@ -167,7 +187,7 @@ func hotspot(rank int, cell energy.RankedCell, isPast *bool) energy.Hotspot {
 		Density: cell.Density, PeakDensity: cell.Density, Energy: none, EnergyShare: none, Volume: none, Cells: none,
 		Prominence: none, EquivalentStress: cell.EquivalentStress, Utilisation: cell.Utilisation, PastLimit: isPast,
 		StressMargin: factor - 1, LoadFactor: factor, ErrorToTarget: none,
-		RegionShare: none, MeanDensity: none, Principal1: none, Principal2: none, Principal3: none,
+		RegionShare: none, MeanDensity: none, Principal1: none, Principal2: none, Principal3: none, Surroundings: noSurroundings(),
 	}
 }
 
@@ -184,6 +204,8 @@ func concentration(top1, top5, top10, top25, gini, effective energy.Number) *ene
 func unjudged() *energy.Ledger {
 	ledger := bracket()
 	ledger.Title = "Mooring bracket, fillet R9"
+	ledger.Materials = slices.Clone(ledger.Materials)
+	ledger.Materials[0].ControlRadius, ledger.Materials[0].CriticalDensity = 0.28, 0.160714285714
 	for i := range ledger.Regions {
 		account := &ledger.Regions[i].Account
 		account.CellsPastLimit, account.VolumePastLimit, account.EnergyPastLimit = 0, 0, 0

@@ -200,7 +200,7 @@ func materialsSection(ledger *energy.Ledger) section {
 	if len(ledger.Materials) == 0 {
 		return section{}
 	}
-	const compression = 5
+	const compression, critical = 5, 7
 	t := &table{columns: []column{
 		{kind: name, heading: "material"},
 		{kind: word, heading: "law"},
@@ -208,6 +208,8 @@ func materialsSection(ledger *energy.Ledger) section {
 		numbers("poissons_ratio", &ledger.Units),
 		numbers("proportional_limit", &ledger.Units),
 		compression: numbers("proportional_limit_compression", &ledger.Units),
+		numbers("control_radius", &ledger.Units),
+		critical: numbers("critical_density", &ledger.Units),
 		{kind: prose, heading: "source of the limit"},
 	}}
 	for _, material := range ledger.Materials {
@@ -218,11 +220,15 @@ func materialsSection(ledger *energy.Ledger) section {
 			plain(material.PoissonsRatio),
 			plain(material.ProportionalLimit),
 			plain(material.ProportionalLimitCompression),
+			brief(material.ControlRadius),
+			brief(material.CriticalDensity),
 			limitSource(&material),
 		)
 	}
-	if t.isIdle(compression) {
-		t.drop(compression)
+	for optional := critical; optional >= compression; optional-- {
+		if t.isIdle(optional) {
+			t.drop(optional)
+		}
 	}
 	return newSection("Materials", t)
 }

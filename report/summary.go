@@ -74,7 +74,7 @@ func Summarise(ledger *energy.Ledger) *Summary {
 	for _, s := range []section{
 		sourcesSection(ledger), modelSection(ledger), materialsSection(ledger),
 		regionsSection(ledger), excludedSection(ledger), balanceSection(ledger), concentrationSection(ledger),
-		pastLimitSection(ledger), worstSection(ledger), hotspotsSection(ledger), localEstimatesSection(ledger),
+		pastLimitSection(ledger), worstSection(ledger), hotspotsSection(ledger), surroundingsSection(ledger), localEstimatesSection(ledger),
 		findingsSection(ledger.Findings, &ledger.Units), requirementsSection(ledger),
 	} {
 		if s.heading != "" {

@@ -37,6 +37,7 @@ var (
 	contraction = &bound{-1, 0.5, true, "must be above -1 and below 0.5"} // positive definite isotropic law
 	aboveOne    = &bound{1, math.Inf(1), true, "must be above 1"}
 	share       = &bound{0, 1, true, "must be above 0 and below 1"}
+	shareOrNone = &bound{-math.SmallestNonzeroFloat64, 1, true, "must be 0 or above, and below 1"}
 )
 
 // holds reports whether a number lies within the bound.
@@ -140,10 +141,10 @@ var keys = slices.Concat([]key{
 		{path: "material.hardening_isotropic", form: aNumber, later: true},
 		{path: "material.hardening_kinematic", form: aNumber, later: true},
 		{path: "material.hardening_exponent", form: aNumber, bound: aboveOne},
-		{path: "material.control_radius", form: aNumber, bound: positive, later: true},
-		{path: "material.critical_density", form: aNumber, bound: positive, later: true},
-		{path: "material.fracture_toughness", form: aNumber, bound: positive, later: true},
-		{path: "material.tensile_strength", form: aNumber, bound: positive, later: true},
+		{path: "material.control_radius", form: aNumber, bound: positive},
+		{path: "material.critical_density", form: aNumber, bound: positive},
+		{path: "material.fracture_toughness", form: aNumber, bound: positive},
+		{path: "material.tensile_strength", form: aNumber, bound: positive},
 
 		{path: "region", form: tables},
 		{path: "region.name", form: aName, needed: true},
@@ -165,10 +166,10 @@ var keys = slices.Concat([]key{
 		{path: "hotspots", form: aTable},
 		{path: "hotspots.count", form: aWhole, bound: countable},
 		{path: "hotspots.by", form: aName, values: []string{"utilisation", "density", "energy"}},
-		{path: "hotspots.prominence", form: aNumber, bound: share, later: true},
-		{path: "hotspots.radius", form: aNumber, bound: positive, later: true},
-		{path: "hotspots.centre", form: numbers, later: true},
-		{path: "hotspots.pool", form: aWhole, bound: countable, later: true},
+		{path: "hotspots.prominence", form: aNumber, bound: shareOrNone},
+		{path: "hotspots.radius", form: aNumber, bound: positive},
+		{path: "hotspots.centre", form: numbers},
+		{path: "hotspots.pool", form: aWhole, bound: countable},
 
 		{path: "error", form: aTable},
 		{path: "error.estimate", form: aSwitch},

@@ -227,6 +227,7 @@ func (r *reading) materials() {
 		material.Density = stated.numberOf(none, "density")
 		material.ThermalExpansion = stated.numberOf(none, "thermal_expansion")
 		material.ReferenceTemperature = stated.numberOf(none, "reference_temperature")
+		r.brittleness(stated, &material)
 		r.anisotropy(stated, &material)
 		r.curve(stated, &material)
 		r.to.Materials = append(r.to.Materials, material)
@@ -375,10 +376,54 @@ func (r *reading) loading() {
 func (r *reading) judgement() {
 	r.to.Limit.Criterion = energy.Criterion(r.root.textOf("limit", "criterion"))
 	r.to.Limit.List = int(r.root.numberOf(0, "limit", "list"))
-	r.to.Hotspots.Count = int(r.root.numberOf(0, "hotspots", "count"))
-	r.to.Hotspots.By = r.root.textOf("hotspots", "by")
+	r.hotspots()
 	r.estimate()
 	r.verdict()
+}
+
+// hotspots reads which hotspots are listed, and what is looked at about them. Without a
+// prominence they are single cells.
+func (r *reading) hotspots() {
+	stated := r.root.get("hotspots")
+	prominence := stated.get("prominence")
+	r.to.Hotspots = energy.HotspotOptions{
+		Count:       int(stated.numberOf(0, "count")),
+		By:          stated.textOf("by"),
+		Prominence:  stated.numberOf(0, "prominence"),
+		SingleCells: prominence != nil && prominence.number == 0,
+		Pool:        int(stated.numberOf(0, "pool")),
+		Radius:      stated.numberOf(0, "radius"),
+	}
+	centre := stated.get("centre")
+	switch {
+	case centre == nil:
+	case len(centre.items) != 3:
+		r.faults.add(centre.place, "hotspots.centre must have three coordinates; write [x, y, z]")
+	case !stated.has("radius"):
+		r.faults.add(centre.place, "hotspots.centre without hotspots.radius, within which density is averaged about it; add radius")
+	default:
+		r.to.Hotspots.Centre = &energy.Vector{centre.items[0].number, centre.items[1].number, centre.items[2].number}
+	}
+}
+
+// brittleness reads the numbers by which averaged density is held against what a brittle
+// material bears.
+func (r *reading) brittleness(stated *node, material *energy.Material) {
+	none := float64(energy.None)
+	material.ControlRadius = stated.numberOf(none, "control_radius")
+	material.CriticalDensity = stated.numberOf(none, "critical_density")
+	material.FractureToughness = stated.numberOf(none, "fracture_toughness")
+	material.TensileStrength = stated.numberOf(none, "tensile_strength")
+	if toughness := stated.get("fracture_toughness"); toughness != nil && !stated.has("control_radius") {
+		for _, partner := range []string{"tensile_strength", "poissons_ratio"} {
+			if !stated.has(partner) {
+				r.faults.add(toughness.place, "material.fracture_toughness without %s; the control radius comes from both: add %s, or state control_radius instead", partner, partner)
+			}
+		}
+	}
+	if critical := stated.get("critical_density"); critical != nil && !stated.has("control_radius") && !stated.has("fracture_toughness") {
+		r.faults.add(critical.place, "material.critical_density without a control radius, within which density is averaged; add control_radius, or fracture_toughness and tensile_strength")
+	}
 }
 
 // estimate reads how the error of the mesh is estimated.

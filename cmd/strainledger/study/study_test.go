@@ -48,6 +48,10 @@ proportional_limit = 330.0
 source = "EN 10025-2, minimum"
 yield_stress = 355
 hardening_exponent = 12.5
+control_radius = 0.28
+critical_density = 0.105
+fracture_toughness = 2500
+tensile_strength = 510
 density = 7.85e-6
 thermal_expansion = 1.2e-5
 reference_temperature = -20
@@ -79,6 +83,10 @@ list = 7
 [hotspots]
 count = 3
 by = "energy"
+prominence = 0.15
+pool = 4096
+radius = 2.5
+centre = [1, 2.5, -3]
 [error]
 estimate = true
 target = 0.1
@@ -131,6 +139,7 @@ func wholeOptions() energy.Options {
 	steel.YoungsModulus, steel.PoissonsRatio, steel.ProportionalLimit = 210000, 0.3, 330
 	steel.Source, steel.Density = "EN 10025-2, minimum", 7.85e-6
 	steel.YieldStress, steel.HardeningExponent = 355, 12.5
+	steel.ControlRadius, steel.CriticalDensity, steel.FractureToughness, steel.TensileStrength = 0.28, 0.105, 2500, 510
 	rubber.ProportionalLimit, rubber.ProportionalLimitCompression = 1.5, 4
 	steel.ThermalExpansion, steel.ReferenceTemperature = 1.2e-5, -20
 	return energy.Options{
@@ -159,7 +168,7 @@ func wholeOptions() energy.Options {
 			{Name: "others", Rest: true},
 		},
 		Limit:    energy.LimitOptions{Criterion: energy.DistortionEnergy, List: 7},
-		Hotspots: energy.HotspotOptions{Count: 3, By: "energy"},
+		Hotspots: energy.HotspotOptions{Count: 3, By: "energy", Prominence: 0.15, Pool: 4096, Radius: 2.5, Centre: &energy.Vector{1, 2.5, -3}},
 		Error:    energy.ErrorOptions{Estimate: true, Target: 0.1, Recovery: energy.ByPatches},
 		Balance:  energy.BalanceOptions{ExternalWork: &work},
 		Elsewhere: []energy.Elsewhere{
@@ -208,7 +217,7 @@ func TestReadWhole(t *testing.T) {
 	want := &Study{
 		Path: path,
 		// sha256sum of the text above
-		SHA256:  "c6d5100cd07a5645d7f4620a7fafcc48dde5d20b51f6626649a75f8e1ceaed72",
+		SHA256:  "c3c657319f0bea90a81ca8fb26e79b2b56f6e7f10fd1b8f7a897c18ea3c8f1ab",
 		Options: wholeOptions(),
 		Files:   []string{filepath.Join(folder, "bracket-r5.vtu")},
 		Time:    Time{Value: &time},
@@ -285,6 +294,8 @@ func TestMissingNumbersAreNaN(t *testing.T) {
 		"youngs_modulus": material.YoungsModulus, "poissons_ratio": material.PoissonsRatio,
 		"proportional_limit": material.ProportionalLimit, "proportional_limit_compression": material.ProportionalLimitCompression,
 		"yield_stress": material.YieldStress, "hardening_exponent": material.HardeningExponent, "density": material.Density,
+		"control_radius": material.ControlRadius, "critical_density": material.CriticalDensity,
+		"fracture_toughness": material.FractureToughness, "tensile_strength": material.TensileStrength,
 		"thermal_expansion": material.ThermalExpansion, "reference_temperature": material.ReferenceTemperature,
 	} {
 		if !math.IsNaN(value) {
@@ -299,6 +310,8 @@ func TestValuesThatMayJustBe(t *testing.T) {
 	study, _ := parseStudy("s.toml", []byte(`
 model.repeats = 1
 hotspots.count = 1
+hotspots.pool = 1
+hotspots.prominence = 0
 limit.list = 0x01
 [[material]]
 name = "m"
@@ -320,8 +333,11 @@ at_most = 7
 		t.Fatal(err)
 	}
 	o := study.Options
-	if o.Repeats != 1 || o.Hotspots.Count != 1 || o.Limit.List != 1 {
-		t.Errorf("counts %d, %d, %d", o.Repeats, o.Hotspots.Count, o.Limit.List)
+	if o.Repeats != 1 || o.Hotspots.Count != 1 || o.Hotspots.Pool != 1 || o.Limit.List != 1 {
+		t.Errorf("counts %d, %d, %d, %d", o.Repeats, o.Hotspots.Count, o.Hotspots.Pool, o.Limit.List)
+	}
+	if !o.Hotspots.SingleCells || o.Hotspots.Prominence != 0 {
+		t.Errorf("without a prominence hotspots are single cells: %+v", o.Hotspots)
 	}
 	if m := o.Materials[0]; m.YoungsModulus != 210050 || m.PoissonsRatio != -0.999 || m.ReferenceTemperature != 0 {
 		t.Errorf("material %+v", m)
