@@ -256,6 +256,9 @@ func TestToe(t *testing.T) {
 			{"area without the toe", float64(a.Resilience.Area), 0.44609172},
 			{"toughness without the toe", float64(a.Toughness.Area), 43.816},
 		})
+		if !(a.Modulus.Variation < 1e-9 && a.Modulus.Scatter < 1e-9) {
+			t.Errorf("V1 %g, scatter %g of three points on a line", a.Modulus.Variation, a.Modulus.Scatter)
+		}
 		if !showsFinding(a, "toe") {
 			t.Error("the toe is not said")
 		}
@@ -275,7 +278,7 @@ func TestMildSteel(t *testing.T) {
 		{"ultimate", a.Ultimate.Stress, 420},
 		{"ultimate strain", a.Ultimate.Strain, 0.20},
 		{"lower yield", a.YieldPoint.Lower.Stress, 250},
-		{"end of the plateau", a.YieldPoint.PlateauEnd, 0.02},
+		{"end of the plateau", float64(a.YieldPoint.PlateauEnd), 0.02},
 	})
 	if a.YieldPoint.Upper != nil {
 		t.Errorf("upper yield %v on a curve that bends into its plateau", *a.YieldPoint.Upper)
@@ -302,7 +305,7 @@ func TestUpperYield(t *testing.T) {
 		{"upper strain", a.YieldPoint.Upper.Strain, 0.001512195},
 		{"lower", a.YieldPoint.Lower.Stress, 283},
 		{"lower strain", a.YieldPoint.Lower.Strain, 0.0036},
-		{"end", a.YieldPoint.PlateauEnd, 0.02 + 0.005*20/22},
+		{"end", float64(a.YieldPoint.PlateauEnd), 0.02 + 0.005*20/22},
 		{"ultimate", a.Ultimate.Stress, 430},
 	})
 	expect(t, 1e-5, []expectation{{"E", float64(a.Modulus.YoungsModulus), 205000}}) // strains of seven digits
@@ -314,10 +317,11 @@ func TestUpperYield(t *testing.T) {
 	for i := range flat[33:] {
 		flat[33+i].Stress = math.Min(flat[33+i].Stress, 295)
 	}
+	flat[len(flat)-1].Stress = 250 // it breaks below its lower yield point
 	b := analyse(t, recordOf(flat), CurveOptions{})
-	expect(t, 1e-12, []expectation{{"upper", b.YieldPoint.Upper.Stress, 310}, {"ultimate", b.Ultimate.Stress, 295}})
-	if b.YieldPoint.PlateauEnd != 0.27 {
-		t.Errorf("the plateau ends at %g, want the end of the record, 0.27", b.YieldPoint.PlateauEnd)
+	expect(t, 1e-12, []expectation{{"upper", b.YieldPoint.Upper.Stress, 310}, {"lower", b.YieldPoint.Lower.Stress, 283}, {"ultimate", b.Ultimate.Stress, 295}})
+	if b.YieldPoint.PlateauEnd.Exists() {
+		t.Errorf("the plateau ends at %g, though its stress is never passed again", float64(b.YieldPoint.PlateauEnd))
 	}
 }
 
@@ -325,8 +329,9 @@ func TestUpperYield(t *testing.T) {
 // point; one just before is.
 func TestYieldPointComesBeforeTheOffsetYield(t *testing.T) {
 	for plastic, isYield := range map[float64]bool{0.0019: true, 0.0021: false, 0.05: false} {
-		peak := CurvePoint{0.003 + plastic, 300}
-		points := []CurvePoint{{0, 0}, {0.001, 100}, {0.002, 200}, {0.0025, 250}, peak}
+		const toe = 0.0005
+		peak := CurvePoint{toe + 0.003 + plastic, 300}
+		points := []CurvePoint{{toe, 0}, {toe + 0.001, 100}, {toe + 0.002, 200}, {toe + 0.0025, 250}, peak}
 		for _, after := range []CurvePoint{{0.001, 290}, {0.002, 295}, {0.01, 310}, {0.02, 305}} {
 			points = append(points, CurvePoint{peak.Strain + after.Strain, after.Stress})
 		}
@@ -334,10 +339,21 @@ func TestYieldPointComesBeforeTheOffsetYield(t *testing.T) {
 		if got := a.YieldPoint != nil; got != isYield {
 			t.Errorf("plastic strain %g: yield point %+v", plastic, a.YieldPoint)
 		}
-		if isYield && (*a.YieldPoint.Upper != peak || a.YieldPoint.Lower.Stress != 290 || !within(a.YieldPoint.PlateauEnd, peak.Strain+0.002+0.008*5/15, 1e-12)) {
+		if isYield && (*a.YieldPoint.Upper != peak || a.YieldPoint.Lower.Stress != 290 || !within(float64(a.YieldPoint.PlateauEnd), peak.Strain+0.002+0.008*5/15, 1e-12)) {
 			t.Errorf("yield point %+v", a.YieldPoint)
 		}
 		if a.Ultimate.Stress != 310 {
+			t.Errorf("ultimate %v", a.Ultimate)
+		}
+	}
+	// After the ultimate stress it falls for good: what rises again by less than 0.5 % is noise.
+	for rise, isYield := range map[float64]bool{1.4: false, 1.5: true} {
+		points := []CurvePoint{{0, 0}, {0.001, 100}, {0.002, 200}, {0.003, 300}, {0.005, 290}, {0.007, 290 + rise}, {0.01, 250}}
+		a := analyse(t, recordOf(points), CurveOptions{})
+		if got := a.YieldPoint != nil; got != isYield {
+			t.Errorf("a rise by %g: yield point %+v", rise, a.YieldPoint)
+		}
+		if want := 300.; !isYield && a.Ultimate.Stress != want {
 			t.Errorf("ultimate %v", a.Ultimate)
 		}
 	}
@@ -739,10 +755,10 @@ func TestCurveOptionsAreChecked(t *testing.T) {
 		}
 	}
 	for want, options := range map[string]CurveOptions{
-		"holds 1 points":           {Window: StressWindow{Low: 60, High: 100}},
-		"holds 0 points":           {Window: StressWindow{Low: 71, High: 100}},
-		"window from 90.461":       {Window: StressWindow{Low: 0.3, High: 0.35, IsShare: true}},
-		"window from 500 to 600 h": {Window: StressWindow{Low: 500, High: 600}},
+		"holds 1 points":            {Window: StressWindow{Low: 60, High: 100}},
+		"holds 0 points":            {Window: StressWindow{Low: 71, High: 100}},
+		"window from 90.461":        {Window: StressWindow{Low: 0.3, High: 0.35, IsShare: true}},
+		"500 to 600 holds 0 points": {Window: StressWindow{Low: 500, High: 600}},
 	} {
 		_, err := AnalyseCurve(test, options)
 		var place *CurveError
@@ -765,6 +781,53 @@ func TestCurveOptionsAreChecked(t *testing.T) {
 	})
 	if a.Modulus.From.Stress != 70 || a.Modulus.To.Stress != 210 {
 		t.Errorf("10 to 70 %% of the offset yield stress are %g to %g, want 70 to 210", a.Modulus.From.Stress, a.Modulus.To.Stress)
+	}
+}
+
+// How far off its line a point may lie to continue it: by 1 % of the larger stress in
+// units of √(1 + 1/K + (ε - mean)²/Σ(ε - mean)²), for three points and one more √(10/3).
+func TestLineContinues(t *testing.T) {
+	points := []CurvePoint{{0, 0}, {1, 100}, {2, 200}}
+	fit := fitLine(points, 0, 2)
+	for _, c := range []struct {
+		strain, off float64
+		want        bool
+	}{{3, 5.5, true}, {3, 5.7, false}, {3, -5.3, true}, {3, -5.5, false}, {-1, 3.6, true}, {-1, 3.7, false}, {-1, -3.6, true}, {-1, -3.7, false}} {
+		if got := fit.continues(CurvePoint{c.strain, 100*c.strain + c.off}, points); got != c.want {
+			t.Errorf("%g off at %g: %v", c.off, c.strain, got)
+		}
+	}
+}
+
+// Two points have no scatter, whatever rounding leaves.
+func TestTwoPointsHaveNoScatter(t *testing.T) {
+	random := rand.New(rand.NewPCG(3, 4))
+	for range 100 {
+		points := []CurvePoint{{0, 0}, {random.Float64(), random.Float64()}, {1 + random.Float64(), 1 + random.Float64()}}
+		if fit := fitLine(points, 1, 2); !math.IsNaN(fit.variation) || !math.IsNaN(fit.scatter) {
+			t.Fatalf("V1 %g, scatter %g of %v", fit.variation, fit.scatter, points[1:])
+		}
+	}
+}
+
+// A window's bounds count as in it, but for the rounding of another unit.
+func TestWindowBounds(t *testing.T) {
+	points := readCurve(t, "m05-aluminium.csv", CurveReading{}).Points
+	for _, c := range []struct {
+		low, high   float64
+		first, last int
+	}{
+		{70, 210, 1, 3}, {70 * (1 + 1e-13), 210 * (1 - 1e-13), 1, 3}, {70 * (1 + 1e-11), 210 * (1 - 1e-11), 2, 2},
+		{0, 400, 0, 13}, {400, 500, 13, 13}, {401, 500, 14, 13}, {0, 1e9, 0, 13}, {71, 100, 2, 1},
+	} {
+		if first, last := window(points, c.low, c.high); first != c.first || last != c.last {
+			t.Errorf("%g to %g: points %d to %d, want %d to %d", c.low, c.high, first, last, c.first, c.last)
+		}
+	}
+	// Past the ultimate stress no point counts.
+	falling := []CurvePoint{{0, 0}, {1, 100}, {2, 80}, {3, 60}}
+	if first, last := window(falling, 50, 100); first != 1 || last != 1 {
+		t.Errorf("points %d to %d, want 1 alone", first, last)
 	}
 }
 
