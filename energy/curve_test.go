@@ -7,6 +7,7 @@ import (
 	"math/rand/v2"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -181,7 +182,7 @@ func TestDigitisedCurve(t *testing.T) {
 				{"ultimate", a.Ultimate.Stress, 400},
 				{"last strain", a.Last.Strain, 0.12},
 			})
-			if a.ProportionalLimit.By != "offset-0.01%" || a.ProportionalLimit != limits["offset-0.01%"] {
+			if a.ProportionalLimit.By != "offset-0.01%" || a.ProportionalLimit != limits["offset-0.01%"] || len(a.ProportionalLimits) != 7 {
 				t.Errorf("the limit is %+v, want the one by a plastic strain of 0.01 %%", a.ProportionalLimit)
 			}
 			if math.Abs(float64(a.Modulus.ToeStrain)) > 1e-15 || math.Abs(float64(a.Modulus.Intercept)) > 1e-10 || !within(float64(a.Modulus.RSquared), 1, 1e-14) {
@@ -234,6 +235,9 @@ func TestNoisyModulus(t *testing.T) {
 		expect(t, 1e-8, []expectation{{"intercept", float64(a.Modulus.Intercept), 0.08}, {"V1", float64(a.Modulus.Variation), 0.28471767}})
 		expect(t, 1e-9, []expectation{{"scatter", float64(a.Modulus.Scatter), math.Sqrt(0.1108571428571429 / 4)}})
 		expect(t, 1e-8, []expectation{{"toe", float64(a.Modulus.ToeStrain), -0.08 / 69885.714285714}})
+		if showsFinding(a, "toe") {
+			t.Error("an intercept of 0.08 is no toe")
+		}
 		if a.Modulus.Points != 6 {
 			t.Errorf("%d points in the window, want all 6", a.Modulus.Points)
 		}
@@ -262,6 +266,13 @@ func TestToe(t *testing.T) {
 		if !showsFinding(a, "toe") {
 			t.Error("the toe is not said")
 		}
+		whole := analyse(t, readCurve(t, "m05-aluminium.csv", CurveReading{}), CurveOptions{Window: StressWindow{Low: 70, High: 210}})
+		expect(t, 1e-9, []expectation{
+			{"n", a.RambergOsgood.Exponent, whole.RambergOsgood.Exponent},
+			{"worst", float64(a.RambergOsgood.WorstDeviation), float64(whole.RambergOsgood.WorstDeviation)},
+			{"n to ultimate", float64(a.RambergOsgood.ExponentToUltimate), float64(whole.RambergOsgood.ExponentToUltimate)},
+			{"n of secants", float64(a.RambergOsgood.ExponentOfSecants), float64(whole.RambergOsgood.ExponentOfSecants)},
+		})
 	}
 }
 
@@ -457,6 +468,32 @@ func TestRambergOsgoodFitOfADigitisedCurve(t *testing.T) {
 	}
 }
 
+// What a Ramberg-Osgood law is not fitted to, and what of it does not exist.
+func TestRambergOsgoodFitHasItsLimits(t *testing.T) {
+	elastic := []CurvePoint{{0, 0}, {0.0005, 50}, {0.001, 100}, {0.0015, 150}, {0.002, 200}}
+	analysed := func(more ...CurvePoint) *RambergOsgoodFit {
+		return analyse(t, recordOf(append(slices.Clone(elastic), more...)), CurveOptions{}).RambergOsgood
+	}
+	if fit := analysed(CurvePoint{0.0022, 200}, CurvePoint{0.003, 200}, CurvePoint{0.0035, 200}, CurvePoint{0.01, 200}, CurvePoint{0.02, 250}); fit != nil {
+		t.Errorf("a plateau was fitted by %+v", fit)
+	}
+	if fit := analysed(CurvePoint{0.005, 300}); fit != nil {
+		t.Errorf("no point between the ends was fitted by %+v", fit)
+	}
+	if fit := analysed(CurvePoint{0.003, 240}, CurvePoint{0.006, 300}); fit == nil || fit.Points != 3 {
+		t.Errorf("one point between the ends: %+v, want a fit", fit)
+	}
+	// The largest stress comes before the offset yield: no exponent from the two.
+	if fit := analysed(CurvePoint{0.003, 250}, CurvePoint{0.0045, 305}, CurvePoint{0.0052, 300}); fit == nil || fit.ExponentToUltimate.Exists() {
+		t.Errorf("ultimate before the offset yield: %+v", fit)
+	}
+	// At 0.2 % plastic strain the secant modulus is 0.83 E: 0.7 E is not reached.
+	strong := analyse(t, recordOf(sample(RambergOsgood{73100, 700, 10}, 705, 500)), CurveOptions{}).RambergOsgood
+	if strong == nil || strong.ExponentOfSecants.Exists() {
+		t.Errorf("without a secant of 0.7 E: %+v", strong)
+	}
+}
+
 // hollomon returns the curve σ = 530 ε^0.26 of M-11 up to a strain, in steps that are
 // finer where the curve is steep.
 func hollomon(last float64, steps int) []CurvePoint {
@@ -585,6 +622,14 @@ func TestCurve(t *testing.T) {
 	} {
 		if _, err := NewCurve(points); err == nil {
 			t.Errorf("the points %v were taken", points)
+		}
+	}
+	for want, points := range map[string][]CurvePoint{
+		"point 2 of the curve is (1, NaN)":                {{0, 0}, {1, math.NaN()}},
+		"point 3 of the curve has strain 0.5 after 1: st": {{0, 0}, {1, 1}, {0.5, 2}},
+	} {
+		if _, err := NewCurve(points); !strings.HasPrefix(err.Error(), want) {
+			t.Errorf("error %q, want %q", err, want)
 		}
 	}
 }
@@ -787,14 +832,31 @@ func TestCurveOptionsAreChecked(t *testing.T) {
 // How far off its line a point may lie to continue it: by 1 % of the larger stress in
 // units of √(1 + 1/K + (ε - mean)²/Σ(ε - mean)²), for three points and one more √(10/3).
 func TestLineContinues(t *testing.T) {
-	points := []CurvePoint{{0, 0}, {1, 100}, {2, 200}}
-	fit := fitLine(points, 0, 2)
+	points := []CurvePoint{{-9, 0}, {0, 0}, {1, 100}, {2, 200}}
+	fit := fitLine(points, 1, 3)
 	for _, c := range []struct {
 		strain, off float64
 		want        bool
 	}{{3, 5.5, true}, {3, 5.7, false}, {3, -5.3, true}, {3, -5.5, false}, {-1, 3.6, true}, {-1, 3.7, false}, {-1, -3.6, true}, {-1, -3.7, false}} {
 		if got := fit.continues(CurvePoint{c.strain, 100*c.strain + c.off}, points); got != c.want {
 			t.Errorf("%g off at %g: %v", c.off, c.strain, got)
+		}
+	}
+}
+
+// The default window holds what lies between 10 and 40 % of the offset yield stress,
+// 35.5 to 142, and grows only where these are fewer than five points: past 260, where
+// the plastic strain is 0.3 % of the elastic one, before 286, where it is 2 %.
+func TestDefaultWindow(t *testing.T) {
+	law := RambergOsgood{YoungsModulus: 210000, OffsetStress: 355, Exponent: 20}
+	for step, want := range map[float64][2]float64{22: {44, 132}, 26: {0, 260}, 142: {0, 284}} {
+		var points []CurvePoint
+		for stress := 0.; stress < 400; stress += step {
+			points = append(points, CurvePoint{law.Strain(stress), stress})
+		}
+		a := analyse(t, recordOf(points), CurveOptions{})
+		if a.Modulus.From.Stress != want[0] || a.Modulus.To.Stress != want[1] {
+			t.Errorf("steps of %g: window from %g to %g (%d points), want %g to %g", step, a.Modulus.From.Stress, a.Modulus.To.Stress, a.Modulus.Points, want[0], want[1])
 		}
 	}
 }
@@ -839,7 +901,7 @@ func TestParseStressWindow(t *testing.T) {
 			t.Errorf("%q: %+v, %v, want %+v", text, got, err, want)
 		}
 	}
-	for _, text := range []string{"", "70", "70-210", "210..70", "70..70", "-1..5", "10%..40", "10..40%", "a..b", "1..Inf", "NaN..1", "1..2..3"} {
+	for _, text := range []string{"", "70", "70-210", "210..70", "70..70", "-1..5", "10%..40", "10..40%", "a..b", "x..5", "5..x", "5..", "..5", "1..Inf", "NaN..1", "1..2..3"} {
 		if got, err := ParseStressWindow(text); err == nil || !strings.Contains(err.Error(), "modulus window") {
 			t.Errorf("%q was read as %+v (%v)", text, got, err)
 		}
