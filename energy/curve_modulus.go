@@ -119,7 +119,7 @@ func window(points []CurvePoint, low, high float64) (first, last int) {
 	low -= 1e-12 * math.Abs(low)
 	high += 1e-12 * math.Abs(high)
 	ultimate := largestStress(points)
-	for first < ultimate && points[first].Stress < low {
+	for first <= ultimate && points[first].Stress < low {
 		first++
 	}
 	last = first - 1

@@ -102,6 +102,8 @@ func TestReadCurveTables(t *testing.T) {
 		{"units below the headings", "strain,stress\n(%),(GPa)\n0,0\n1,2\n", CurveReading{Stress: "MPa"}, []CurvePoint{{0, 0}, {0.01, 2000}}},
 		{"unit after a stroke", "Strain/%;Stress_kPa\n0;0\n1;2\n", CurveReading{Stress: "Pa"}, []CurvePoint{{0, 0}, {0.01, 2000}}},
 		{"percent sign", "Strain%,%Stress (Pa)\n0,0\n1,2000\n", CurveReading{Stress: "kPa"}, []CurvePoint{{0, 0}, {0.01, 2}}},
+		{"units in brackets within", "Strain (%) gauge 1;Stress [kPa], mean\n0;0\n1;2000\n", CurveReading{Stress: "MPa"}, []CurvePoint{{0, 0}, {0.01, 2}}},
+		{"brackets of no unit within", "Strain (gauge 1) %;Stress (mean) kPa\n0;0\n1;2000\n", CurveReading{Stress: "MPa"}, []CurvePoint{{0, 0}, {0.01, 2}}},
 		{"percent before", "% strain;psi stress\n0;0\n1;2000\n", CurveReading{Stress: "ksi"}, []CurvePoint{{0, 0}, {0.01, 2}}},
 		{"percent in words", "Percent strain;stress, MPa\n0;0\n1;2\n", CurveReading{}, []CurvePoint{{0, 0}, {0.01, 2}}},
 		{"microstrain as a name", "Microstrain;MPa stress\n0;0\n1;2\n", CurveReading{}, []CurvePoint{{0, 0}, {1e-6, 2}}},

@@ -7,6 +7,7 @@ import (
 	"math/rand/v2"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -181,7 +182,7 @@ func TestDigitisedCurve(t *testing.T) {
 				{"ultimate", a.Ultimate.Stress, 400},
 				{"last strain", a.Last.Strain, 0.12},
 			})
-			if a.ProportionalLimit.By != "offset-0.01%" || a.ProportionalLimit != limits["offset-0.01%"] {
+			if a.ProportionalLimit.By != "offset-0.01%" || a.ProportionalLimit != limits["offset-0.01%"] || len(a.ProportionalLimits) != 7 {
 				t.Errorf("the limit is %+v, want the one by a plastic strain of 0.01 %%", a.ProportionalLimit)
 			}
 			if math.Abs(float64(a.Modulus.ToeStrain)) > 1e-15 || math.Abs(float64(a.Modulus.Intercept)) > 1e-10 || !within(float64(a.Modulus.RSquared), 1, 1e-14) {
@@ -234,6 +235,9 @@ func TestNoisyModulus(t *testing.T) {
 		expect(t, 1e-8, []expectation{{"intercept", float64(a.Modulus.Intercept), 0.08}, {"V1", float64(a.Modulus.Variation), 0.28471767}})
 		expect(t, 1e-9, []expectation{{"scatter", float64(a.Modulus.Scatter), math.Sqrt(0.1108571428571429 / 4)}})
 		expect(t, 1e-8, []expectation{{"toe", float64(a.Modulus.ToeStrain), -0.08 / 69885.714285714}})
+		if showsFinding(a, "toe") {
+			t.Error("an intercept of 0.08 is no toe")
+		}
 		if a.Modulus.Points != 6 {
 			t.Errorf("%d points in the window, want all 6", a.Modulus.Points)
 		}
@@ -256,9 +260,19 @@ func TestToe(t *testing.T) {
 			{"area without the toe", float64(a.Resilience.Area), 0.44609172},
 			{"toughness without the toe", float64(a.Toughness.Area), 43.816},
 		})
+		if !(a.Modulus.Variation < 1e-9 && a.Modulus.Scatter < 1e-9) {
+			t.Errorf("V1 %g, scatter %g of three points on a line", a.Modulus.Variation, a.Modulus.Scatter)
+		}
 		if !showsFinding(a, "toe") {
 			t.Error("the toe is not said")
 		}
+		whole := analyse(t, readCurve(t, "m05-aluminium.csv", CurveReading{}), CurveOptions{Window: StressWindow{Low: 70, High: 210}})
+		expect(t, 1e-9, []expectation{
+			{"n", a.RambergOsgood.Exponent, whole.RambergOsgood.Exponent},
+			{"worst", float64(a.RambergOsgood.WorstDeviation), float64(whole.RambergOsgood.WorstDeviation)},
+			{"n to ultimate", float64(a.RambergOsgood.ExponentToUltimate), float64(whole.RambergOsgood.ExponentToUltimate)},
+			{"n of secants", float64(a.RambergOsgood.ExponentOfSecants), float64(whole.RambergOsgood.ExponentOfSecants)},
+		})
 	}
 }
 
@@ -275,7 +289,7 @@ func TestMildSteel(t *testing.T) {
 		{"ultimate", a.Ultimate.Stress, 420},
 		{"ultimate strain", a.Ultimate.Strain, 0.20},
 		{"lower yield", a.YieldPoint.Lower.Stress, 250},
-		{"end of the plateau", a.YieldPoint.PlateauEnd, 0.02},
+		{"end of the plateau", float64(a.YieldPoint.PlateauEnd), 0.02},
 	})
 	if a.YieldPoint.Upper != nil {
 		t.Errorf("upper yield %v on a curve that bends into its plateau", *a.YieldPoint.Upper)
@@ -302,7 +316,7 @@ func TestUpperYield(t *testing.T) {
 		{"upper strain", a.YieldPoint.Upper.Strain, 0.001512195},
 		{"lower", a.YieldPoint.Lower.Stress, 283},
 		{"lower strain", a.YieldPoint.Lower.Strain, 0.0036},
-		{"end", a.YieldPoint.PlateauEnd, 0.02 + 0.005*20/22},
+		{"end", float64(a.YieldPoint.PlateauEnd), 0.02 + 0.005*20/22},
 		{"ultimate", a.Ultimate.Stress, 430},
 	})
 	expect(t, 1e-5, []expectation{{"E", float64(a.Modulus.YoungsModulus), 205000}}) // strains of seven digits
@@ -314,10 +328,11 @@ func TestUpperYield(t *testing.T) {
 	for i := range flat[33:] {
 		flat[33+i].Stress = math.Min(flat[33+i].Stress, 295)
 	}
+	flat[len(flat)-1].Stress = 250 // it breaks below its lower yield point
 	b := analyse(t, recordOf(flat), CurveOptions{})
-	expect(t, 1e-12, []expectation{{"upper", b.YieldPoint.Upper.Stress, 310}, {"ultimate", b.Ultimate.Stress, 295}})
-	if b.YieldPoint.PlateauEnd != 0.27 {
-		t.Errorf("the plateau ends at %g, want the end of the record, 0.27", b.YieldPoint.PlateauEnd)
+	expect(t, 1e-12, []expectation{{"upper", b.YieldPoint.Upper.Stress, 310}, {"lower", b.YieldPoint.Lower.Stress, 283}, {"ultimate", b.Ultimate.Stress, 295}})
+	if b.YieldPoint.PlateauEnd.Exists() {
+		t.Errorf("the plateau ends at %g, though its stress is never passed again", float64(b.YieldPoint.PlateauEnd))
 	}
 }
 
@@ -325,8 +340,9 @@ func TestUpperYield(t *testing.T) {
 // point; one just before is.
 func TestYieldPointComesBeforeTheOffsetYield(t *testing.T) {
 	for plastic, isYield := range map[float64]bool{0.0019: true, 0.0021: false, 0.05: false} {
-		peak := CurvePoint{0.003 + plastic, 300}
-		points := []CurvePoint{{0, 0}, {0.001, 100}, {0.002, 200}, {0.0025, 250}, peak}
+		const toe = 0.0005
+		peak := CurvePoint{toe + 0.003 + plastic, 300}
+		points := []CurvePoint{{toe, 0}, {toe + 0.001, 100}, {toe + 0.002, 200}, {toe + 0.0025, 250}, peak}
 		for _, after := range []CurvePoint{{0.001, 290}, {0.002, 295}, {0.01, 310}, {0.02, 305}} {
 			points = append(points, CurvePoint{peak.Strain + after.Strain, after.Stress})
 		}
@@ -334,10 +350,21 @@ func TestYieldPointComesBeforeTheOffsetYield(t *testing.T) {
 		if got := a.YieldPoint != nil; got != isYield {
 			t.Errorf("plastic strain %g: yield point %+v", plastic, a.YieldPoint)
 		}
-		if isYield && (*a.YieldPoint.Upper != peak || a.YieldPoint.Lower.Stress != 290 || !within(a.YieldPoint.PlateauEnd, peak.Strain+0.002+0.008*5/15, 1e-12)) {
+		if isYield && (*a.YieldPoint.Upper != peak || a.YieldPoint.Lower.Stress != 290 || !within(float64(a.YieldPoint.PlateauEnd), peak.Strain+0.002+0.008*5/15, 1e-12)) {
 			t.Errorf("yield point %+v", a.YieldPoint)
 		}
 		if a.Ultimate.Stress != 310 {
+			t.Errorf("ultimate %v", a.Ultimate)
+		}
+	}
+	// After the ultimate stress it falls for good: what rises again by less than 0.5 % is noise.
+	for rise, isYield := range map[float64]bool{1.4: false, 1.5: true} {
+		points := []CurvePoint{{0, 0}, {0.001, 100}, {0.002, 200}, {0.003, 300}, {0.005, 290}, {0.007, 290 + rise}, {0.01, 250}}
+		a := analyse(t, recordOf(points), CurveOptions{})
+		if got := a.YieldPoint != nil; got != isYield {
+			t.Errorf("a rise by %g: yield point %+v", rise, a.YieldPoint)
+		}
+		if want := 300.; !isYield && a.Ultimate.Stress != want {
 			t.Errorf("ultimate %v", a.Ultimate)
 		}
 	}
@@ -438,6 +465,32 @@ func TestRambergOsgoodFitOfADigitisedCurve(t *testing.T) {
 	})
 	if n < 12 || n > 15 || residual/total > 0.05 {
 		t.Errorf("n %g, r² %g", n, 1-residual/total)
+	}
+}
+
+// What a Ramberg-Osgood law is not fitted to, and what of it does not exist.
+func TestRambergOsgoodFitHasItsLimits(t *testing.T) {
+	elastic := []CurvePoint{{0, 0}, {0.0005, 50}, {0.001, 100}, {0.0015, 150}, {0.002, 200}}
+	analysed := func(more ...CurvePoint) *RambergOsgoodFit {
+		return analyse(t, recordOf(append(slices.Clone(elastic), more...)), CurveOptions{}).RambergOsgood
+	}
+	if fit := analysed(CurvePoint{0.0022, 200}, CurvePoint{0.003, 200}, CurvePoint{0.0035, 200}, CurvePoint{0.01, 200}, CurvePoint{0.02, 250}); fit != nil {
+		t.Errorf("a plateau was fitted by %+v", fit)
+	}
+	if fit := analysed(CurvePoint{0.005, 300}); fit != nil {
+		t.Errorf("no point between the ends was fitted by %+v", fit)
+	}
+	if fit := analysed(CurvePoint{0.003, 240}, CurvePoint{0.006, 300}); fit == nil || fit.Points != 3 {
+		t.Errorf("one point between the ends: %+v, want a fit", fit)
+	}
+	// The largest stress comes before the offset yield: no exponent from the two.
+	if fit := analysed(CurvePoint{0.003, 250}, CurvePoint{0.0045, 305}, CurvePoint{0.0052, 300}); fit == nil || fit.ExponentToUltimate.Exists() {
+		t.Errorf("ultimate before the offset yield: %+v", fit)
+	}
+	// At 0.2 % plastic strain the secant modulus is 0.83 E: 0.7 E is not reached.
+	strong := analyse(t, recordOf(sample(RambergOsgood{73100, 700, 10}, 705, 500)), CurveOptions{}).RambergOsgood
+	if strong == nil || strong.ExponentOfSecants.Exists() {
+		t.Errorf("without a secant of 0.7 E: %+v", strong)
 	}
 }
 
@@ -569,6 +622,14 @@ func TestCurve(t *testing.T) {
 	} {
 		if _, err := NewCurve(points); err == nil {
 			t.Errorf("the points %v were taken", points)
+		}
+	}
+	for want, points := range map[string][]CurvePoint{
+		"point 2 of the curve is (1, NaN)":                {{0, 0}, {1, math.NaN()}},
+		"point 3 of the curve has strain 0.5 after 1: st": {{0, 0}, {1, 1}, {0.5, 2}},
+	} {
+		if _, err := NewCurve(points); !strings.HasPrefix(err.Error(), want) {
+			t.Errorf("error %q, want %q", err, want)
 		}
 	}
 }
@@ -739,10 +800,10 @@ func TestCurveOptionsAreChecked(t *testing.T) {
 		}
 	}
 	for want, options := range map[string]CurveOptions{
-		"holds 1 points":           {Window: StressWindow{Low: 60, High: 100}},
-		"holds 0 points":           {Window: StressWindow{Low: 71, High: 100}},
-		"window from 90.461":       {Window: StressWindow{Low: 0.3, High: 0.35, IsShare: true}},
-		"window from 500 to 600 h": {Window: StressWindow{Low: 500, High: 600}},
+		"holds 1 points":            {Window: StressWindow{Low: 60, High: 100}},
+		"holds 0 points":            {Window: StressWindow{Low: 71, High: 100}},
+		"window from 90.461":        {Window: StressWindow{Low: 0.3, High: 0.35, IsShare: true}},
+		"500 to 600 holds 0 points": {Window: StressWindow{Low: 500, High: 600}},
 	} {
 		_, err := AnalyseCurve(test, options)
 		var place *CurveError
@@ -768,6 +829,70 @@ func TestCurveOptionsAreChecked(t *testing.T) {
 	}
 }
 
+// How far off its line a point may lie to continue it: by 1 % of the larger stress in
+// units of √(1 + 1/K + (ε - mean)²/Σ(ε - mean)²), for three points and one more √(10/3).
+func TestLineContinues(t *testing.T) {
+	points := []CurvePoint{{-9, 0}, {0, 0}, {1, 100}, {2, 200}}
+	fit := fitLine(points, 1, 3)
+	for _, c := range []struct {
+		strain, off float64
+		want        bool
+	}{{3, 5.5, true}, {3, 5.7, false}, {3, -5.3, true}, {3, -5.5, false}, {-1, 3.6, true}, {-1, 3.7, false}, {-1, -3.6, true}, {-1, -3.7, false}} {
+		if got := fit.continues(CurvePoint{c.strain, 100*c.strain + c.off}, points); got != c.want {
+			t.Errorf("%g off at %g: %v", c.off, c.strain, got)
+		}
+	}
+}
+
+// The default window holds what lies between 10 and 40 % of the offset yield stress,
+// 35.5 to 142, and grows only where these are fewer than five points: past 260, where
+// the plastic strain is 0.3 % of the elastic one, before 286, where it is 2 %.
+func TestDefaultWindow(t *testing.T) {
+	law := RambergOsgood{YoungsModulus: 210000, OffsetStress: 355, Exponent: 20}
+	for step, want := range map[float64][2]float64{22: {44, 132}, 26: {0, 260}, 142: {0, 284}} {
+		var points []CurvePoint
+		for stress := 0.; stress < 400; stress += step {
+			points = append(points, CurvePoint{law.Strain(stress), stress})
+		}
+		a := analyse(t, recordOf(points), CurveOptions{})
+		if a.Modulus.From.Stress != want[0] || a.Modulus.To.Stress != want[1] {
+			t.Errorf("steps of %g: window from %g to %g (%d points), want %g to %g", step, a.Modulus.From.Stress, a.Modulus.To.Stress, a.Modulus.Points, want[0], want[1])
+		}
+	}
+}
+
+// Two points have no scatter, whatever rounding leaves.
+func TestTwoPointsHaveNoScatter(t *testing.T) {
+	random := rand.New(rand.NewPCG(3, 4))
+	for range 100 {
+		points := []CurvePoint{{0, 0}, {random.Float64(), random.Float64()}, {1 + random.Float64(), 1 + random.Float64()}}
+		if fit := fitLine(points, 1, 2); !math.IsNaN(fit.variation) || !math.IsNaN(fit.scatter) {
+			t.Fatalf("V1 %g, scatter %g of %v", fit.variation, fit.scatter, points[1:])
+		}
+	}
+}
+
+// A window's bounds count as in it, but for the rounding of another unit.
+func TestWindowBounds(t *testing.T) {
+	points := readCurve(t, "m05-aluminium.csv", CurveReading{}).Points
+	for _, c := range []struct {
+		low, high   float64
+		first, last int
+	}{
+		{70, 210, 1, 3}, {70 * (1 + 1e-13), 210 * (1 - 1e-13), 1, 3}, {70 * (1 + 1e-11), 210 * (1 - 1e-11), 2, 2},
+		{0, 400, 0, 13}, {400, 500, 13, 13}, {401, 500, 14, 13}, {0, 1e9, 0, 13}, {71, 100, 2, 1},
+	} {
+		if first, last := window(points, c.low, c.high); first != c.first || last != c.last {
+			t.Errorf("%g to %g: points %d to %d, want %d to %d", c.low, c.high, first, last, c.first, c.last)
+		}
+	}
+	// Past the ultimate stress no point counts.
+	falling := []CurvePoint{{0, 0}, {1, 100}, {2, 80}, {3, 60}}
+	if first, last := window(falling, 50, 100); first != 1 || last != 1 {
+		t.Errorf("points %d to %d, want 1 alone", first, last)
+	}
+}
+
 func TestParseStressWindow(t *testing.T) {
 	for text, want := range map[string]StressWindow{
 		"70..210": {70, 210, false}, "10%..40%": {0.1, 0.4, true}, " 0 .. 1e2 ": {0, 100, false},
@@ -776,7 +901,7 @@ func TestParseStressWindow(t *testing.T) {
 			t.Errorf("%q: %+v, %v, want %+v", text, got, err, want)
 		}
 	}
-	for _, text := range []string{"", "70", "70-210", "210..70", "70..70", "-1..5", "10%..40", "10..40%", "a..b", "1..Inf", "NaN..1", "1..2..3"} {
+	for _, text := range []string{"", "70", "70-210", "210..70", "70..70", "-1..5", "10%..40", "10..40%", "a..b", "x..5", "5..x", "5..", "..5", "1..Inf", "NaN..1", "1..2..3"} {
 		if got, err := ParseStressWindow(text); err == nil || !strings.Contains(err.Error(), "modulus window") {
 			t.Errorf("%q was read as %+v (%v)", text, got, err)
 		}

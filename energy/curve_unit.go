@@ -46,16 +46,17 @@ func unitKey(text string) string {
 // "engineering strain" and the unit "%".
 type heading struct{ text, name, unit string }
 
-// parseHeading splits a heading. A unit stands in brackets, or before or after a
-// separator if it is a known one; a percent sign needs no separator, and microstrain is
+// parseHeading splits a heading. A unit stands in brackets, the known ones anywhere,
+// others at the end; or before or after a separator if it is known. A percent sign needs no separator, and microstrain is
 // a name as well.
 func parseHeading(text string) heading {
 	text = strings.TrimSpace(text)
 	lower := strings.ToLower(text)
 	for _, brackets := range []string{"()", "[]"} {
-		open := strings.LastIndexByte(lower, brackets[0])
-		if open > 0 && lower[len(lower)-1] == brackets[1] {
-			return heading{text, strings.TrimSpace(lower[:open]), unitKey(lower[open+1 : len(lower)-1])}
+		before, rest, isOpen := strings.Cut(lower, brackets[:1])
+		unit, after, isClosed := strings.Cut(rest, brackets[1:])
+		if isOpen && isClosed && (after == "" || isUnit(unit)) {
+			return heading{text, strings.TrimSpace(before + after), unitKey(unit)}
 		}
 	}
 	if whole := unitKey(lower); strainNames[whole] == "microstrain" {
@@ -65,7 +66,7 @@ func parseHeading(text string) heading {
 		return heading{text, name, "%"}
 	}
 	for i, letter := range lower {
-		if i == 0 || !strings.ContainsRune(headingSeparators, letter) {
+		if !strings.ContainsRune(headingSeparators, letter) {
 			continue
 		}
 		before, after := lower[:i], lower[i+1:]

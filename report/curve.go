@@ -117,8 +117,8 @@ func curveStressSection(analysis *energy.CurveAnalysis) section {
 		t.add(mark.name, brief(mark.stress), brief(mark.strain), mark.how)
 	}
 	s := newSection("Stresses", t)
-	if yield := analysis.YieldPoint; yield != nil {
-		s.note(fmt.Sprintf("The yield plateau ends at a strain of %s.", brief(energy.Number(yield.PlateauEnd))))
+	if yield := analysis.YieldPoint; yield != nil && yield.PlateauEnd.Exists() {
+		s.note(fmt.Sprintf("The yield plateau ends at a strain of %s.", brief(yield.PlateauEnd)))
 	}
 	return s
 }
