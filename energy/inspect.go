@@ -2,6 +2,7 @@ package energy
 
 import (
 	"context"
+	"encoding/binary"
 	"encoding/json"
 	"errors"
 	"fmt"
@@ -32,6 +33,9 @@ func Inspect(ctx context.Context, model *mesh.Model, options InspectOptions) (*I
 	if options.Ranges {
 		if bounds, err = walk.Bounds(ctx, &mesh.Want{}); err == nil {
 			err = i.readValues(ctx)
+		}
+		if err == nil {
+			err = i.readFields(ctx)
 		}
 	} else {
 		err = i.readTypes(ctx)
@@ -251,6 +255,96 @@ func (i *inspector) readTypes(ctx context.Context) error {
 	})
 }
 
+// readFields reads the arrays of the data set as a whole. Those of one name in several
+// files are read in the order of the files, as far as the model counts their tuples.
+func (i *inspector) readFields(ctx context.Context) error {
+	cursor := i.model.Open()
+	defer cursor.Close()
+	for a, wanted := range i.arrays {
+		if wanted.On != mesh.OnField || !isNumeric(wanted) {
+			continue
+		}
+		to := &i.parts[0].ranges[a]
+		for _, source := range i.model.Sources {
+			for k := range source.Fields {
+				array := &source.Fields[k]
+				if array.Name != wanted.Name || array.Components != wanted.Components || to.tuples >= wanted.Tuples {
+					continue
+				}
+				if err := addArray(ctx, cursor, array, to); err != nil {
+					return err
+				}
+			}
+		}
+	}
+	return nil
+}
+
+// addArray adds the tuples of an array as it is stored.
+func addArray(ctx context.Context, cursor mesh.Cursor, array *mesh.Array, to *arrayRange) error {
+	const step = 8192 // tuples; a multiple of 8, so that every step begins where it may
+	if array.Tuples == 0 || array.Components == 0 {
+		return nil
+	}
+	size := array.Bytes / array.Tuples
+	buffer, tuple := make([]byte, step*size), make([]float64, array.Components)
+	for low := int64(0); low < array.Tuples; low += step {
+		bytes := buffer[:size*min(step, array.Tuples-low)]
+		if err := cursor.ReadArray(ctx, array, low*size, bytes); err != nil {
+			return err
+		}
+		for ; len(bytes) > 0; bytes = bytes[size:] {
+			for c := range tuple {
+				number := bytes[int64(c)*size/int64(array.Components):]
+				tuple[c] = storedNumber(array.Type, number)
+				// What the sum lacks of whole numbers that a double rounds.
+				switch array.Type {
+				case "Int64":
+					whole := int64(binary.LittleEndian.Uint64(number))
+					to.sum[c].Add(float64(whole >> 11 << 11))
+					to.sum[c].Add(float64(whole & (1<<11 - 1)))
+					to.sum[c].Add(-tuple[c])
+				case "UInt64":
+					whole := binary.LittleEndian.Uint64(number)
+					to.sum[c].Add(float64(whole >> 11 << 11))
+					to.sum[c].Add(float64(whole & (1<<11 - 1)))
+					to.sum[c].Add(-tuple[c])
+				}
+			}
+			to.add(tuple)
+		}
+	}
+	return nil
+}
+
+// storedNumber returns the number of one of VTK's types at the beginning of bytes, low
+// byte first; whole numbers beyond 2^53 are rounded.
+func storedNumber(numberType string, bytes []byte) float64 {
+	switch numberType {
+	case "Float64":
+		return math.Float64frombits(binary.LittleEndian.Uint64(bytes))
+	case "Float32":
+		return float64(math.Float32frombits(binary.LittleEndian.Uint32(bytes)))
+	case "Int64":
+		return float64(int64(binary.LittleEndian.Uint64(bytes)))
+	case "UInt64":
+		return float64(binary.LittleEndian.Uint64(bytes))
+	case "Int32":
+		return float64(int32(binary.LittleEndian.Uint32(bytes)))
+	case "UInt32":
+		return float64(binary.LittleEndian.Uint32(bytes))
+	case "Int16":
+		return float64(int16(binary.LittleEndian.Uint16(bytes)))
+	case "UInt16":
+		return float64(binary.LittleEndian.Uint16(bytes))
+	case "Int8":
+		return float64(int8(bytes[0]))
+	case "UInt8":
+		return float64(bytes[0])
+	}
+	return math.NaN()
+}
+
 // readValues reads everything. Pieces may have different arrays, so that each piece's
 // cells are asked for its own; values of points are read in steps.
 func (i *inspector) readValues(ctx context.Context) error {
@@ -380,7 +474,7 @@ func boxOf(bounds *mesh.Bounds) *Bounds {
 // fillRanges lays out the ranges of the arrays whose values were read.
 func (i *inspector) fillRanges(to []InspectedArray, total *inspected) {
 	for a := range to {
-		if i.arrays[a].On == mesh.OnField || !isNumeric(i.arrays[a]) {
+		if !isNumeric(i.arrays[a]) {
 			continue
 		}
 		r := &total.ranges[a]
