@@ -208,7 +208,7 @@ func (a *addedCells) withHidden(arrays []vtuArray, number int) []vtuArray {
 	at := slices.IndexFunc(arrays, func(array vtuArray) bool { return array.Name == ghostArray })
 	switch {
 	case at >= 0:
-		if cells.hasHidden && arrays[at].Type == "UInt8" && arrays[at].Components == 1 {
+		if cells.hasHidden {
 			marks.Attributes, marks.ComponentNames = arrays[at].Attributes, arrays[at].ComponentNames
 			arrays[at] = marks
 		}

@@ -288,8 +288,11 @@ func (p *pieces) comparePoints() {
 	if !sameBits(a, b) {
 		t.Errorf("piece %d: points %v, want %v", p.number, b, a)
 	}
-	if given.Points != nil && given.PointCount > 0 && given.Points.Type != written.Points.Type {
-		t.Errorf("points of type %s, want %s", written.Points.Type, given.Points.Type)
+	if given.PointCount == 0 {
+		return
+	}
+	if written.Points.Name != "Points" || given.Points != nil && given.Points.Type != written.Points.Type {
+		t.Errorf("points are %+v, want them as %+v", written.Points, given.Points)
 	}
 }
 

@@ -146,7 +146,10 @@ func TestCellsHiddenByGrids(t *testing.T) {
 	parts := writeText(t, folder, "in.pvti", `<VTKFile type="PImageData"><PImageData WholeExtent="0 4 0 1 0 0" Origin="0 0 0" Spacing="1 1 1">
 <Piece Extent="0 2 0 1 0 0" Source="a.vti"/><Piece Extent="1 4 0 1 0 0" Source="b.vti"/></PImageData></VTKFile>`)
 	points := writeText(t, folder, "points.vti", image("0 2 0 1 0 0", ascii("UInt8", "vtkGhostType", "0 0 2 0 0 0"), ""))
-	both := writeText(t, folder, "both.vti", image("0 2 0 1 0 0", ascii("UInt8", "vtkGhostType", "0 0 2 0 0 0"), ascii("UInt8", "vtkGhostType", "5 2")))
+	marked := func(text string) string {
+		return strings.Replace(text, "<CellData>", `<CellData Scalars="vtkGhostType">`, 1)
+	}
+	both := writeText(t, folder, "both.vti", marked(image("0 2 0 1 0 0", ascii("UInt8", "vtkGhostType", "0 0 2 0 0 0"), ascii("UInt8", "vtkGhostType", "5 2"))))
 	for path, want := range map[string][]string{parts: {"00 00", "01 00 00"}, points: {"00 20"}, both: {"05 22"}} {
 		given := open(t, path)
 		written := open(t, annotate(t, given, path+"-out", 2))
@@ -259,7 +262,7 @@ func TestManyCells(t *testing.T) {
 	place, end := 0, 0
 	for i := range cells {
 		labels.WriteString(fmt.Sprint(i, " "))
-		if i == 6*spoolChunk+5 || i == 13*spoolChunk+1 || i == 13*spoolChunk+2 { // in the second span and in the fourth
+		if i == 6*spoolChunk+5 || i == 12*spoolChunk+1 || i == 13*spoolChunk+2 { // in the second span and in two chunks of the fourth
 			place, end = place+4, end+17
 			connectivity.WriteString("0 1 2 3 ")
 			faces.WriteString("4 3 0 2 1 3 0 1 3 3 1 2 3 3 0 3 2 ")
@@ -275,20 +278,21 @@ func TestManyCells(t *testing.T) {
 		offsets.WriteString(fmt.Sprint(place, " "))
 	}
 	mixed := func(faces, faceEnds string) string {
-		return fmt.Sprintf(`<VTKFile type="UnstructuredGrid" version="1.0"><UnstructuredGrid>
-<Piece NumberOfPoints="4" NumberOfCells="%d"><CellData>%s</CellData>
+		piece := fmt.Sprintf(`<Piece NumberOfPoints="4" NumberOfCells="%d"><CellData>%s</CellData>
 <Points><DataArray type="Int16" NumberOfComponents="3" format="ascii">0 0 0 1 0 0 0 1 0 0 0 1</DataArray></Points>
-<Cells>%s%s%s%s%s</Cells></Piece></UnstructuredGrid></VTKFile>`, cells, ascii("Int32", "id", labels.String()),
+<Cells>%s%s%s%s%s</Cells></Piece>`, cells, ascii("Int32", "id", labels.String()),
 			ascii("Int32", "connectivity", connectivity.String()), ascii("Int32", "offsets", offsets.String()), ascii("UInt8", "types", types.String()),
 			ascii("Int32", "faces", faces), ascii("Int32", "faceoffsets", faceEnds))
+		return `<VTKFile type="UnstructuredGrid" version="1.0"><UnstructuredGrid>` + piece + piece + `</UnstructuredGrid></VTKFile>`
 	}
 	random := rand.New(rand.NewPCG(1, 2))
 	var values strings.Builder
 	for range 40 * 40 * 41 {
 		values.WriteString(fmt.Sprint(random.Float64(), " "))
 	}
+	hidden := ascii("UInt8", "vtkGhostType", "2 "+strings.Repeat("0 ", 41*41*42-1)) // the first cell alone
 	grid := fmt.Sprintf(`<VTKFile type="ImageData" version="0.1"><ImageData WholeExtent="-1 39 0 40 0 41" Origin="1 2 3" Spacing=".5 .25 .125">
-<Piece Extent="-1 39 0 40 0 41"><PointData/><CellData>%s</CellData></Piece></ImageData></VTKFile>`, ascii("Float64", "v", values.String()))
+<Piece Extent="-1 39 0 40 0 41"><PointData>%s</PointData><CellData>%s</CellData></Piece></ImageData></VTKFile>`, hidden, ascii("Float64", "v", values.String()))
 	for _, path := range []string{
 		writeText(t, folder, "mixed.vtu", mixed(faces.String(), faceEnds.String())),
 		writeText(t, folder, "grid.vti", grid),
@@ -298,6 +302,62 @@ func TestManyCells(t *testing.T) {
 		compareModels(t, given, open(t, annotate(t, given, one, 1)))
 		annotate(t, given, several, 4)
 		compareFolders(t, one, several)
+	}
+	checkFaceEnds(t, open(t, filepath.Join(folder, "mixed.vtu")), faceEnds.String())
+}
+
+// checkFaceEnds compares the ends of face streams with those of the file: -1 for cells
+// that are no polyhedra, also for those before the first one.
+func checkFaceEnds(t *testing.T, model *mesh.Model, want string) {
+	t.Helper()
+	cells, err := spoolCells(context.Background(), model, 3, t.TempDir(), "target")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer cells.close()
+	for number := range model.Pieces {
+		array := cells.arrays(number, model.Pieces[number].CellCount)[4]
+		data := make([]byte, array.Bytes)
+		if err := array.read(context.Background(), nil, 0, data); err != nil {
+			t.Fatal(err)
+		}
+		for i, word := range strings.Fields(want) {
+			if got := fmt.Sprint(int64(binary.LittleEndian.Uint64(data[8*i:]))); got != word {
+				t.Fatalf("piece %d, cell %d: faces end at %s, want %s", number, i, got, word)
+			}
+		}
+	}
+}
+
+// A piece without cells gets the arrays of its own block, and a lone block of a tree keeps
+// its name.
+func TestBlocksOfATree(t *testing.T) {
+	folder := t.TempDir()
+	empty := `<UnstructuredGrid><Piece NumberOfPoints="0" NumberOfCells="0"/>`
+	writeText(t, folder, "a.vtu", triangles("", "", ascii("Int8", "x", "1 2")))
+	writeText(t, folder, "b.vtu", strings.Replace(triangles("", "", ascii("Int8", "y", "1 2")), "<UnstructuredGrid>", empty, 1))
+	tree := func(sets string) string {
+		return `<VTKFile type="vtkMultiBlockDataSet" version="1.0"><vtkMultiBlockDataSet>` + sets + `</vtkMultiBlockDataSet></VTKFile>`
+	}
+	both := open(t, writeText(t, folder, "both.vtm", tree(`<DataSet index="0" name="steel" file="a.vtu"/><DataSet index="1" name="skin" file="b.vtu"/>`)))
+	written := open(t, annotate(t, both, filepath.Join(folder, "both"), 1))
+	compareModels(t, both, written)
+	if written.Pieces[1].Find(mesh.OnCell, "x") != nil || written.Pieces[1].Find(mesh.OnCell, "y") == nil {
+		t.Errorf("the piece without cells has %+v", written.Pieces[1].Arrays)
+	}
+	lone := open(t, writeText(t, folder, "lone.vtm", tree(`<DataSet index="0" name="steel" file="a.vtu"/>`)))
+	if written := open(t, annotate(t, lone, filepath.Join(folder, "lone"), 1)); !slices.Equal(written.Blocks, []string{"steel"}) {
+		t.Errorf("blocks %q", written.Blocks)
+	}
+}
+
+// An array of a later file that only has the name of old ghost levels stays what it is.
+func TestGhostLevelsThatAreNone(t *testing.T) {
+	given := open(t, writeText(t, t.TempDir(), "in.vtu", triangles("", "", ascii("UInt8", "vtkGhostLevels", "0 2"))))
+	written := open(t, annotate(t, given, t.TempDir(), 1))
+	compareModels(t, given, written)
+	if names(written)[0] != "vtkGhostLevels" {
+		t.Errorf("arrays %q", names(written))
 	}
 }
 
@@ -366,7 +426,7 @@ func noCursor() mesh.Cursor { return idleCursor{} }
 // its piece is cut.
 func TestHotspotColumn(t *testing.T) {
 	ledger := &energy.Ledger{Hotspots: []energy.Hotspot{
-		{Rank: 1, Source: 1, Cell: 12}, {Rank: 2, Source: 0, Cell: 11}, {Rank: 3, Source: 1, Cell: 10}, {Rank: 4, Source: 1, Cell: 12},
+		{Rank: 4, Source: 1, Cell: 12}, {Rank: 2, Source: 0, Cell: 11}, {Rank: 3, Source: 1, Cell: 10}, {Rank: 1, Source: 1, Cell: 12},
 		{Rank: 5, Source: 1, Cell: 19}, {Rank: 6, Source: 1, Cell: 20}, {Rank: 7, Source: 1, Cell: 9},
 	}}
 	added := &addedCells{marks: hotspotCells(ledger)}

@@ -45,7 +45,7 @@ func (a *addedCells) writeParallel(ctx context.Context, to io.Writer, files []*v
 	return err
 }
 
-// common lists the arrays that all pieces have with one type and number of components.
+// common lists the arrays that all pieces have with one number type.
 func common(files []*vtuFile, arrays func(*vtuPiece) []vtuArray) []vtuArray {
 	var list []vtuArray
 	isFirst := true
@@ -58,7 +58,7 @@ func common(files []*vtuFile, arrays func(*vtuPiece) []vtuArray) []vtuArray {
 			}
 			list = slices.DeleteFunc(list, func(a vtuArray) bool {
 				return !slices.ContainsFunc(mine, func(b vtuArray) bool {
-					return a.Name == b.Name && a.Type == b.Type && a.Components == b.Components
+					return a.Name == b.Name && a.Type == b.Type
 				})
 			})
 		}

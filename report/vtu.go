@@ -149,16 +149,12 @@ func describe(a *mesh.Array) string {
 }
 
 // marks returns the attributes of point or cell data that name arrays: Scalars, Tensors,
-// GlobalIds ... Of several arrays with one mark it is the first.
+// GlobalIds ...
 func marks(arrays []vtuArray) string {
 	var text strings.Builder
-	given := map[string]bool{}
 	for i := range arrays {
 		for _, attribute := range arrays[i].Attributes {
-			if !given[attribute] {
-				given[attribute] = true
-				fmt.Fprintf(&text, " %s=\"%s\"", attribute, escape(arrays[i].Name))
-			}
+			fmt.Fprintf(&text, " %s=\"%s\"", attribute, escape(arrays[i].Name))
 		}
 	}
 	return text.String()
