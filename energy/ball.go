@@ -177,12 +177,14 @@ func planeView(origin Vector, size float64) view {
 	return view{origin: origin, across: Vector{1}, along: Vector{0, 1}, front: Vector{0, 0, 1}, size: size}
 }
 
-// frontView looks along a front, at the cells of one edge's length to either side.
+// frontView looks along a front, at the cells of four edges' length to either side: over
+// less, density may hardly change along what is no front.
 func frontView(origin, edge Vector, size float64) view {
-	v := view{origin: origin, size: size, thickness: edge.length()}
+	length := edge.length()
+	v := view{origin: origin, size: size, thickness: 4 * length}
 	least := 0
 	for axis := range edge {
-		v.front[axis] = edge[axis] / v.thickness
+		v.front[axis] = edge[axis] / length
 		if math.Abs(edge[axis]) < math.Abs(edge[least]) {
 			least = axis
 		}
@@ -190,7 +192,7 @@ func frontView(origin, edge Vector, size float64) view {
 	var off Vector
 	off[least] = 1
 	v.across = cross(v.front, off)
-	length := v.across.length()
+	length = v.across.length()
 	for axis := range v.across {
 		v.across[axis] /= length
 	}

@@ -1,6 +1,9 @@
 package energy
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // A singularTag says whether the density grows without bound towards a place as the mesh
 // is refined.
@@ -28,9 +31,11 @@ const (
 	ringStart   = 2.0
 	ringEnd     = 8.0
 	ringShort   = 6.0 // a ring that ends before tells nothing
-	ringCells   = 20  // nor one of fewer cells
+	ringCells   = 36  // nor one of fewer cells
 	coreStart   = 1.2 // splits what is within the ring: the cells at the place, and the next
 	angularRank = 3   // harmonics of the angle by which density may differ about the place
+	sectors     = 24  // in which directions are counted that the outer half of the ring has cells in:
+	fewSectors  = 6   // in fewer, a quarter of the way round, a law of distance and angle can be any
 )
 
 // The bounds between the answers. They were set on sampled fields: Williams' at openings
@@ -41,14 +46,18 @@ const (
 // None of these was called singular.
 const (
 	leastEigenvalue  = 0.49 // free faces allow no less than 0.5; blunt notches seem to have less
-	singularBelow    = 0.95
+	singularBelow    = 0.9
 	mostMisfit       = 0.12 // of the ring's density, root mean square
 	mostSpread       = 0.05
-	leastAtPlace     = 0.95 // density within the ring over what the power law goes on to;
+	leastAtPlace     = 0.97 // density within the ring over what the power law goes on to;
 	mostAtPlace      = 1.4  // the mean of a cell at the place lies above its value at the centroid
 	mostBesidePlace  = 1.1
-	leastBesidePlace = 0.95
-	levelSlope       = 0.15 // of ln density over ln r within the ring, where density levels off
+	leastBesidePlace = 0.97
+	mostBend         = 0.012 // by which the eigenvalue of the ring's inner part may be above that of the outer
+	evenSlope        = 0.04  // of ln density over ln r: no fall to speak of
+	levelSlope       = 0.15  // the same within the ring, where density levels off
+	levelBend        = 0.03  // the same bend, at least
+	mostLevelBeside  = 1.05  // density beside the place over what the law goes on to
 )
 
 // A view is one way to look at a place: from an origin, along a front that density is
@@ -80,6 +89,9 @@ func judgeSingularity(cells []nearCell, views []view, radius float64) singularit
 	if profile == nil {
 		return best
 	}
+	for third := range profile.thirds {
+		profile.thirds[third] = profile.withoutThird(third)
+	}
 	return singularity{profile.judge(), 1 + profile.slope/2, profile.spread()}
 }
 
@@ -91,8 +103,9 @@ type profile struct {
 	end    float64     // of the ring, in cells
 
 	slope, misfit float64
-	law           []float64 // the fitted density of each point
-	scaled        []float64 // room for densities over r^slope
+	thirds        [3]float64 // eigenvalues without one third of the ring
+	law           []float64  // the fitted density of each point
+	scaled        []float64  // room for densities over r^slope
 }
 
 // A profilePoint is a cell: the logarithm of its distance in cells, its angle, density
@@ -107,7 +120,7 @@ func newProfile(cells []nearCell, v *view, radius float64) *profile {
 	if !(p.end >= ringShort*(1-1e-9)) {
 		return nil
 	}
-	ring := 0
+	ring, filled := 0, [sectors]bool{}
 	for i := range cells {
 		c := &cells[i]
 		offset := c.at.minus(&v.origin)
@@ -124,9 +137,18 @@ func newProfile(cells []nearCell, v *view, radius float64) *profile {
 			point.weight = c.measure / r // as much for each ring of cells
 			ring++
 		}
+		if r >= (ringStart+p.end)/2 {
+			filled[int((point.angle/(2*math.Pi)+0.5)*sectors)%sectors] = true
+		}
 		p.points = append(p.points, point)
 	}
-	if ring < ringCells {
+	directions := 0
+	for _, isFilled := range filled {
+		if isFilled {
+			directions++
+		}
+	}
+	if ring < ringCells || directions < fewSectors {
 		return nil
 	}
 	p.setBasis()
@@ -261,6 +283,26 @@ func (p *profile) slopeWithin() float64 {
 	return p.slope + math.Log(inner/outer)/(at-beside)
 }
 
+// spread returns how far the eigenvalue moves when a third of the ring is left out.
+func (p *profile) spread() (largest float64) {
+	for _, eigenvalue := range p.thirds {
+		if moved := math.Abs(eigenvalue - 1 - p.slope/2); moved > largest {
+			largest = moved
+		}
+	}
+	return largest
+}
+
+// bend returns by how much the eigenvalue of the inner two thirds of the ring is above
+// that of the outer two: above 0 where density levels off towards the place. Where the
+// cells of a third are all that there is it is 0.
+func (p *profile) bend() float64 {
+	if bend := p.thirds[2] - p.thirds[0]; !math.IsNaN(bend) {
+		return bend
+	}
+	return 0
+}
+
 // judge gives the answer.
 func (p *profile) judge() singularTag {
 	isBetween := func(value, low, high float64) bool { return value >= low && value <= high }
@@ -268,39 +310,37 @@ func (p *profile) judge() singularTag {
 	switch slope := p.slopeWithin(); {
 	case p.misfit > mostMisfit:
 		return cannotTell
-	case isBetween(eigenvalue, leastEigenvalue, singularBelow-spread) && spread <= mostSpread &&
+	case isBetween(eigenvalue, leastEigenvalue, singularBelow-spread) && spread <= mostSpread && p.bend() <= mostBend &&
 		isBetween(p.atPlace(), leastAtPlace, mostAtPlace) && isBetween(p.besidePlace(), leastBesidePlace, mostBesidePlace):
 		return isSingular
-	// Levelling off within the ring, after a steeper fall over the ring or none at all.
-	case math.Abs(slope) <= levelSlope && (slope > p.slope/2 || p.slope > -0.1):
+	case math.Abs(slope) <= evenSlope && math.Abs(p.slope) <= evenSlope:
+		return isRegular
+	// Density falls the more steeply the farther it is from the place, and hardly at it.
+	case math.Abs(slope) <= levelSlope && slope > p.slope/2 && p.bend() >= levelBend &&
+		p.atPlace() <= 1 && p.besidePlace() <= mostLevelBeside:
 		return isRegular
 	}
 	return cannotTell
 }
 
-// spread returns how far the eigenvalue moves when a third of the ring, by the logarithm
-// of the distance, is left out.
-func (p *profile) spread() float64 {
+// withoutThird returns the eigenvalue that the ring gives without one of its thirds, by
+// the logarithm of the distance; NaN where too little is left.
+func (p *profile) withoutThird(third int) float64 {
 	start, end := math.Log(ringStart), math.Log(p.end)
-	largest := 0.0
-	for third := range 3 {
-		part := &profile{points: make([]profilePoint, len(p.points))}
-		copy(part.points, p.points)
-		cells := 0
-		for i := range part.points {
-			point := &part.points[i]
-			if min(2, int(3*(point.logarithm-start)/(end-start))) == third {
-				point.weight = 0
-			} else if point.weight > 0 {
-				cells++
-			}
+	part := &profile{points: slices.Clone(p.points)}
+	cells := 0
+	for i := range part.points {
+		point := &part.points[i]
+		if min(2, int(3*(point.logarithm-start)/(end-start))) == third {
+			point.weight = 0
+		} else if point.weight > 0 {
+			cells++
 		}
-		if cells < ringCells/2 {
-			continue
-		}
-		part.setBasis()
-		part.fit()
-		largest = max(largest, math.Abs(part.slope-p.slope)/2)
 	}
-	return largest
+	if cells < ringCells/2 {
+		return math.NaN()
+	}
+	part.setBasis()
+	part.fit()
+	return 1 + part.slope/2
 }

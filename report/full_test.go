@@ -7,6 +7,7 @@ import (
 	"errors"
 	"io"
 	"os"
+	"os/exec"
 	"path/filepath"
 	"strings"
 	"syscall"
@@ -30,7 +31,17 @@ func withFileLimit(t *testing.T, bytes uint64, do func()) {
 }
 
 // A file that does not fit is named, at whichever step it is noticed, and its draft goes.
+// The limit holds for the whole process, so that the test runs in one of its own.
 func TestFilesThatDoNotFit(t *testing.T) {
+	const child = "STRAINLEDGER_TEST_FILES_THAT_DO_NOT_FIT"
+	if os.Getenv(child) == "" {
+		command := exec.Command(os.Args[0], "-test.run=^TestFilesThatDoNotFit$")
+		command.Env = append(os.Environ(), child+"=1")
+		if output, err := command.CombinedOutput(); err != nil {
+			t.Errorf("%v\n%s", err, output)
+		}
+		return
+	}
 	out := t.TempDir()
 	target := filepath.Join(out, "some.txt")
 	for _, length := range []int{100, 10_000} { // noticed at the end; and before
