@@ -43,7 +43,8 @@ const (
 // own at a cell's distance, on square, triangular, polar, graded and distorted cells, as
 // values at centroids and as means; against blunt cracks, holes, and fields that level
 // off as (r+b)^s, (r²+b²)^(s/2), exp(-r²/2b²) and exp(-r/b), with radii of 1 to 10 cells.
-// None of these was called singular.
+// None of these was called singular, but of 3000 fields of these kinds drawn at random one
+// was, that levels off within a cell.
 const (
 	leastEigenvalue  = 0.49 // free faces allow no less than 0.5; blunt notches seem to have less
 	singularBelow    = 0.9
