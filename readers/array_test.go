@@ -239,3 +239,112 @@ func TestReadArrayFaults(t *testing.T) {
 		}()
 	}
 }
+
+// What is stored in another way than it is described, at every place and in any order of
+// reading: bits and colours as text, old ghost levels, strings.
+func TestReadArrayConverts(t *testing.T) {
+	var bits, colours, ascii, lines, binaries strings.Builder
+	var packed []byte
+	for i := range 200 {
+		if i%8 == 0 {
+			packed = append(packed, 0)
+		}
+		bit := i * i / 3 % 2
+		packed[i/8] |= byte(bit) << (7 - i%8)
+		ascii.WriteString(strconv.Itoa(bit) + " ")
+	}
+	var wantStrings []byte
+	for i := range 30 {
+		text := strings.Repeat("é ", i%11)
+		lines.WriteString(strings.NewReplacer(" ", "%20", "é", "%C3%A9").Replace(text) + "\n")
+		binaries.WriteString(string([]byte{byte(0xc0 | len(text))}) + text)
+		wantStrings = append(wantStrings, text+"\x00"...)
+	}
+	bits.WriteString("# vtk DataFile Version 3.0\nx\nASCII\nDATASET POLYDATA\nPOINTS 200 char\n" + strings.Repeat("0 0 0 ", 200) + "\nPOINT_DATA 200\nSCALARS v bit\n" + ascii.String())
+	colours.WriteString("# vtk DataFile Version 3.0\nx\nASCII\nDATASET POLYDATA\nPOINTS 10 char\n" + strings.Repeat("0 0 0 ", 10) + "\nPOINT_DATA 10\nCOLOR_SCALARS v 1\n0 1 0.5 0.25 2 -3 0.001 0.002 0.998 0.999")
+	words := func(coding, values string) string {
+		return "# vtk DataFile Version 3.0\nx\n" + coding + "\nDATASET POLYDATA\nFIELD f 1\nv 1 30 string\n" + values
+	}
+	levels := `<VTKFile type="UnstructuredGrid" version="0.1"><UnstructuredGrid><Piece NumberOfPoints="10" NumberOfCells="0">
+<PointData><DataArray type="Int16" Name="vtkGhostLevels" format="ascii">0 1 2 300 0 7 0 0 0 2</DataArray></PointData>
+<Points><DataArray type="Int8" NumberOfComponents="3" format="ascii">` + strings.Repeat("0 ", 30) + `</DataArray></Points></Piece></UnstructuredGrid></VTKFile>`
+	for name, c := range map[string]struct {
+		text string
+		want []byte
+	}{
+		"bits":           {bits.String(), packed},
+		"colours":        {colours.String(), []byte{0, 255, 128, 64, 255, 0, 0, 1, 254, 255}},
+		"levels":         {levels, []byte{0, 0, 1, 0, 1, 0, 1, 0, 0, 0, 1, 0, 0, 0, 0, 0, 0, 0, 1, 0}},
+		"strings":        {words("ASCII", lines.String()), wantStrings},
+		"binary strings": {words("BINARY", binaries.String()), wantStrings},
+	} {
+		model, err := openBytes([]byte(c.text), Options{})
+		if err != nil {
+			t.Errorf("%s: %v", name, err)
+			continue
+		}
+		array := &slices.Concat(model.Sources[0].Fields, model.Pieces[0].Arrays)[0]
+		if array.Bytes != int64(len(c.want)) {
+			t.Errorf("%s: %d bytes, want %d", name, array.Bytes, len(c.want))
+			continue
+		}
+		cursor := model.Open()
+		for low := array.Bytes / 8 * 8; low >= 0; low -= 8 { // back to front, each stretch from there on
+			for high := low; high <= array.Bytes; high++ {
+				if array.Type == "Int16" && high%2 == 1 {
+					continue
+				}
+				data := make([]byte, high-low)
+				if err := cursor.ReadArray(context.Background(), array, low, data); err != nil || !bytes.Equal(data, c.want[low:high]) {
+					t.Fatalf("%s: bytes [%d, %d) are % x (%v), want % x", name, low, high, data, err, c.want[low:high])
+				}
+			}
+		}
+		cursor.Close()
+	}
+}
+
+// Of the arrays of one keyword the first of points and the first of cells has its
+// attribute.
+func TestAttributesOfKeywords(t *testing.T) {
+	model, err := openBytes([]byte(`# vtk DataFile Version 3.0
+x
+ASCII
+DATASET POLYDATA
+POINTS 1 char
+0 0 0
+VERTICES 1 2
+1 0
+POINT_DATA 1
+SCALARS a char
+1
+SCALARS b char
+2
+VECTORS c char
+1 2 3
+CELL_DATA 1
+SCALARS d char
+3
+TENSORS e char
+1 2 3 4 5 6 7 8 9
+TENSORS6 f char
+1 2 3 4 5 6
+GLOBAL_IDS g vtkIdType
+9
+FIELD x 1
+h 1 1 char
+4
+`), Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	want := map[string]string{"a": "Scalars", "b": "", "c": "Vectors", "d": "Scalars", "e": "Tensors", "f": "", "g": "GlobalIds", "h": ""}
+	for _, array := range model.Pieces[0].Arrays {
+		if got := strings.Join(array.Attributes, " "); got != want[array.Name] {
+			t.Errorf("array %s is marked %q, want %q", array.Name, got, want[array.Name])
+		}
+	}
+	if got := len(model.Pieces[0].Arrays); got != len(want) {
+		t.Errorf("%d arrays, want %d", got, len(want))
+	}
+}

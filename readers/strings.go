@@ -54,7 +54,6 @@ func (l *stringList) read(h *hand, place *stringPlace, to []byte, low int64) err
 		to, low = to[taken:], low+int64(taken)
 		if len(to) > 0 {
 			place.offset, place.at = next, place.at+length
-			low = max(low, place.at)
 		}
 	}
 	return nil

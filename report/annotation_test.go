@@ -257,34 +257,10 @@ BAAAAAAAAAAOAAAA
 // span, among which polyhedra come late, and arrays of lengths about the steps.
 func TestManyCells(t *testing.T) {
 	folder := t.TempDir()
-	const cells = 5*4*spoolChunk + 3
-	var connectivity, offsets, types, faces, faceEnds, labels strings.Builder
-	place, end := 0, 0
-	for i := range cells {
-		labels.WriteString(fmt.Sprint(i, " "))
-		if i == 6*spoolChunk+5 || i == 12*spoolChunk+1 || i == 13*spoolChunk+2 { // in the second span and in two chunks of the fourth
-			place, end = place+4, end+17
-			connectivity.WriteString("0 1 2 3 ")
-			faces.WriteString("4 3 0 2 1 3 0 1 3 3 1 2 3 3 0 3 2 ")
-			types.WriteString("42 ")
-			faceEnds.WriteString(fmt.Sprint(end, " "))
-		} else {
-			n := 1 + i%2
-			place += n
-			connectivity.WriteString([]string{"3 ", "3 1 "}[n-1])
-			types.WriteString([]string{"1 ", "3 "}[n-1])
-			faceEnds.WriteString("-1 ")
-		}
-		offsets.WriteString(fmt.Sprint(place, " "))
-	}
-	mixed := func(faces, faceEnds string) string {
-		piece := fmt.Sprintf(`<Piece NumberOfPoints="4" NumberOfCells="%d"><CellData>%s</CellData>
-<Points><DataArray type="Int16" NumberOfComponents="3" format="ascii">0 0 0 1 0 0 0 1 0 0 0 1</DataArray></Points>
-<Cells>%s%s%s%s%s</Cells></Piece>`, cells, ascii("Int32", "id", labels.String()),
-			ascii("Int32", "connectivity", connectivity.String()), ascii("Int32", "offsets", offsets.String()), ascii("UInt8", "types", types.String()),
-			ascii("Int32", "faces", faces), ascii("Int32", "faceoffsets", faceEnds))
-		return `<VTKFile type="UnstructuredGrid" version="1.0"><UnstructuredGrid>` + piece + piece + `</UnstructuredGrid></VTKFile>`
-	}
+	// In the second span and in two chunks of the fourth; in the third.
+	first, firstEnds := mixedPiece([]int{6*spoolChunk + 5, 12*spoolChunk + 1, 13*spoolChunk + 2})
+	second, secondEnds := mixedPiece([]int{8*spoolChunk + 7})
+	mixed := `<VTKFile type="UnstructuredGrid" version="1.0"><UnstructuredGrid>` + first + second + `</UnstructuredGrid></VTKFile>`
 	random := rand.New(rand.NewPCG(1, 2))
 	var values strings.Builder
 	for range 40 * 40 * 41 {
@@ -294,7 +270,7 @@ func TestManyCells(t *testing.T) {
 	grid := fmt.Sprintf(`<VTKFile type="ImageData" version="0.1"><ImageData WholeExtent="-1 39 0 40 0 41" Origin="1 2 3" Spacing=".5 .25 .125">
 <Piece Extent="-1 39 0 40 0 41"><PointData>%s</PointData><CellData>%s</CellData></Piece></ImageData></VTKFile>`, hidden, ascii("Float64", "v", values.String()))
 	for _, path := range []string{
-		writeText(t, folder, "mixed.vtu", mixed(faces.String(), faceEnds.String())),
+		writeText(t, folder, "mixed.vtu", mixed),
 		writeText(t, folder, "grid.vti", grid),
 	} {
 		given := open(t, path)
@@ -303,12 +279,45 @@ func TestManyCells(t *testing.T) {
 		annotate(t, given, several, 4)
 		compareFolders(t, one, several)
 	}
-	checkFaceEnds(t, open(t, filepath.Join(folder, "mixed.vtu")), faceEnds.String())
+	checkFaceEnds(t, open(t, filepath.Join(folder, "mixed.vtu")), []string{firstEnds, secondEnds})
+}
+
+// mixedPiece returns a piece of points and lines among which the given cells are
+// polyhedra, and where the face streams end. The streams begin with another face each.
+func mixedPiece(polyhedra []int) (piece, faceEnds string) {
+	const cells = 5*4*spoolChunk + 3
+	sides := []string{"3 0 2 1 ", "3 0 1 3 ", "3 1 2 3 ", "3 0 3 2 "}
+	var connectivity, offsets, types, faces, ends, labels strings.Builder
+	place, end := 0, 0
+	for i := range cells {
+		labels.WriteString(fmt.Sprint(i, " "))
+		if slices.Contains(polyhedra, i) {
+			place, end = place+4, end+17
+			connectivity.WriteString("0 1 2 3 ")
+			turn := (end/17 + len(polyhedra)) % len(sides)
+			faces.WriteString("4 " + strings.Join(slices.Concat(sides[turn:], sides[:turn]), ""))
+			types.WriteString("42 ")
+			ends.WriteString(fmt.Sprint(end, " "))
+		} else {
+			n := 1 + i%2
+			place += n
+			connectivity.WriteString([]string{"3 ", "3 1 "}[n-1])
+			types.WriteString([]string{"1 ", "3 "}[n-1])
+			ends.WriteString("-1 ")
+		}
+		offsets.WriteString(fmt.Sprint(place, " "))
+	}
+	piece = fmt.Sprintf(`<Piece NumberOfPoints="4" NumberOfCells="%d"><CellData>%s</CellData>
+<Points><DataArray type="Int16" NumberOfComponents="3" format="ascii">0 0 0 1 0 0 0 1 0 0 0 1</DataArray></Points>
+<Cells>%s%s%s%s%s</Cells></Piece>`, cells, ascii("Int32", "id", labels.String()),
+		ascii("Int32", "connectivity", connectivity.String()), ascii("Int32", "offsets", offsets.String()), ascii("UInt8", "types", types.String()),
+		ascii("Int32", "faces", faces.String()), ascii("Int32", "faceoffsets", ends.String()))
+	return piece, ends.String()
 }
 
 // checkFaceEnds compares the ends of face streams with those of the file: -1 for cells
 // that are no polyhedra, also for those before the first one.
-func checkFaceEnds(t *testing.T, model *mesh.Model, want string) {
+func checkFaceEnds(t *testing.T, model *mesh.Model, want []string) {
 	t.Helper()
 	cells, err := spoolCells(context.Background(), model, 3, t.TempDir(), "target")
 	if err != nil {
@@ -321,7 +330,7 @@ func checkFaceEnds(t *testing.T, model *mesh.Model, want string) {
 		if err := array.read(context.Background(), nil, 0, data); err != nil {
 			t.Fatal(err)
 		}
-		for i, word := range strings.Fields(want) {
+		for i, word := range strings.Fields(want[number]) {
 			if got := fmt.Sprint(int64(binary.LittleEndian.Uint64(data[8*i:]))); got != word {
 				t.Fatalf("piece %d, cell %d: faces end at %s, want %s", number, i, got, word)
 			}
@@ -586,5 +595,21 @@ func TestFormerFiles(t *testing.T) {
 	}
 	if got := folder(t, filepath.Join(out, "annotated")); !slices.Equal(got, []string{"annotated_3.vtu"}) { // not one of a row
 		t.Errorf("the folder of parts holds %q", got)
+	}
+}
+
+// An attribute of point or cell data names one array, also where a file gives it twice.
+func TestMarksGivenTwice(t *testing.T) {
+	text := triangles("", "", ascii("Int8", "a", "1 2")+`</CellData><CellData Scalars="b">`+ascii("Int8", "b", "3 4"))
+	text = strings.Replace(text, "<CellData>", `<CellData Scalars="a">`, 1)
+	written := open(t, annotate(t, open(t, writeText(t, t.TempDir(), "in.vtu", text)), t.TempDir(), 1))
+	for name, want := range map[string][]string{"a": {"Scalars"}, "b": nil} {
+		if array := written.Pieces[0].Find(mesh.OnCell, name); array == nil || !slices.Equal(array.Attributes, want) {
+			t.Errorf("array %s is %+v, want the attributes %q", name, array, want)
+		}
+	}
+	header, err := os.ReadFile(filepath.Join(filepath.Dir(written.Sources[0].Path), "annotated.vtu"))
+	if err != nil || bytes.Count(header, []byte("Scalars=")) != 1 {
+		t.Errorf("%d attributes Scalars (%v), want 1", bytes.Count(header, []byte("Scalars=")), err)
 	}
 }

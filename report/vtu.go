@@ -149,12 +149,16 @@ func describe(a *mesh.Array) string {
 }
 
 // marks returns the attributes of point or cell data that name arrays: Scalars, Tensors,
-// GlobalIds ...
+// GlobalIds ... Of several arrays with one mark it is the first.
 func marks(arrays []vtuArray) string {
 	var text strings.Builder
+	given := map[string]bool{}
 	for i := range arrays {
 		for _, attribute := range arrays[i].Attributes {
-			fmt.Fprintf(&text, " %s=\"%s\"", attribute, escape(arrays[i].Name))
+			if !given[attribute] {
+				given[attribute] = true
+				fmt.Fprintf(&text, " %s=\"%s\"", attribute, escape(arrays[i].Name))
+			}
 		}
 	}
 	return text.String()
